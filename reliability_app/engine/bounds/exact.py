@@ -1,0 +1,99 @@
+"""Exact bounds for complete lognormal samples: non-central t for lives and reliabilities, chi-square for sigma.
+
+With n logarithms of mean m and standard deviation s (divisor n - 1), (m - y_p) sqrt(n)/s has the non-central t
+distribution with n - 1 degrees of freedom and non-centrality -z_p sqrt(n) (Owen 1968; Hahn & Meeker 1991, ch. 4;
+cited from memory). At z_p = 0 this is Student's t for mu.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+from scipy.optimize import brentq
+from scipy.special import chdtri, nctdtr, nctdtrit
+
+from reliability_app.engine.errors import BoundUnavailable
+from reliability_app.engine.estimate import Estimate
+from reliability_app.engine.life_data import LifeData
+from reliability_app.engine.life_measures import LifeMeasure, Measure, ScoreMeasure, SlopeMeasure
+
+Array = NDArray[np.float64]
+
+
+@dataclass(frozen=True)
+class _Moments:
+    """Size, mean and standard deviation (divisor n - 1) of the standardised logarithms."""
+
+    n: float
+    mean: float
+    deviation: float
+
+
+def has_exact_bounds(data: LifeData, family_name: str) -> bool:
+    """True for complete lognormal data of at least two units."""
+    return family_name == "lognormal" and data.is_complete and data.unit_count >= 2
+
+
+def exact_interval(estimate: Estimate, data: LifeData, measure: Measure, tail: float) -> tuple[Array, Array]:
+    """Return both ends, each of shape (measure.size,), with probability `tail` beyond each.
+
+    Raises
+    ------
+    BoundUnavailable
+        If the data are not complete, the family is not the lognormal, or the reading is a hazard.
+    """
+    if not has_exact_bounds(data, estimate.family.name):
+        raise BoundUnavailable(
+            "An exact bound is known here only for the lognormal family and complete data (every unit failed at a "
+            "known age): choose the likelihood bound."
+        )
+    moments = _moments(estimate)
+    match measure:
+        case LifeMeasure():
+            low = [_life_end(moments, z, 1.0 - tail) for z in measure.z]
+            high = [_life_end(moments, z, tail) for z in measure.z]
+        case ScoreMeasure():
+            low = [_score_end(moments, y, tail) for y in measure.y]
+            high = [_score_end(moments, y, 1.0 - tail) for y in measure.y]
+        case SlopeMeasure():
+            low, high = [_slope_end(moments, tail)], [_slope_end(moments, 1.0 - tail)]
+        case _:
+            raise BoundUnavailable("No exact bound of a hazard is known: choose the likelihood bound.")
+    return np.array(low), np.array(high)
+
+
+def _moments(estimate: Estimate) -> _Moments:
+    y, weight = estimate.sample.failed.y[0], estimate.sample.failed.weight[0]
+    n = float(weight.sum())
+    mean = float(weight @ y) / n
+    return _Moments(n, mean, float(np.sqrt(weight @ (y - mean) ** 2 / (n - 1.0))))
+
+
+def _life_end(moments: _Moments, z: float, level: float) -> float:
+    root_n = np.sqrt(moments.n)
+    factor = float(nctdtrit(moments.n - 1.0, -z * root_n, level)) / root_n
+    return moments.mean - factor * moments.deviation
+
+
+def _score_end(moments: _Moments, y: float, level: float) -> float:
+    """Return z such that the life bound at z, of the opposite side, is y."""
+    root_n = np.sqrt(moments.n)
+    observed = (moments.mean - y) / moments.deviation * root_n
+
+    def excess(z: float) -> float:
+        return float(nctdtr(moments.n - 1.0, -z * root_n, observed)) - level
+
+    centre = -observed / root_n
+    width = 1.0
+    while excess(centre - width) > 0 or excess(centre + width) < 0:
+        width *= 2.0
+        if width > 1e3:
+            raise BoundUnavailable("This age lies too far outside the data for an exact bound to be computed.")
+    return float(brentq(excess, centre - width, centre + width, xtol=1e-12, rtol=1e-12))
+
+
+def _slope_end(moments: _Moments, level: float) -> float:
+    freedom = moments.n - 1.0
+    return 0.5 * float(np.log(chdtri(freedom, 1.0 - level) / freedom)) - float(np.log(moments.deviation))

@@ -1,0 +1,103 @@
+"""fit(data, family) -> Fit, by maximum likelihood."""
+
+from __future__ import annotations
+
+import numpy as np
+from numpy.typing import NDArray
+
+from reliability_app.engine.estimate import Estimate
+from reliability_app.engine.existence import Outcome, outcome_before_fitting
+from reliability_app.engine.families import Family, family
+from reliability_app.engine.fit_result import Fit
+from reliability_app.engine.life_data import LifeData
+from reliability_app.engine.likelihood import Terms, log_likelihood
+from reliability_app.engine.newton import Maximum, maximise
+from reliability_app.engine.sample import Sample, sample_of
+
+Array = NDArray[np.float64]
+
+# A larger sample is first climbed on a part of it; from there the whole needs two or three steps instead of six.
+_THIN_ABOVE = 40_000
+_THIN_TO = 4_000
+
+
+def fit(data: LifeData, family_name: str) -> Fit:
+    """Fit a family by maximum likelihood.
+
+    Parameters
+    ----------
+    data : LifeData
+    family_name : str
+        One of `FAMILY_NAMES`.
+
+    Returns
+    -------
+    Fit
+        With `outcome` ESTIMATED, or another outcome and no numbers where no estimate exists or none was reached.
+
+    Raises
+    ------
+    UnknownName
+        If there is no such family.
+    """
+    chosen = family(family_name)
+    outcome = outcome_before_fitting(data, chosen)
+    if outcome is not Outcome.ESTIMATED:
+        return Fit(data, chosen, outcome, None)
+    sample = sample_of(data)
+    top = fit_batch(sample, chosen)
+    if not top.converged[0]:
+        return Fit(data, chosen, Outcome.NOT_CONVERGED, None)
+    found = Estimate(
+        chosen,
+        sample,
+        float(top.a[0]),
+        float(top.b[0]),
+        top.terms,
+        gradient_norm=float(top.gradient_norm[0]),
+        decrement=float(top.decrement[0]),
+        steps=int(top.steps[0]),
+    )
+    return Fit(data, chosen, Outcome.ESTIMATED, found)
+
+
+def fit_batch(sample: Sample, chosen: Family) -> Maximum:
+    """Fit every sample of a batch; a sample without a maximum comes back as not converged."""
+    fixed = chosen.fixed_sigma is not None
+    a, b = _starts(sample, chosen)
+    single = sample.failed.y.shape[0] == 1
+    size = sample.failed.y.shape[1] + sample.running.y.shape[1]
+    if single and size > _THIN_ABOVE:
+        first = _climb(sample.thinned(_THIN_TO), chosen, a, b)
+        if first.converged.all():
+            a, b = first.a, first.b
+    top = _climb(sample, chosen, a, b)
+    return top if not fixed else _with_fixed_sigma(top)
+
+
+def _climb(sample: Sample, chosen: Family, a: Array, b: Array) -> Maximum:
+    batch = a.size
+
+    def evaluate(rows: NDArray[np.intp], at_a: Array, at_b: Array) -> Terms:
+        part = sample if rows.size == batch else sample.rows(rows)
+        return log_likelihood(part, chosen.standard, at_a, at_b)
+
+    return maximise(evaluate, a, b, b_is_fixed=chosen.fixed_sigma is not None)
+
+
+def _starts(sample: Sample, chosen: Family) -> tuple[Array, Array]:
+    """Start where half of the share failed lies at the mean of the failures, with their own spread."""
+    failures = sample.failed.weight.sum(axis=1) + sample.left.weight.sum(axis=1)
+    failures = failures + sample.between.weight.sum(axis=1)
+    share = failures / (failures + sample.running.weight.sum(axis=1))
+    a = chosen.standard.quantile(np.clip(0.5 * share, 1e-12, 0.5))
+    sigma = chosen.fixed_sigma
+    b = np.full_like(a, 1.0 if sigma is None else sample.spread / sigma)
+    return a, b
+
+
+def _with_fixed_sigma(top: Maximum) -> Maximum:
+    """Drop the derivatives in b, which mean nothing where sigma is fixed."""
+    zero = np.zeros_like(top.a)
+    terms = Terms(top.terms.value, top.terms.d_a, zero, top.terms.d_aa, zero, zero)
+    return Maximum(top.a, top.b, terms, top.converged, top.decrement, top.gradient_norm, top.steps)

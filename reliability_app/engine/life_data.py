@@ -1,0 +1,195 @@
+"""LifeData: lives as intervals with quantities and entry ages; the one place where they are validated."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+from reliability_app.engine.errors import DataError
+
+Array = NDArray[np.float64]
+Mask = NDArray[np.bool_]
+
+_FAULTS_SHOWN = 5
+
+
+@dataclass(frozen=True, eq=False)
+class LifeData:
+    """What is known of the lives of some units, in one unit of age.
+
+    Build it with `right_censored` or `from_intervals`; both validate. The invariant afterwards: all arrays have shape
+    (n,), n >= 1, are not writable, and for each record 0 <= entered < upper and
+    failed: 0 < lower == upper; running: 0 < lower, upper = inf; found failed: 0 <= lower < upper < inf;
+    quantity is a whole number >= 1.
+    """
+
+    lower: Array
+    upper: Array
+    quantity: Array
+    entered: Array
+
+    @classmethod
+    def right_censored(
+        cls,
+        life: ArrayLike,
+        failed: ArrayLike,
+        *,
+        quantity: ArrayLike | None = None,
+        entered: ArrayLike | None = None,
+    ) -> LifeData:
+        """Build from ages and a flag: failed at that age (true), or still running at it (false).
+
+        Parameters
+        ----------
+        life : array_like, shape (n,)
+            Age at failure, or age reached so far; positive.
+        failed : array_like of bool, shape (n,)
+        quantity : array_like of whole numbers, shape (n,), optional
+            Identical units per record; 1 if not given.
+        entered : array_like, shape (n,), optional
+            Age at which the unit came under observation; 0 if not given.
+
+        Raises
+        ------
+        DataError
+            With one sentence for each fault.
+        """
+        lower = _vector(life, "life")
+        flags = np.asarray(failed)
+        if flags.shape != lower.shape:
+            raise DataError([f"There are {lower.size} lives but {flags.size} failed flags: give one flag a life."])
+        if flags.dtype != np.bool_ and not np.isin(flags, (0, 1)).all():
+            raise DataError(["The failed flags must be true or false (1 or 0)."])
+        return cls._validated(lower, np.where(flags.astype(bool), lower, np.inf), quantity, entered)
+
+    @classmethod
+    def from_intervals(
+        cls,
+        lower: ArrayLike,
+        upper: ArrayLike,
+        *,
+        quantity: ArrayLike | None = None,
+        entered: ArrayLike | None = None,
+    ) -> LifeData:
+        """Build from intervals in which each life lies.
+
+        Parameters
+        ----------
+        lower, upper : array_like, shape (n,)
+            failed: lower == upper; running: upper = inf; found failed between two ages: lower < upper;
+            found failed at the first look: lower = 0.
+        quantity, entered : array_like, shape (n,), optional
+            As in `right_censored`.
+
+        Raises
+        ------
+        DataError
+            With one sentence for each fault.
+        """
+        return cls._validated(_vector(lower, "lower"), _vector(upper, "upper"), quantity, entered)
+
+    @classmethod
+    def _validated(
+        cls, lower: Array, upper: Array, quantity: ArrayLike | None, entered: ArrayLike | None
+    ) -> LifeData:
+        if lower.size == 0:
+            raise DataError(["There are no lives: give at least one unit."])
+        counts = np.ones_like(lower) if quantity is None else _vector(quantity, "quantity")
+        starts = np.zeros_like(lower) if entered is None else _vector(entered, "entered")
+        sizes = {"upper": upper.size, "quantity": counts.size, "entered": starts.size}
+        uneven = [f"lower has {lower.size} values but {name} has {size}." for name, size in sizes.items()]
+        if any(size != lower.size for size in sizes.values()):
+            raise DataError([s for s, size in zip(uneven, sizes.values(), strict=True) if size != lower.size])
+        faults = _faults(lower, upper, counts, starts)
+        if faults:
+            raise DataError(faults)
+        for array in (lower, upper, counts, starts):
+            array.flags.writeable = False
+        return cls(lower, upper, counts, starts)
+
+    @property
+    def is_failed(self) -> Mask:
+        """Which records are failures at a known age."""
+        return self.lower == self.upper
+
+    @property
+    def is_running(self) -> Mask:
+        """Which records are right-censored."""
+        return np.isinf(self.upper)
+
+    @property
+    def is_found_failed(self) -> Mask:
+        """Which records are only known to have failed between two ages."""
+        return (self.lower < self.upper) & np.isfinite(self.upper)
+
+    @property
+    def failed_count(self) -> int:
+        """Units that failed at a known age."""
+        return int(self.quantity[self.is_failed].sum())
+
+    @property
+    def running_count(self) -> int:
+        """Units still running."""
+        return int(self.quantity[self.is_running].sum())
+
+    @property
+    def found_failed_count(self) -> int:
+        """Units known to have failed between two ages."""
+        return int(self.quantity[self.is_found_failed].sum())
+
+    @property
+    def unit_count(self) -> int:
+        """All units."""
+        return int(self.quantity.sum())
+
+    @property
+    def is_complete(self) -> bool:
+        """True when every unit failed at a known age and was watched from age 0."""
+        return bool(self.is_failed.all() and not self.entered.any())
+
+    @property
+    def first_failure(self) -> float | None:
+        """The earliest age by which a unit is known to have failed, or None without a failure."""
+        ends = self.upper[~self.is_running]
+        return float(ends.min()) if ends.size else None
+
+    @property
+    def last_observation(self) -> float:
+        """The greatest age at which any unit was observed."""
+        return float(np.where(self.is_running, self.lower, self.upper).max())
+
+
+def _vector(values: ArrayLike, name: str) -> Array:
+    try:
+        array = np.array(values, dtype=np.float64)
+    except (TypeError, ValueError) as problem:
+        raise DataError([f"{name} holds something that is not a number ({problem}): give numbers only."]) from problem
+    if array.ndim != 1:
+        raise DataError([f"{name} must be a list of numbers (one dimension), not {array.ndim} dimensions."])
+    return array
+
+
+def _faults(lower: Array, upper: Array, quantity: Array, entered: Array) -> list[str]:
+    running, exact = np.isposinf(upper), lower == upper
+    finite = np.isfinite(lower)
+    checks = (
+        (~finite | np.isnan(upper), "the life is not a finite number"),
+        (finite & (lower < 0), "the life is negative"),
+        (finite & (lower == 0) & (running | exact), "the life is 0; it must be positive"),
+        (finite & (upper < lower), "the upper age is below the lower age"),
+        (~((quantity >= 1) & (quantity == np.floor(quantity)) & np.isfinite(quantity)),
+         "the quantity is not a whole number of 1 or more"),
+        (~((entered >= 0) & np.isfinite(entered)), "the entry age is negative or not a number"),
+        ((entered > 0) & (entered >= np.where(running | exact, lower, upper)),
+         "the entry age is not below the life"),
+    )  # fmt: skip
+    return [_fault(where, reason) for where, reason in checks if where.any()]
+
+
+def _fault(where: Mask, reason: str) -> str:
+    records = np.flatnonzero(where)
+    named = ", ".join(str(record + 1) for record in records[:_FAULTS_SHOWN])
+    more = f" and {records.size - _FAULTS_SHOWN} more" if records.size > _FAULTS_SHOWN else ""
+    return f"Record {named}{more}: {reason}; correct or leave out these records."

@@ -1,0 +1,116 @@
+"""What can be asked of a fit, each as a smooth function of (a, b) with its derivatives.
+
+With y the standardised logarithm of an age, z = a + b y. The measures are chosen on the scale on which a Wald bound is
+formed: the logarithm of a life, z for a probability, the logarithm of a hazard, the logarithm of 1/sigma.
+"""
+
+from __future__ import annotations
+
+from abc import ABC, abstractmethod
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from reliability_app.engine.families.base import StandardDistribution
+from reliability_app.engine.likelihood import Terms
+
+Array = NDArray[np.float64]
+
+
+class Measure(ABC):
+    """A function of (a, b); an array of `size` such functions is one object."""
+
+    @property
+    @abstractmethod
+    def size(self) -> int:
+        """How many functions this is."""
+
+    @abstractmethod
+    def terms(self, a: Array, b: Array) -> Terms:
+        """Return values and derivatives at a, b, which broadcast against the functions on the first axis."""
+
+
+@dataclass(frozen=True, eq=False)
+class LifeMeasure(Measure):
+    """y at which z is reached: (z - a)/b, the standardised logarithm of a life; z = 0 gives mu."""
+
+    z: Array
+
+    @property
+    def size(self) -> int:
+        """How many lives."""
+        return self.z.size
+
+    def terms(self, a: Array, b: Array) -> Terms:
+        """Return the standardised ln life and its derivatives."""
+        y = (_column(self.z, a) - a) / b
+        zero = np.zeros_like(y)
+        inverse = 1.0 / b + zero
+        return Terms(y, -inverse, -y * inverse, zero, inverse * inverse, 2.0 * y * inverse * inverse)
+
+
+@dataclass(frozen=True, eq=False)
+class ScoreMeasure(Measure):
+    """z reached at y: a + b y; its distribution function is the failure probability at that age."""
+
+    y: Array
+
+    @property
+    def size(self) -> int:
+        """How many ages."""
+        return self.y.size
+
+    def terms(self, a: Array, b: Array) -> Terms:
+        """Return z and its derivatives."""
+        y = _column(self.y, a)
+        z = a + b * y
+        zero = np.zeros_like(z)
+        return Terms(z, zero + 1.0, zero + y, zero, zero, zero)
+
+
+@dataclass(frozen=True, eq=False)
+class HazardMeasure(Measure):
+    """Logarithm of the standardised hazard at y: ln b + ln h(a + b y)."""
+
+    y: Array
+    standard: StandardDistribution
+
+    @property
+    def size(self) -> int:
+        """How many ages."""
+        return self.y.size
+
+    def terms(self, a: Array, b: Array) -> Terms:
+        """Return the log hazard and its derivatives."""
+        y = _column(self.y, a)
+        value, first, second = self.standard.log_hazard(a + b * y)
+        inverse = 1.0 / b
+        return Terms(
+            np.log(b) + value,
+            first,
+            inverse + first * y,
+            second,
+            second * y,
+            second * y * y - inverse * inverse,
+        )
+
+
+class SlopeMeasure(Measure):
+    """ln b, minus the logarithm of the standardised sigma."""
+
+    @property
+    def size(self) -> int:
+        """One."""
+        return 1
+
+    def terms(self, a: Array, b: Array) -> Terms:
+        """Return ln b and its derivatives."""
+        value = np.log(b) + np.zeros_like(a)
+        zero = np.zeros_like(value)
+        return Terms(value, zero, 1.0 / b + zero, zero, zero, -1.0 / (b * b) + zero)
+
+
+def _column(values: Array, points: Array) -> Array:
+    """Put the functions on the first axis of as many axes as the points have."""
+    return values.reshape(values.shape + (1,) * (points.ndim - 1))

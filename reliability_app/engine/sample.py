@@ -1,0 +1,152 @@
+"""Samples on the standardised logarithmic scale: what the likelihood sums over, with a leading batch axis."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from reliability_app.engine.life_data import LifeData, Mask
+
+Array = NDArray[np.float64]
+Index = NDArray[np.intp] | Mask
+
+# Above this many records it is looked up by a small draw whether summing coincidences can pay.
+_ALWAYS_SUM_BELOW = 20_000
+_DRAW = 2_000
+_BLOCK = 32_768
+
+
+@dataclass(frozen=True, eq=False)
+class Part:
+    """Records of one kind: y and weights, shape (rows, n) with rows = 1 or the batch size; weight 0 is padding."""
+
+    y: Array
+    weight: Array
+
+    def blocks(self, points: int) -> Iterator[Part]:
+        """Split along n so that `points` rows of one block stay in the processor's cache."""
+        size = max(256, _BLOCK // max(1, points))
+        for start in range(0, self.y.shape[1], size):
+            yield Part(self.y[:, start : start + size], self.weight[:, start : start + size])
+
+    def rows(self, index: Index) -> Part:
+        """Return the chosen rows; a part that serves the whole batch stays whole."""
+        return self if self.y.shape[0] == 1 else Part(self.y[index], self.weight[index])
+
+
+@dataclass(frozen=True, eq=False)
+class IntervalPart:
+    """Found-failed records: y of both ages and weights, shape (rows, n)."""
+
+    low: Array
+    high: Array
+    weight: Array
+
+    def rows(self, index: Index) -> IntervalPart:
+        """Return the chosen rows; a part that serves the whole batch stays whole."""
+        if self.low.shape[0] == 1:
+            return self
+        return IntervalPart(self.low[index], self.high[index], self.weight[index])
+
+
+@dataclass(frozen=True, eq=False)
+class Sample:
+    """A batch of censored samples in y = (ln life - shift)/spread.
+
+    `left` holds units found failed at their first look; `entered` the entry ages of units that came late.
+    """
+
+    failed: Part
+    running: Part
+    between: IntervalPart
+    left: Part
+    entered: Part
+    shift: float
+    spread: float
+    sum_log_life: Array
+
+    def rows(self, index: Index) -> Sample:
+        """Return the chosen samples of the batch."""
+        total = self.sum_log_life if self.sum_log_life.shape[0] == 1 else self.sum_log_life[index]
+        return Sample(
+            self.failed.rows(index),
+            self.running.rows(index),
+            self.between.rows(index),
+            self.left.rows(index),
+            self.entered.rows(index),
+            self.shift,
+            self.spread,
+            total,
+        )
+
+    def to_y(self, age: Array) -> Array:
+        """Return the standardised logarithm of an age."""
+        return (np.log(age) - self.shift) / self.spread
+
+    def thinned(self, most: int) -> Sample:
+        """Return every k-th record of the large parts: a quick first look at a very large sample."""
+        return Sample(
+            _thin(self.failed, most),
+            _thin(self.running, most),
+            self.between,
+            self.left,
+            self.entered,
+            self.shift,
+            self.spread,
+            self.sum_log_life,
+        )
+
+
+def sample_of(data: LifeData) -> Sample:
+    """Return the one sample of `data`, coincident records summed once, centred on the failures."""
+    failed, running = data.is_failed, data.is_running
+    left = data.is_found_failed & (data.lower == 0)
+    between = data.is_found_failed & (data.lower > 0)
+    log_failed = np.log(data.lower[failed])
+    shift, spread = _centre(log_failed, data)
+
+    def standard(age: Array) -> Array:
+        return (np.log(age) - shift) / spread
+
+    weights = data.quantity
+    late = data.entered > 0
+    return Sample(
+        failed=_summed((log_failed - shift) / spread, weights[failed]),
+        running=_summed(standard(data.lower[running]), weights[running]),
+        between=IntervalPart(
+            standard(data.lower[between])[None], standard(data.upper[between])[None], weights[between][None]
+        ),
+        left=_summed(standard(data.upper[left]), weights[left]),
+        entered=_summed(standard(data.entered[late]), weights[late]),
+        shift=shift,
+        spread=spread,
+        sum_log_life=np.array([float(weights[failed] @ log_failed)]),
+    )
+
+
+def _centre(log_failed: Array, data: LifeData) -> tuple[float, float]:
+    """Return a location and a spread of ln life that make the standardised parameters moderate."""
+    if log_failed.size == 0:
+        ends = np.where(data.is_running, data.lower, data.upper)
+        log_failed = np.log(ends[np.isfinite(ends)])
+    shift, spread = float(log_failed.mean()), float(log_failed.std())
+    largest = float(np.abs(log_failed - shift).max(initial=0.0))
+    # Lives equal to the last digit have no spread of their own; 1 keeps the scale as it is.
+    return shift, spread if spread > 1e-12 * max(1.0, abs(shift)) and largest > 0 else 1.0
+
+
+def _summed(y: Array, weight: Array) -> Part:
+    if y.size > _ALWAYS_SUM_BELOW:
+        drawn = y[:: max(1, y.size // _DRAW)]
+        if np.unique(drawn).size > 0.9 * drawn.size:
+            return Part(y[None], weight[None])
+    values, where = np.unique(y, return_inverse=True)
+    return Part(values[None], np.bincount(where, weights=weight, minlength=values.size)[None])
+
+
+def _thin(part: Part, most: int) -> Part:
+    step = max(1, part.y.shape[1] // most)
+    return part if step == 1 else Part(part.y[:, ::step], part.weight[:, ::step] * step)
