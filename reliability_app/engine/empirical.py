@@ -75,7 +75,7 @@ def kaplan_meier(data: LifeData, *, confidence: float = 0.95) -> SurvivalSteps:
     _refuse_intervals(data, "Kaplan-Meier steps")
     failed = data.is_failed
     age, where = np.unique(data.lower[failed], return_inverse=True)
-    failures = np.bincount(where, weights=data.quantity[failed], minlength=age.size)
+    failures = np.bincount(where, weights=data.quantity[failed], minlength=age.size).astype(np.float64)
     at_risk = _total_from(data.lower, data.quantity, age) - _total_from(data.entered, data.quantity, age)
     with np.errstate(divide="ignore", invalid="ignore"):
         survival = np.cumprod(1.0 - failures / at_risk)
@@ -85,7 +85,13 @@ def kaplan_meier(data: LifeData, *, confidence: float = 0.95) -> SurvivalSteps:
         lower, upper = survival ** np.exp(width), survival ** np.exp(-width)
     known = survival > 0
     return SurvivalSteps(
-        age, survival, error, np.where(known, lower, np.nan), np.where(known, upper, np.nan), at_risk, failures
+        age,
+        survival,
+        error,
+        np.where(known, lower, np.nan),
+        np.where(known, upper, np.nan),
+        at_risk,
+        failures,
     )
 
 

@@ -18,7 +18,13 @@ from reliability_app.engine.existence import Outcome
 from reliability_app.engine.families import Family
 from reliability_app.engine.fit_cautions import cautions_of_fit
 from reliability_app.engine.life_data import LifeData
-from reliability_app.engine.life_measures import HazardMeasure, LifeMeasure, Measure, ScoreMeasure, SlopeMeasure
+from reliability_app.engine.life_measures import (
+    HazardMeasure,
+    LifeMeasure,
+    Measure,
+    ScoreMeasure,
+    SlopeMeasure,
+)
 
 Array = NDArray[np.float64]
 Number = float | Array
@@ -59,7 +65,7 @@ class Fit:
         if self.estimate is None:
             return dict.fromkeys(self.family.rules)
         mu, sigma = self.estimate.mu, self.estimate.sigma
-        return {name: rule.value(mu, sigma) for name, rule in self.family.rules.items()}
+        return {name: rule.of(mu, sigma) for name, rule in self.family.rules.items()}
 
     @property
     def standard_errors(self) -> dict[str, float | None]:
@@ -121,35 +127,33 @@ class Fit:
 
     def failure_probability(self, age: ArrayLike) -> Number:
         """Return the share of units that have failed by `age`."""
-        return _like(age, self.family.standard.cdf(self._score(age)))
+        return _like(age, self.family.standard.cdf(self.score(age)))
 
     def reliability(self, age: ArrayLike) -> Number:
         """Return the share of units still running at `age`."""
-        return _like(age, self.family.standard.survival(self._score(age)))
+        return _like(age, self.family.standard.survival(self.score(age)))
 
     def reliability_bounds(
         self, age: ArrayLike, *, confidence: float = 0.95, side: str = "lower", kind: str = "likelihood"
     ) -> Ends:
         """Return the bounds of the reliability at `age`."""
-        measure = ScoreMeasure(self._y(age))
-        return self._ends(
-            measure, self.family.standard.survival, age, (kind, side, confidence), falling=True
-        )
+        survival = self.family.standard.survival
+        return self._ends(self.score_measure(age), survival, age, (kind, side, confidence), falling=True)
 
     def hazard(self, age: ArrayLike) -> Number:
         """Return the hazard rate at `age`, failures per unit and unit of age."""
-        log_hazard = self._hazard_measure(age).terms(*_point(self._found())).value
-        return _like(age, self._hazard_of(age)(log_hazard))
+        log_hazard = self.hazard_measure(age).terms(*_point(self._found())).value
+        return _like(age, self.hazard_of(age)(log_hazard))
 
     def hazard_bounds(
         self, age: ArrayLike, *, confidence: float = 0.95, side: str = "lower", kind: str = "likelihood"
     ) -> Ends:
         """Return the bounds of the hazard rate at `age`."""
-        return self._ends(self._hazard_measure(age), self._hazard_of(age), age, (kind, side, confidence))
+        return self._ends(self.hazard_measure(age), self.hazard_of(age), age, (kind, side, confidence))
 
     def density(self, age: ArrayLike) -> Number:
         """Return the probability density at `age`, per unit of age."""
-        z = self._score(age)
+        z = self.score(age)
         ages = np.atleast_1d(np.asarray(age, dtype=np.float64))
         log_density = self.family.standard.log_density(z).value
         return _like(age, np.exp(log_density) / (self._found().sigma * ages))
@@ -165,8 +169,8 @@ class Fit:
         if (ages < given).any():
             raise DataError([f"A conditional reliability needs an age of at least the age reached ({given:g})."])
         standard = self.family.standard
-        start = standard.log_survival(self._score(given)).value
-        return _like(age, np.exp(standard.log_survival(self._score(ages)).value - start))
+        start = standard.log_survival(self.score(given)).value
+        return _like(age, np.exp(standard.log_survival(self.score(ages)).value - start))
 
     def parameter_bounds(
         self, name: str, *, confidence: float = 0.95, side: str = "lower", kind: str = "likelihood"
@@ -181,7 +185,7 @@ class Fit:
         def customary(value: Array) -> Array:
             mu = sample.shift + sample.spread * value if rule.is_of_mu else np.zeros_like(value)
             sigma = np.ones_like(value) if rule.is_of_mu else sample.spread * np.exp(-value)
-            return np.array([rule.value(*pair) for pair in zip(mu.tolist(), sigma.tolist(), strict=True)])
+            return np.array([rule.of(*pair) for pair in zip(mu.tolist(), sigma.tolist(), strict=True)])
 
         return self._ends(measure, customary, 0.0, (kind, side, confidence), falling=name == "sigma")
 
@@ -206,7 +210,12 @@ class Fit:
 
     @staticmethod
     def reading_ends(
-        interval: Interval, to_reading: Callable[[Array], Array], asked: ArrayLike, side: str, *, falling: bool
+        interval: Interval,
+        to_reading: Callable[[Array], Array],
+        asked: ArrayLike,
+        side: str,
+        *,
+        falling: bool,
     ) -> Ends:
         """Turn the interval of a measure into (lower, upper) of the reading that rises or falls with it."""
         low, high = interval[::-1] if falling else interval
@@ -232,7 +241,8 @@ class Fit:
             raise DataError(["An age must be a positive number."])
         return self._found().sample.to_y(ages)
 
-    def _score(self, age: ArrayLike) -> Array:
+    def score(self, age: ArrayLike) -> Array:
+        """Return z at `age`, always as an array."""
         found = self._found()
         return found.a + found.b * self._y(age)
 
@@ -240,10 +250,16 @@ class Fit:
         sample = self._found().sample
         return np.exp(sample.shift + sample.spread * y)
 
-    def _hazard_measure(self, age: ArrayLike) -> HazardMeasure:
+    def score_measure(self, age: ArrayLike) -> ScoreMeasure:
+        """Return z at `age` as a measure to be bounded."""
+        return ScoreMeasure(self._y(age))
+
+    def hazard_measure(self, age: ArrayLike) -> HazardMeasure:
+        """Return the logarithm of the hazard at `age` as a measure to be bounded."""
         return HazardMeasure(self._y(age), self.family.standard)
 
-    def _hazard_of(self, age: ArrayLike) -> Callable[[Array], Array]:
+    def hazard_of(self, age: ArrayLike) -> Callable[[Array], Array]:
+        """Return the function that turns the hazard measure at `age` into a hazard rate."""
         ages = np.atleast_1d(np.asarray(age, dtype=np.float64))
         spread = self._found().sample.spread
         return lambda log_hazard: np.exp(log_hazard) / (spread * ages)

@@ -91,9 +91,7 @@ class LifeData:
         return cls._validated(_vector(lower, "lower"), _vector(upper, "upper"), quantity, entered)
 
     @classmethod
-    def _validated(
-        cls, lower: Array, upper: Array, quantity: ArrayLike | None, entered: ArrayLike | None
-    ) -> LifeData:
+    def _validated(cls, lower: Array, upper: Array, quantity: ArrayLike | None, entered: ArrayLike | None) -> LifeData:
         if lower.size == 0:
             raise DataError(["There are no lives: give at least one unit."])
         counts = np.ones_like(lower) if quantity is None else _vector(quantity, "quantity")
@@ -112,7 +110,7 @@ class LifeData:
     @property
     def is_failed(self) -> Mask:
         """Which records are failures at a known age."""
-        return self.lower == self.upper
+        return np.equal(self.lower, self.upper)
 
     @property
     def is_running(self) -> Mask:

@@ -19,6 +19,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from reliability_app.engine.families.base import Derivatives, StandardDistribution
+from reliability_app.engine.families.interval import log_interval
 from reliability_app.engine.sample import IntervalPart, Part, Sample
 
 Array = NDArray[np.float64]
@@ -54,16 +55,14 @@ class Terms:
 def log_likelihood(sample: Sample, standard: StandardDistribution, a: Array, b: Array) -> Terms:
     """Evaluate at the points (a, b), each of shape (points,).
 
-    A batch of B samples is evaluated at B points, sample by sample; one sample may be evaluated at any number of points.
+    A batch of B samples is evaluated at B points, sample by sample; one sample at any number of points.
     Values outside the parameter space come out as -inf or NaN, never as an exception.
     """
     with np.errstate(over="ignore", invalid="ignore", divide="ignore", under="ignore"):
         terms = _exact(sample.failed, a, b, standard.log_density)
         failures = sample.failed.weight.sum(axis=1)
         zero = np.zeros_like(a)
-        terms += Terms(
-            failures * np.log(b) + zero, zero, failures / b + zero, zero, zero, -failures / (b * b) + zero
-        )
+        terms += Terms(failures * np.log(b) + zero, zero, failures / b + zero, zero, zero, -failures / (b * b) + zero)
         for part, function, sign in (
             (sample.running, standard.log_survival, 1.0),
             (sample.left, standard.log_cdf, 1.0),
@@ -71,7 +70,7 @@ def log_likelihood(sample: Sample, standard: StandardDistribution, a: Array, b: 
         ):
             if part.y.shape[1]:
                 terms += _exact(part, a, b, function).scaled(sign)
-        if sample.between.low.shape[1]:
+        if sample.between.middle.shape[1]:
             terms += _interval(sample.between, a, b, standard)
     return terms
 
@@ -97,22 +96,23 @@ def _exact(part: Part, a: Array, b: Array, function: Callable[[Array], Derivativ
 
 
 def _total(values: Array, weights: Array) -> Array:
-    """Sum values times weights along n, where one row of weights may serve all rows of values."""
-    if weights.shape[0] == 1:
-        return values @ weights[0]
-    return np.einsum("ij,ij->i", values, weights)
+    """Sum values times weights along n, where one row of weights may serve all rows of values.
+
+    Not by a matrix product: its threads wait for each other whenever another program is busy.
+    """
+    total = np.einsum("ij,j->i", values, weights[0]) if len(weights) == 1 else np.einsum("ij,ij->i", values, weights)
+    return np.asarray(total)
 
 
 def _interval(part: IntervalPart, a: Array, b: Array, standard: StandardDistribution) -> Terms:
-    low, high, weight = part.low, part.high, part.weight
-    shift, stretch = a[:, None], b[:, None]
-    gap = standard.log_cdf_difference(shift + stretch * low, shift + stretch * high)
-    across = low * high * gap.d_low_high
+    middle, half, weight = part.middle, part.half, part.weight
+    gap = log_interval(standard, a[:, None] + b[:, None] * middle, b[:, None] * half)
+    across = middle * half * gap.d_middle_half
     return Terms(
         _total(gap.value, weight),
-        _total(gap.d_low + gap.d_high, weight),
-        _total(low * gap.d_low + high * gap.d_high, weight),
-        _total(gap.d_low_low + 2.0 * gap.d_low_high + gap.d_high_high, weight),
-        _total(low * gap.d_low_low + (low + high) * gap.d_low_high + high * gap.d_high_high, weight),
-        _total(low * low * gap.d_low_low + 2.0 * across + high * high * gap.d_high_high, weight),
+        _total(gap.d_middle, weight),
+        _total(middle * gap.d_middle + half * gap.d_half, weight),
+        _total(gap.d_middle_middle, weight),
+        _total(middle * gap.d_middle_middle + half * gap.d_middle_half, weight),
+        _total(middle * middle * gap.d_middle_middle + 2.0 * across + half * half * gap.d_half_half, weight),
     )

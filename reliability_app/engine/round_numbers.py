@@ -8,6 +8,7 @@ from decimal import Decimal
 from math import ceil, floor, log10
 
 THOUSANDS = "\u202f"  # narrow no-break space, the separator of ISO 80000-1
+_GROUPED_FROM = 10_000  # four figures are read at a glance
 _SUPERSCRIPTS = str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹")
 _MOST_MULTIPLES = 4000
 
@@ -31,9 +32,7 @@ def round_step_of_at_least(size: float) -> Decimal:
             step = Decimal(digit).scaleb(exponent + shift)
             if float(step) >= size * (1.0 - 1e-12):
                 return step
-    raise ArithmeticError(
-        f"No round step of at least {size!r}."
-    )  # unreachable: 1eN+1 exceeds any size below it
+    raise ArithmeticError(f"No round step of at least {size!r}.")
 
 
 def multiples(step: Decimal, low: float, high: float) -> list[Decimal]:
@@ -73,16 +72,16 @@ class Room:
 
 
 def plain_text(value: Decimal, decimals: int | None = None) -> str:
-    """Write a number with thousands apart: with `decimals` places, or with as many as it has."""
+    """Write a number, from 10 000 with thousands apart: with `decimals` places, or with as many as it has."""
     if decimals is None:
         value = value.normalize()
         decimals = max(0, -_exponent(value))
-    text = f"{value:,.{decimals}f}"
+    text = f"{value:,.{decimals}f}" if abs(value) >= _GROUPED_FROM else f"{value:.{decimals}f}"
     return text.replace(",", THOUSANDS).replace("-", "\u2212")
 
 
 def power_text(value: Decimal) -> str:
-    """Write a number as a power of ten: 10⁶, 2·10⁻³, 1.25·10⁷; 1 and 10 stay as they are."""
+    """Write a number as a power of ten: 10⁶, 2×10⁻³, 1.25×10⁷; 1 and 10 stay as they are."""
     value = value.normalize()
     if value == 0:
         return "0"
@@ -91,7 +90,7 @@ def power_text(value: Decimal) -> str:
         return plain_text(value)
     mantissa = value.scaleb(-exponent)
     power = "10" + str(exponent).translate(_SUPERSCRIPTS)
-    return power if mantissa == 1 else f"{plain_text(mantissa)}·{power}"
+    return power if mantissa == 1 else f"{plain_text(mantissa)}×{power}"
 
 
 def decimals_of(values: Iterable[Decimal]) -> int:

@@ -39,17 +39,17 @@ class Part:
 
 @dataclass(frozen=True, eq=False)
 class IntervalPart:
-    """Found-failed records: y of both ages and weights, shape (rows, n)."""
+    """Found-failed records: middle and half width of each interval in y, and weights, shape (rows, n)."""
 
-    low: Array
-    high: Array
+    middle: Array
+    half: Array
     weight: Array
 
     def rows(self, index: Index) -> IntervalPart:
         """Return the chosen rows; a part that serves the whole batch stays whole."""
-        if self.low.shape[0] == 1:
+        if self.middle.shape[0] == 1:
             return self
-        return IntervalPart(self.low[index], self.high[index], self.weight[index])
+        return IntervalPart(self.middle[index], self.half[index], self.weight[index])
 
 
 @dataclass(frozen=True, eq=False)
@@ -116,15 +116,21 @@ def sample_of(data: LifeData) -> Sample:
     return Sample(
         failed=_summed((log_failed - shift) / spread, weights[failed]),
         running=_summed(standard(data.lower[running]), weights[running]),
-        between=IntervalPart(
-            standard(data.lower[between])[None], standard(data.upper[between])[None], weights[between][None]
-        ),
+        between=_between(data, between, shift, spread),
         left=_summed(standard(data.upper[left]), weights[left]),
         entered=_summed(standard(data.entered[late]), weights[late]),
         shift=shift,
         spread=spread,
         sum_log_life=np.array([float(weights[failed] @ log_failed)]),
     )
+
+
+def _between(data: LifeData, chosen: Mask, shift: float, spread: float) -> IntervalPart:
+    lower, upper = data.lower[chosen], data.upper[chosen]
+    # From the ratio of the ages, so that the narrowest interval keeps its width to the last digit.
+    half = 0.5 * np.log1p((upper - lower) / lower)
+    middle = (np.log(lower) + half - shift) / spread
+    return IntervalPart(middle[None], (half / spread)[None], data.quantity[chosen][None])
 
 
 def _centre(log_failed: Array, data: LifeData) -> tuple[float, float]:
@@ -144,7 +150,7 @@ def _summed(y: Array, weight: Array) -> Part:
         if np.unique(drawn).size > 0.9 * drawn.size:
             return Part(y[None], weight[None])
     values, where = np.unique(y, return_inverse=True)
-    return Part(values[None], np.bincount(where, weights=weight, minlength=values.size)[None])
+    return Part(values[None], np.bincount(where, weights=weight, minlength=values.size).astype(np.float64)[None])
 
 
 def _thin(part: Part, most: int) -> Part:

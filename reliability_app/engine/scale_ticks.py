@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Iterator, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from decimal import Decimal
 from itertools import islice, pairwise
+from math import inf
 
 from reliability_app.engine.round_numbers import (
     Room,
@@ -17,8 +18,10 @@ from reliability_app.engine.round_numbers import (
 )
 
 Position = Callable[[Decimal], float]
+Candidates = Callable[[Decimal, float], list[Decimal]]
 
-_REFINING_STEPS = 60  # twenty decades of 1-2-5 steps: more than a float can tell apart
+_FEWEST_SEEN = 2
+_MOST_STEPS = 60  # twenty decades of 1-2-5 steps: more than a float can tell apart
 _PLAIN_AGES = (Decimal("0.001"), Decimal(1_000_000))  # outside, a whole axis is written in powers of ten
 _LEAST_PLAIN_PERCENT = Decimal("0.0001")
 
@@ -42,40 +45,87 @@ class Tick:
     major: bool
 
 
-def refined(
-    candidates: Callable[[Decimal], list[Decimal]],
-    position: Position,
-    *,
-    start: float,
-    gap: float,
-) -> list[Decimal]:
-    """Choose multiples of round steps: all of the finest even step that has room, then finer ones where they fit.
+@dataclass(frozen=True)
+class Zoom:
+    """What is looked at, and how close labels may stand.
+
+    Attributes
+    ----------
+    low, high : float
+        The visible range of positions.
+    gap : float
+        The least distance between two labels.
+    start, finest : float
+        The largest and the smallest step worth trying: the span of the values, and that of the gap where
+        values lie closest.
+    steps_at_most : float
+        Where steps are mixed, the most steps from zero that a value may be: on a log scale 1500 is a round number
+        among the hundreds and thousands, 1700 is not.
+    """
+
+    low: float
+    high: float
+    gap: float
+    start: float
+    finest: float
+    steps_at_most: float = inf
+
+    def seen(self, values: Sequence[Decimal], position: Position) -> int:
+        """Count the values inside the visible range."""
+        return sum(self.low <= position(value) <= self.high for value in values)
+
+
+def fullest(usual: Sequence[Decimal], candidates: Candidates, position: Position, zoom: Zoom) -> list[Decimal]:
+    """Return the usual values, or multiples of round steps instead or beside them, whichever shows most.
+
+    Values just outside the range count as taken, so that labels stand still while the range moves; only where
+    that would leave fewer than two in sight are they forgotten.
 
     Parameters
     ----------
+    usual : sequence of Decimal
+        Values that have room beside each other.
     candidates : callable
-        Gives the values to try for a step.
+        Gives the multiples of a step in the visible range, widened on both sides by the second argument.
     position : callable
         Where a value stands on the scale.
-    start : float
-        The span of the values; no step is larger.
-    gap : float
-        The least distance between two positions.
+    zoom : Zoom
+        The range and the room.
     """
-    room = Room(gap)
-    taken: list[Decimal] = []
+    reach = 0.5 * (zoom.high - zoom.low)
+    choices = [list(usual)]
+    choices.append(_multiples_with_room(lambda step: candidates(step, reach), position, zoom))
+    choices.append(_multiples_with_room(lambda step: candidates(step, reach), position, zoom, given=usual))
+    best = max(choices, key=lambda values: zoom.seen(values, position))
+    if zoom.seen(best, position) >= _FEWEST_SEEN:
+        return best
+    closer = replace(zoom, finest=zoom.finest / 50.0)
+    inside = _multiples_with_room(lambda step: candidates(step, 0.0), position, closer)
+    return max(best, inside, key=lambda values: zoom.seen(values, position))
+
+
+def _multiples_with_room(
+    candidates: Callable[[Decimal], list[Decimal]],
+    position: Position,
+    zoom: Zoom,
+    given: Sequence[Decimal] = (),
+) -> list[Decimal]:
+    """Choose multiples: all of the finest round step that fits everywhere, then finer ones where they fit."""
+    room = Room(zoom.gap)
+    taken = [value for value in given if room.accept(position(value))]
     even: list[Decimal] | None = None
-    for step in islice(round_steps(start), _REFINING_STEPS):
+    for step in islice(round_steps(zoom.start), _MOST_STEPS):
+        if float(step) < 0.5 * zoom.finest:  # half: 1-2-5 steps do not all hold each other's multiples
+            break
         values = candidates(step)
         distances = [right - left for left, right in pairwise(sorted(map(position, values)))]
-        if distances and max(distances) < gap:
-            break
-        if not distances or min(distances) >= gap:
+        if not distances or min(distances) >= zoom.gap:
             even = values
             continue
         taken += [value for value in even or () if room.accept(position(value))]
         even = None
-        taken += [value for value in values if room.accept(position(value))]
+        near = [value for value in values if float(value) <= zoom.steps_at_most * float(step)]
+        taken += [value for value in near if room.accept(position(value))]
     return taken + [value for value in even or () if room.accept(position(value))]
 
 
@@ -88,10 +138,10 @@ def built(
     visible: tuple[float, float],
     minor_gap: float,
 ) -> list[Tick]:
-    """Make the visible ticks, ascending: the labelled ones and, where they have room, round values between them.
+    """Make the visible ticks, ascending: the labelled ones and, where there is room, round values between.
 
-    `labels` writes the visible ones of `taken` all at once; `between` gives the subdivisions of an interval from the
-    finest to the coarsest, of which the first that fits is used.
+    `labels` writes the visible ones of `taken` all at once; `between` gives the subdivisions of an interval
+    from the finest to the coarsest, of which the first that fits is used.
     """
     low, high = visible
     slack = 1e-9 * (high - low)
@@ -109,7 +159,7 @@ def built(
 
 
 def between_values(first: Decimal, last: Decimal) -> Iterator[list[Decimal]]:
-    """Give subdivisions of an interval of ages: decades over a wide one, 2 to 9 in a decade, else even steps."""
+    """Give subdivisions of an interval: decades where it is wide, 2 to 9 inside a decade, else even steps."""
     if first > 0 and last > 10 * first:
         decades, value = [], first * 10
         while value < last:
@@ -147,11 +197,11 @@ def percent_labels(percents: Sequence[Decimal]) -> list[str]:
 
 
 def age_labels(ages: Sequence[Decimal], *, decimals: int | None = None) -> list[str]:
-    """Write the ages of one axis alike: plainly, or all as powers of ten where that is shorter for large or tiny ones.
+    """Write the ages of one axis alike: plainly, or all as powers of ten where ages are large or tiny.
 
     With `decimals` every plain age has that many places, as fits an even step.
     """
-    plain = [plain_text(age, decimals) for age in ages]
+    plain = [plain_text(age, decimals if age else 0) for age in ages]
     sizes = [abs(age) for age in ages if age != 0]
     least, largest = _PLAIN_AGES
     if not sizes or (max(sizes) <= largest and min(sizes) >= least):

@@ -74,7 +74,7 @@ def _moments(estimate: Estimate) -> _Moments:
 def _life_end(moments: _Moments, z: float, level: float) -> float:
     root_n = np.sqrt(moments.n)
     factor = float(nctdtrit(moments.n - 1.0, -z * root_n, level)) / root_n
-    return moments.mean - factor * moments.deviation
+    return float(moments.mean - factor * moments.deviation)
 
 
 def _score_end(moments: _Moments, y: float, level: float) -> float:

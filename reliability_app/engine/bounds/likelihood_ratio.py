@@ -48,7 +48,13 @@ def outline_interval(measure: Measure, region: Region) -> tuple[Array, Array]:
 
 
 def _refined(
-    estimate: Estimate, measure: Measure, region: Region, best: NDArray[np.intp], *, sign: float, coarse: Array
+    estimate: Estimate,
+    measure: Measure,
+    region: Region,
+    best: NDArray[np.intp],
+    *,
+    sign: float,
+    coarse: Array,
 ) -> Array:
     a, b = region.a[best].copy(), region.b[best].copy()
     target = float(estimate.terms.value[0]) - region.drop
@@ -66,9 +72,10 @@ def _refined(
     # Newton's method may run to another stationary point; the outline's own extreme is then better by much.
     spread = np.abs(coarse) + 1.0
     lost = ~(settled & np.isfinite(value) & (sign * (value - coarse) >= -1e-3 * spread))
-    for row in np.flatnonzero(lost & np.isfinite(coarse)):
+    for row in np.flatnonzero(lost & np.isfinite(coarse)).tolist():
         value[row] = _by_search(estimate, measure, region, int(best[row]), row, sign)
-    return np.where(np.isfinite(coarse), value, coarse)
+    here = measure.terms(np.array([estimate.a]), np.array([estimate.b])).value
+    return np.where(np.isfinite(coarse) & (sign * (value - here) >= 0), value, sign * np.inf)
 
 
 def _cross(likelihood: Terms, asked: Terms) -> tuple[Array, Array]:
@@ -98,9 +105,7 @@ def _step(likelihood: Terms, asked: Terms, gap: Array, cross: Array) -> tuple[Ar
     )
 
 
-def _by_search(
-    estimate: Estimate, measure: Measure, region: Region, best: int, row: int, sign: float
-) -> float:
+def _by_search(estimate: Estimate, measure: Measure, region: Region, best: int, row: int, sign: float) -> float:
     """Search the direction of the extreme between the neighbours of the best outline point."""
     offsets = np.stack([region.a - estimate.a, region.b - estimate.b], axis=-1)
     left, right = offsets[(best - 2) % len(offsets)], offsets[(best + 2) % len(offsets)]

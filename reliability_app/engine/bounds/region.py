@@ -11,17 +11,20 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from reliability_app.engine.errors import BoundUnavailable
 from reliability_app.engine.estimate import Estimate
 
 Array = NDArray[np.float64]
 Mask = NDArray[np.bool_]
 
-_EVALUATIONS_FOR_RAYS = 100_000
-_FEWEST_RAYS, _MOST_RAYS = 24, 192
-_OUTLINE_POINTS = 960
+_EVALUATIONS_FOR_RAYS = 40_000
+_FEWEST_RAYS, _MOST_RAYS = 24, 120
+_OUTLINE_POINTS = 480
 _MOST_STEPS = 60
 _DISTANCE_REACHED = 1e-9
 _NEAREST_TO_ZERO = 1e-9
+# Rays in whitened steps are as long as the root where the log-likelihood is quadratic.
+_WILDEST = 4.0
 
 
 @dataclass(frozen=True, eq=False)
@@ -56,15 +59,25 @@ def likelihood_region(estimate: Estimate, root: float) -> Region:
     whitening = np.linalg.cholesky(estimate.covariance_ab)
     steps = np.stack([np.cos(angles), np.sin(angles)], axis=-1) @ whitening.T
     radius, closed = ray_lengths(estimate, steps, root)
+    _refuse_wild_region(estimate, radius, closed, root)
     if closed.all():
         radius, steps = _fill_in(radius, whitening)
         closed = np.ones(radius.size, dtype=bool)
     return Region(estimate.a + radius * steps[:, 0], estimate.b + radius * steps[:, 1], closed, drop)
 
 
+def _refuse_wild_region(estimate: Estimate, radius: Array, closed: Mask, root: float) -> None:
+    """Refuse where late entry bends the log-likelihood so far from concave that the outline cannot be trusted."""
+    if estimate.sample.entered.y.shape[1] and (not closed.all() or radius.max() > _WILDEST * root):
+        raise BoundUnavailable(
+            "The units came under observation so late that the likelihood is nearly flat to one side, and no "
+            "likelihood-ratio bound can be given at this confidence: units watched from an earlier age would help."
+        )
+
+
 def _ray_count(estimate: Estimate) -> int:
     sample = estimate.sample
-    records = sample.failed.y.shape[1] + sample.running.y.shape[1] + sample.between.low.shape[1] + 1
+    records = sample.failed.y.shape[1] + sample.running.y.shape[1] + sample.between.middle.shape[1] + 1
     return int(np.clip(_EVALUATIONS_FOR_RAYS // records, _FEWEST_RAYS, _MOST_RAYS)) // 8 * 8
 
 
@@ -99,6 +112,8 @@ def ray_lengths(estimate: Estimate, steps: Array, root: float) -> tuple[Array, M
         active = active[~settled & closed[active]]
         if not active.size:
             break
+    # A ray that never gets far enough down runs to an edge at infinity (possible where units entered late).
+    closed[active] = False
     return radius, closed
 
 
@@ -106,8 +121,8 @@ def _fill_in(radius: Array, whitening: Array) -> tuple[Array, Array]:
     """Interpolate the radii by a periodic trigonometric polynomial; returns radii and whitened steps."""
     count = radius.size
     spectrum = np.fft.rfft(np.log(radius))
-    points = _OUTLINE_POINTS // count * count if _OUTLINE_POINTS >= count else count
+    points = _OUTLINE_POINTS // count * count
     spectrum[-1] *= 0.5 if points > count else 1.0
-    dense = np.exp(np.fft.irfft(spectrum, points) * (points / count))
+    dense = np.exp(np.fft.irfft(spectrum, points).astype(np.float64) * (points / count))
     angles = np.arange(points) * (2.0 * np.pi / points)
     return dense, np.stack([np.cos(angles), np.sin(angles)], axis=-1) @ whitening.T

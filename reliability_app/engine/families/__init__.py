@@ -1,7 +1,11 @@
 """The ordered catalogue of families."""
 
 from reliability_app.engine.errors import UnknownName
-from reliability_app.engine.families.base import Derivatives, DifferenceDerivatives, Family, StandardDistribution
+from reliability_app.engine.families.base import (
+    Derivatives,
+    Family,
+    StandardDistribution,
+)
 from reliability_app.engine.families.exponential import EXPONENTIAL
 from reliability_app.engine.families.lognormal import LOGNORMAL
 from reliability_app.engine.families.weibull import WEIBULL
@@ -22,7 +26,6 @@ __all__ = [
     "CATALOGUE",
     "FAMILY_NAMES",
     "Derivatives",
-    "DifferenceDerivatives",
     "Family",
     "StandardDistribution",
     "family",

@@ -22,17 +22,6 @@ class Derivatives(NamedTuple):
     second: Array
 
 
-class DifferenceDerivatives(NamedTuple):
-    """ln(F(high) - F(low)) with its first and second derivatives in both arguments."""
-
-    value: Array
-    d_low: Array
-    d_high: Array
-    d_low_low: Array
-    d_low_high: Array
-    d_high_high: Array
-
-
 class StandardDistribution(ABC):
     """The distribution of z = (y - mu)/sigma: formulas and limits only.
 
@@ -54,10 +43,6 @@ class StandardDistribution(ABC):
         """Return ln F(z)."""
 
     @abstractmethod
-    def log_cdf_gap(self, low: Array, high: Array) -> Array:
-        """Return ln(F(high) - F(low)) for finite low < high, taken in the smaller tail."""
-
-    @abstractmethod
     def cdf(self, z: Array) -> Array:
         """Return F(z)."""
 
@@ -77,20 +62,6 @@ class StandardDistribution(ABC):
     def log_moment(self, power: Array) -> Array:
         """Return ln E exp(power * z), the logarithm of a moment of the life itself."""
 
-    def log_cdf_difference(self, low: Array, high: Array) -> DifferenceDerivatives:
-        """Return ln(F(high) - F(low)) with its derivatives, for finite low < high."""
-        value = self.log_cdf_gap(low, high)
-        at_low, at_high = self.log_density(low), self.log_density(high)
-        ratio_low, ratio_high = np.exp(at_low.value - value), np.exp(at_high.value - value)
-        return DifferenceDerivatives(
-            value,
-            -ratio_low,
-            ratio_high,
-            -ratio_low * (at_low.first + ratio_low),
-            ratio_low * ratio_high,
-            ratio_high * (at_high.first - ratio_high),
-        )
-
     def log_hazard(self, z: Array) -> Derivatives:
         """Return ln(f(z)/S(z))."""
         density, survival = self.log_density(z), self.log_survival(z)
@@ -107,7 +78,7 @@ class Rule(Enum):
     SIGMA = "sigma"
     ONE_OVER_SIGMA = "1/sigma"
 
-    def value(self, mu: float, sigma: float) -> float:
+    def of(self, mu: float, sigma: float) -> float:
         """Return the customary parameter."""
         match self:
             case Rule.MU:

@@ -10,9 +10,6 @@ from reliability_app.engine.families.base import Array, Derivatives, StandardDis
 _HALF_LOG_TWO_PI = 0.5 * np.log(2.0 * np.pi)
 _ROOT_HALF = np.sqrt(0.5)
 _ROOT_TWO_OVER_PI = np.sqrt(2.0 / np.pi)
-_NODES, _WEIGHTS = np.polynomial.legendre.leggauss(12)
-# A gap whose density varies by less than about e over its width is integrated; a wider one is subtracted.
-_NARROW = 1.0
 
 
 class Normal(StandardDistribution):
@@ -31,19 +28,6 @@ class Normal(StandardDistribution):
         """Return ln F(z), the mirror image of ln S."""
         mirrored = self.log_survival(-z)
         return Derivatives(mirrored.value, -mirrored.first, mirrored.second)
-
-    def log_cdf_gap(self, low: Array, high: Array) -> Array:
-        """Return ln(F(high) - F(low)): by Gauss-Legendre where narrow, by subtraction in the smaller tail else."""
-        flip = low + high > 0.0
-        left, right = np.where(flip, -high, low), np.where(flip, -low, high)
-        middle, half = 0.5 * (left + right), 0.5 * (high - low)
-        narrow = half * (np.abs(middle) + 1.0) < _NARROW
-        offsets = np.where(narrow, half, 0.0)[..., None] * _NODES
-        inside = np.sum(_WEIGHTS * np.exp(-offsets * (middle[..., None] + 0.5 * offsets)), axis=-1)
-        integrated = -0.5 * middle * middle - _HALF_LOG_TWO_PI + np.log(half) + np.log(inside)
-        upper = log_ndtr(right)
-        ratio = np.where(narrow, -1.0, log_ndtr(left) - upper)
-        return np.where(narrow, integrated, upper + np.log1p(-np.exp(ratio)))
 
     def cdf(self, z: Array) -> Array:
         """Return F(z)."""

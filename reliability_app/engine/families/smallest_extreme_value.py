@@ -19,7 +19,7 @@ class SmallestExtremeValue(StandardDistribution):
     def log_density(self, z: Array) -> Derivatives:
         """Return ln f(z) = z - exp z."""
         x = np.exp(z)
-        return Derivatives(z - x, 1.0 - x, -x)
+        return Derivatives(z - x, -np.expm1(z), -x)
 
     def log_survival(self, z: Array) -> Derivatives:
         """Return ln S(z) = -exp z."""
@@ -35,15 +35,6 @@ class SmallestExtremeValue(StandardDistribution):
             value = np.where(tail < 0.5, np.log1p(-tail), value)
             slope = np.where(x > 0.0, x * tail / -np.expm1(-x), 1.0)
         return Derivatives(value, slope, slope * _one_minus_x_minus_slope(x, slope))
-
-    def log_cdf_gap(self, low: Array, high: Array) -> Array:
-        """Return ln(exp(-e^low) - exp(-e^high)), whose second factor needs no subtraction of large numbers."""
-        x = np.exp(low)
-        growth = np.expm1(high - low)
-        gap = x * growth
-        with np.errstate(divide="ignore"):
-            small = low + np.log(growth) - 0.5 * gap
-            return -x + np.where(gap < _FIRST_ORDER_BELOW, small, np.log(-np.expm1(-gap)))
 
     def cdf(self, z: Array) -> Array:
         """Return F(z)."""

@@ -1,0 +1,93 @@
+"""The composition root: start order, the last-resort handler, and the window on a session.
+
+Start order: application object, colours, the frame of the window painted; then the numerical and chart libraries in a
+thread, so that the frame stays alive; then the contents; then the file named on the command line, or unsaved work found.
+"""
+
+from __future__ import annotations
+
+import sys
+import threading
+from importlib import import_module
+from pathlib import Path
+
+from PySide6.QtCore import QObject, QTimer
+from PySide6.QtWidgets import QApplication, QMessageBox
+
+from reliability_app.windows.crash import install_last_resort
+from reliability_app.windows.main_window import APPLICATION_TITLE, MainWindow
+from reliability_app.windows.settings import WindowSettings
+from reliability_app.windows.theme import apply_scheme
+
+HEAVY_LIBRARIES = ("numpy", "scipy.special", "scipy.optimize", "pyqtgraph")
+_LOOK_AGAIN_MS = 10
+
+
+def run_window(file: Path | None) -> int:
+    """Open the window, on a file if one is named, and return the exit status when it is closed."""
+    application = QApplication(sys.argv[:1])
+    application.setApplicationName("rigpaper")
+    application.setApplicationDisplayName(APPLICATION_TITLE)
+    application.setDesktopFileName("rigpaper")
+    settings = WindowSettings()
+    apply_scheme(application, settings.scheme)
+    window = MainWindow(settings)
+    window.show()
+    start = Start(window, file)
+    QTimer.singleShot(0, start.begin)
+    return application.exec()
+
+
+class Start(QObject):
+    """Brings in the heavy libraries beside the painted frame, then fills the window."""
+
+    def __init__(self, window: MainWindow, file: Path | None) -> None:
+        super().__init__(window)
+        self._window, self._file = window, file
+        self._imports = threading.Thread(target=_import_heavy_libraries, name="imports", daemon=True)
+
+    def begin(self) -> None:
+        """Start importing; the contents follow when that is done."""
+        self._imports.start()
+        self._look()
+
+    def _look(self) -> None:
+        if self._imports.is_alive():
+            QTimer.singleShot(_LOOK_AGAIN_MS, self._look)
+            return
+        self._fill()
+
+    def _fill(self) -> None:
+        from reliability_app.session.document import Session
+        from reliability_app.session.messages import Messages
+
+        window = self._window
+        window.fill(Session(), Messages())
+        install_last_resort(window.files.keep_recovery_copy, window.messages)
+        if self._file is not None:
+            window.files.open(self._file)
+        else:
+            self._offer_recovery()
+
+    def _offer_recovery(self) -> None:
+        from reliability_app.session.recovery import found_copies
+
+        for copy in found_copies():
+            what = copy.original.name if copy.original else "a session that was never saved"
+            answer = QMessageBox.question(
+                self._window,
+                "Unsaved work found",
+                f"Rigpaper ended without closing {what}. Its unsaved work of {copy.written:%Y-%m-%d %H:%M} was kept. "
+                "Open it? (No deletes the copy.)",
+                QMessageBox.StandardButton.Yes | QMessageBox.StandardButton.No | QMessageBox.StandardButton.Ignore,
+            )
+            if answer == QMessageBox.StandardButton.Yes:
+                self._window.files.recover(copy)
+                return
+            if answer == QMessageBox.StandardButton.No:
+                copy.remove()
+
+
+def _import_heavy_libraries() -> None:
+    for name in HEAVY_LIBRARIES:
+        import_module(name)

@@ -1,0 +1,273 @@
+"""Sorts out what the columns of a pasted table are: by their headings where there are any, else by what they hold."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Callable, Collection, Mapping, Sequence
+from dataclasses import dataclass
+from itertools import pairwise
+
+from reliability_app.session.headings import INTERVAL_END, INTERVAL_START, read_heading
+from reliability_app.session.numbers import looks_numeric
+from reliability_app.session.row_reading import BUILT_IN_COLUMNS, HEADINGS, read_life_entry
+from reliability_app.session.states import STATES, is_yes, read_answer, read_state
+
+_SAMPLE = 400
+_HEADING_LINES = 10
+# A life list typed in one line, as textbooks print them; shorter ones may be one row of a table.
+_SHORTEST_LIST = 5
+_MISSING = re.compile(r"|[-\u2013\u2014?.]+|n/?a|nan|none|null|#n/?a", re.IGNORECASE)
+
+
+@dataclass(frozen=True)
+class Columns:
+    """What each column of a source was taken for.
+
+    `keys` holds, per source column, a key of the unit table or the name of a column of the user's own; None for a
+    column without any text. `is_interval` tells that life and until are the two ends of an interval in every row.
+    """
+
+    keys: tuple[str | None, ...]
+    is_interval: bool = False
+
+
+def is_missing(cell: str) -> bool:
+    """Return whether a cell is empty or says in a usual way that there is nothing ("n/a", "-")."""
+    return _MISSING.fullmatch(cell) is not None
+
+
+def is_life_like(cell: str) -> bool:
+    """Return whether a cell is a number or an entry like "1500+", "200-400" or "812 h"."""
+    return looks_numeric(cell) or read_life_entry(cell) is not None or _number_with_unit(cell)
+
+
+def _number_with_unit(cell: str) -> bool:
+    number, _, word = cell.rpartition(" ")
+    return word.isalpha() and looks_numeric(number)
+
+
+def find_heading_row(rows: Sequence[Sequence[str]]) -> int | None:
+    """Return the place of the row of headings among the first rows, None if there is none.
+
+    A row of headings holds no number and either a known heading, or text above columns of numbers; a known state
+    above other states is not a heading. Title lines may stand above it.
+    """
+    for place, row in enumerate(rows[:_HEADING_LINES]):
+        known = [cell for cell in row if read_heading(cell)]
+        if len(known) >= 2 and _may_be_headings(rows, place):
+            return place
+        if sum(map(looks_numeric, row)) >= 1 and sum(map(bool, row)) > 1:
+            break
+    if not rows or not _may_be_headings(rows, 0):
+        return None
+    if any(read_heading(cell) for cell in rows[0]):
+        return 0
+    return 0 if _text_above_numbers(rows) else None
+
+
+def _may_be_headings(rows: Sequence[Sequence[str]], place: int) -> bool:
+    below = rows[place + 1 : place + 1 + _SAMPLE]
+    for column, cell in enumerate(rows[place]):
+        if is_life_like(cell):
+            return False
+        if read_state(cell) is not None:
+            under = [row[column] for row in below if column < len(row) and row[column]]
+            if not under or any(read_state(text) is not None and not text.isdigit() for text in under):
+                return False
+    return any(rows[place])
+
+
+def _text_above_numbers(rows: Sequence[Sequence[str]]) -> bool:
+    for column, cell in enumerate(rows[0]):
+        under = [row[column] for row in rows[1:_SAMPLE] if column < len(row) and row[column]]
+        if under and not is_missing(cell) and sum(map(is_life_like, under)) >= 0.8 * len(under):
+            return True
+    return False
+
+
+def guess_columns(
+    columns: Sequence[Sequence[str]], headings: Sequence[str], known_extras: Collection[str] = ()
+) -> Columns:
+    """Say what each column is.
+
+    Parameters
+    ----------
+    columns : sequence of sequence of str
+        The cells below the headings, column by column.
+    headings : sequence of str
+        One text per column; all "" for a table without headings.
+    known_extras : collection of str
+        The user's own columns that the table has already: headings that name one of them do so whatever they mean.
+    """
+    held = [[cell for cell in column if cell][:_SAMPLE] for column in columns]
+    if not any(headings) and (layout := _own_layout(columns)):
+        return Columns(layout)
+    keys: list[str | None] = [None] * len(columns)
+    is_interval = _take_headings(keys, held, headings, known_extras)
+    _take_contents(keys, held, headings)
+    _name_the_rest(keys, held, headings, known_extras)
+    return Columns(tuple(keys), is_interval)
+
+
+def _take_headings(
+    keys: list[str | None], held: Sequence[Sequence[str]], headings: Sequence[str], known_extras: Collection[str]
+) -> bool:
+    """Fill in the keys that headings name, the most telling heading first; return whether lives are intervals."""
+    extras = {name.casefold(): name for name in known_extras}
+    found = []
+    for place, text in enumerate(headings):
+        if text.casefold() in extras:
+            keys[place] = extras[text.casefold()]
+        elif (heading := read_heading(text)) and _suits(heading.key, held[place]):
+            found.append((heading.rank, place, heading.key))
+    named = {key for _, _, key in found}
+    is_interval = {INTERVAL_START, INTERVAL_END} <= named and not named & {"life", "until"}
+    ends = {INTERVAL_START: "life", INTERVAL_END: "until"} if is_interval else {}
+    for _, place, key in sorted(found):
+        column = ends.get(key, key)
+        if column in BUILT_IN_COLUMNS and column not in keys:
+            keys[place] = column
+    return is_interval
+
+
+def _suits(key: str, cells: Sequence[str]) -> bool:
+    """Return whether cells can be what a heading says: a column of numbers must hold some, unless it is empty."""
+    if key not in ("life", "until", "quantity", "entered", INTERVAL_START, INTERVAL_END):
+        return True
+    known = [cell for cell in cells if not is_missing(cell)]
+    return not known or sum(map(is_life_like, known)) * 3 >= len(known)
+
+
+def _take_contents(keys: list[str | None], held: Sequence[Sequence[str]], headings: Sequence[str]) -> None:
+    """Fill in state, life, unit and quantity by what columns hold, where no heading has named them."""
+
+    def free(suits: Callable[[Sequence[str]], bool]) -> list[int]:
+        return [place for place, cells in enumerate(held) if keys[place] is None and cells and suits(cells)]
+
+    headed = any(headings)
+    if "state" not in keys and (places := free(_are_states)):
+        keys[places[0]] = "state"
+    lives = free(_are_lives)
+    if "state" not in keys and not headed and len(lives) > 1 and (places := free(_are_indicators)):
+        keys[places[-1]] = "state"
+        lives.remove(places[-1])
+    if "life" not in keys and lives:
+        keys[min(lives, key=lambda place: _unlike_lives(held[place]))] = "life"
+    if headed:
+        return
+    if "unit" not in keys and (places := [p for p in range(len(keys)) if _may_be_names(keys, held, p)]):
+        keys[places[0]] = "unit"
+    if "state" in keys and "life" in keys and (places := free(_are_quantities)):
+        after = [place for place in places if place > keys.index("life")]
+        if after:
+            keys[after[0]] = "quantity"
+
+
+def _may_be_names(keys: Sequence[str | None], held: Sequence[Sequence[str]], place: int) -> bool:
+    cells = held[place]
+    if keys[place] is not None or not cells:
+        return False
+    return _counts_up(cells) or sum(map(is_life_like, cells)) * 2 < len(cells)
+
+
+def _name_the_rest(
+    keys: list[str | None], held: Sequence[Sequence[str]], headings: Sequence[str], known_extras: Collection[str]
+) -> None:
+    """Make every further column that holds text, or has a heading, one of the user's own, under a name not taken."""
+    taken = {name.casefold() for name in (*BUILT_IN_COLUMNS, *HEADINGS.values(), *known_extras)}
+    for place, cells in enumerate(held):
+        if keys[place] is not None or not (cells or headings[place]):
+            continue
+        name = headings[place] or f"Column {place + 1}"
+        if name not in known_extras or name in keys:
+            name = free_name(name, taken)
+        keys[place] = name
+        taken.add(name.casefold())
+
+
+def free_name(wanted: str, taken: Collection[str]) -> str:
+    """Return `wanted`, with a number behind it if it is among `taken` (given in casefolded form)."""
+    wanted = " ".join(wanted.split())
+    name, count = wanted, 2
+    while name.casefold() in taken:
+        name, count = f"{wanted} ({count})", count + 1
+    return name
+
+
+def _own_layout(columns: Sequence[Sequence[str]]) -> tuple[str | None, ...] | None:
+    """Return the built-in columns if these are cells copied from a grid of ours without its headings."""
+    if not 4 <= len(columns) <= len(BUILT_IN_COLUMNS):
+        return None
+    layout = dict(zip(BUILT_IN_COLUMNS, columns, strict=False))
+    numeric = [cell for key in ("life", "until") for cell in layout[key] if cell]
+    states = [cell for cell in layout["state"] if cell]
+    rest = [cell for key in ("quantity", "entered") for cell in layout.get(key, ()) if cell]
+    fits = numeric and states and set(states) <= set(STATES) and all(map(looks_numeric, (*numeric, *rest)))
+    return BUILT_IN_COLUMNS[: len(columns)] if fits else None
+
+
+def _are_states(cells: Sequence[str]) -> bool:
+    words = [cell for cell in cells if not looks_numeric(cell)]
+    answers = sum(read_state(word) is not None for word in words)
+    yes_or_no = sum(read_answer(word, STATES[0]) is not None for word in words)
+    return max(answers, yes_or_no if _has_two_kinds(words) else 0) * 2 > len(cells)
+
+
+def _has_two_kinds(words: Sequence[str]) -> bool:
+    return len({is_yes(word) for word in words}) == 2
+
+
+def _are_indicators(cells: Sequence[str]) -> bool:
+    return set(cells) in ({"0", "1"}, {"1", "2"}, {"0.0", "1.0"})
+
+
+def _are_lives(cells: Sequence[str]) -> bool:
+    known = [cell for cell in cells if not is_missing(cell)]
+    return bool(known) and sum(map(is_life_like, known)) * 2 > len(known)
+
+
+def _are_quantities(cells: Sequence[str]) -> bool:
+    """Whole numbers, 1 among them and none large: a stress, which must not count units, hardly looks like this."""
+    return "1" in cells and all(cell.isdecimal() and 1 <= float(cell) <= 100 for cell in cells)
+
+
+def _counts_up(cells: Sequence[str]) -> bool:
+    """Return whether cells are row numbers: whole numbers, each by one more than the last."""
+    if len(cells) < 2 or not all(cell.isdecimal() and len(cell) < 10 for cell in cells):
+        return False
+    return all(int(later) == int(cell) + 1 for cell, later in pairwise(cells))
+
+
+def _unlike_lives(cells: Sequence[str]) -> tuple[bool, float]:
+    """Return a sort key: row numbers come last, and lives, which seldom coincide, before stresses, which often do."""
+    return _counts_up(cells), -round(len(set(cells)) / len(cells), 1)
+
+
+def is_list_of_lives(rows: Sequence[Sequence[str]]) -> bool:
+    """Return whether the text is one line of lives ("812 900 1100 1500+ 1500+"): units beside, not columns."""
+    cells = [cell for row in rows for cell in row if cell]
+    return len(rows) == 1 and len(cells) >= _SHORTEST_LIST and all(map(is_life_like, cells))
+
+
+def renamed(columns: Columns, choices: Mapping[int, str | None], headings: Sequence[str]) -> Columns:
+    """Return `columns` with other meanings chosen by hand.
+
+    Parameters
+    ----------
+    choices : mapping of int to str or None
+        Per source column a key of the unit table; None or an unknown word makes it a column of the user's own. A column
+        that had the chosen key before becomes one of the user's own.
+    """
+    keys = list(columns.keys)
+    for place, choice in choices.items():
+        if choice in BUILT_IN_COLUMNS and choice in keys:
+            keys[keys.index(choice)] = None
+        keys[place] = choice if choice in BUILT_IN_COLUMNS else None
+    taken = {name.casefold() for name in (*BUILT_IN_COLUMNS, *HEADINGS.values())}
+    taken |= {key.casefold() for key in keys if key}
+    for place, key in enumerate(keys):
+        if key is None and (place in choices or columns.keys[place] is not None):
+            keys[place] = free_name(headings[place] or f"Column {place + 1}", taken)
+            taken.add(str(keys[place]).casefold())
+    same_ends = all(columns.keys[p] == keys[p] for p, key in enumerate(keys) if key in ("life", "until"))
+    return Columns(tuple(keys), columns.is_interval and same_ends)

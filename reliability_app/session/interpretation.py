@@ -1,0 +1,150 @@
+"""Gives every column of a pasted table its meaning and every cell its text in the unit table."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+
+from reliability_app.session.column_guess import Columns, guess_columns, is_life_like, is_missing, renamed
+from reliability_app.session.column_texts import (
+    decide_marks,
+    mark_notes,
+    number_columns,
+    plain_numbers,
+    read_intervals,
+    read_state_column,
+    states_of_bare_lives,
+    without_units,
+)
+from reliability_app.session.headings import read_heading
+from reliability_app.session.numbers import DecimalMark, are_plain, quoted
+from reliability_app.session.row_reading import BUILT_IN_COLUMNS, NUMBER_COLUMNS
+from reliability_app.session.states import FAILED, read_state
+from reliability_app.session.understanding import Choices, SourceTable, Understanding, describe
+from reliability_app.session.unit_table import UnitTable
+
+ALL_FAILED = "The table has no state column: every life was read as that of a unit that failed."
+REST_FAILED = "The table has no state column: lives without a sign such as + were read as failed."
+FROM_ENDS = (
+    "State was read from the two ends of each interval: equal ends as failed, no upper end as running, "
+    "else as found failed."
+)
+
+
+def interpret(source: SourceTable, choices: Choices) -> Understanding:
+    """Interpret a table, with what was chosen by hand taking precedence over what is guessed."""
+    body, headings = source.body, source.headings
+    columns = _columns_of(source, body, choices.columns)
+    texts = {key: body[place] for place, key in enumerate(columns.keys) if key}
+    extras = tuple(key for key in texts if key not in BUILT_IN_COLUMNS)
+    notes = [*source.notes, *_note_on_titles(source)]
+
+    life_unit = _life_unit(texts, columns, headings)
+    marks = _read_numbers(texts, extras, choices.mark, notes)
+    words = _read_states(texts, columns, _heading_of("state", columns, headings), choices.yes_means, notes)
+    rows, faulty = _through_table(texts, extras)
+    return Understanding(
+        rows=rows,
+        extra_columns=extras,
+        sentence=describe(len(rows), columns, headings, words),
+        notes=tuple(notes),
+        faulty=faulty,
+        life_unit=life_unit,
+        columns=columns.keys,
+        headings=headings,
+        mark=marks.get("life", DecimalMark.POINT),
+        source=source,
+        choices=choices,
+    )
+
+
+def _columns_of(source: SourceTable, body: Sequence[Sequence[str]], chosen: Mapping[int, str | None]) -> Columns:
+    columns = guess_columns(body, source.headings, source.existing_extras)
+    key = source.at_column
+    if key and len(body) == 1 and not any(source.headings) and _may_stand_in(key, body[0]):
+        columns = Columns((key,))
+    places = {place: choice for place, choice in chosen.items() if 0 <= place < len(columns.keys)}
+    return renamed(columns, places, source.headings) if places else columns
+
+
+def _may_stand_in(key: str, cells: Sequence[str]) -> bool:
+    """Return whether a column without a heading may be what the cursor's column says: lives are not names, say."""
+    held = [cell for cell in cells if cell]
+    if key in NUMBER_COLUMNS:
+        return sum(map(is_life_like, held)) * 2 > len(held)
+    if key == "state":
+        return any(read_state(cell) for cell in held)
+    return key in BUILT_IN_COLUMNS and sum(map(is_life_like, held)) * 2 <= len(held)
+
+
+def _note_on_titles(source: SourceTable) -> list[str]:
+    if not source.heading_row:
+        return []
+    if source.heading_row == 1:
+        return ["The line above the headings is kept as a row, though it is no unit."]
+    return [f"The {source.heading_row} lines above the headings are kept as rows, though they are no units."]
+
+
+def _heading_of(key: str, columns: Columns, headings: Sequence[str]) -> str:
+    return headings[columns.keys.index(key)] if key in columns.keys else ""
+
+
+def _life_unit(texts: dict[str, list[str]], columns: Columns, headings: Sequence[str]) -> str | None:
+    """Return the unit of the lives from their heading, or from the cells ("812 h"), where it is taken off."""
+    if "life" not in texts:
+        return None
+    in_cells = None
+    if not are_plain(texts["life"]):
+        texts["life"], in_cells = without_units(texts["life"])
+    heading = read_heading(_heading_of("life", columns, headings))
+    return (heading.life_unit if heading else None) or in_cells
+
+
+def _read_numbers(
+    texts: dict[str, list[str]], extras: Sequence[str], mark: DecimalMark | None, notes: list[str]
+) -> dict[str, DecimalMark]:
+    """Bring the columns of numbers into plain form, in place; add to `notes`; return the mark of each."""
+    numeric = {key: texts[key] for key in number_columns(texts, extras)}
+    if mark is None and all(map(are_plain, numeric.values())):
+        return dict.fromkeys(numeric, DecimalMark.POINT)
+    marks = dict.fromkeys(numeric, mark) if mark else decide_marks(numeric)
+    for key, as_typed in numeric.items():
+        texts[key] = plain_numbers(as_typed, marks[key])
+        notes += mark_notes(key, as_typed, texts[key], marks[key])
+    return marks
+
+
+def _read_states(
+    texts: dict[str, list[str]], columns: Columns, heading: str, yes_means: str | None, notes: list[str]
+) -> str | dict[str, str]:
+    """Fill in the State cells, in place; add to `notes`; return what `understanding.describe` is to say of them."""
+    if "state" in texts:
+        read = read_state_column(texts["state"], heading, yes_means)
+        texts["state"] = read.texts
+        notes += read.notes
+        _clear_missing_ends(texts, notes)
+        return read.words
+    if columns.is_interval:
+        read_intervals(texts)
+        notes.append(FROM_ENDS)
+        return "state from the two ends of each interval"
+    if "life" in texts:
+        _clear_missing_ends(texts, notes)
+        texts["state"] = states_of_bare_lives(texts)
+        all_failed = all(state == FAILED or not life for life, state in zip(texts["life"], texts["state"], strict=True))
+        notes.append(ALL_FAILED if all_failed else REST_FAILED)
+        return f"no state column: {'all' if all_failed else 'the lives without a sign'} read as failed"
+    return ""
+
+
+def _clear_missing_ends(texts: dict[str, list[str]], notes: list[str]) -> None:
+    """Empty Until cells that say in so many letters that there is nothing."""
+    signs = {cell for cell in texts.get("until", ()) if cell and is_missing(cell)}
+    if signs:
+        texts["until"] = ["" if cell in signs else cell for cell in texts["until"]]
+        notes.append(f"Until: {quoted(min(signs))} was read as an empty cell.")
+
+
+def _through_table(texts: Mapping[str, Sequence[str]], extras: Sequence[str]) -> tuple[list[dict[str, str]], int]:
+    """Return the rows as a unit table stores them, and how many of them it cannot read."""
+    table = UnitTable.from_columns(texts, extras, row_count=len(next(iter(texts.values()), ())))
+    return table.rows(), table.counts().unread

@@ -1,0 +1,125 @@
+"""Understands pasted text and text files: cells, headings, columns, decimal marks and states, with nothing dropped."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from dataclasses import replace
+from itertools import zip_longest
+
+from reliability_app.session.column_guess import find_heading_row, is_list_of_lives
+from reliability_app.session.column_texts import decide_marks, plain_numbers
+from reliability_app.session.html_table import has_full_values, read_html_table, with_full_precision
+from reliability_app.session.interpretation import interpret
+from reliability_app.session.numbers import DecimalMark
+from reliability_app.session.row_reading import NUMBER_COLUMNS
+from reliability_app.session.separators import split_text
+from reliability_app.session.understanding import Choices, SourceTable, Understanding
+from reliability_app.session.unit_table import UnitTable
+
+AS_DISPLAYED = "Numbers were taken as the spreadsheet displays them; digits it does not show are missing."
+LIST_OF_LIVES = "The text is one line of lives: each was taken as a unit of its own."
+
+# Rows looked at to tell whether the first ones are headings.
+_LOOKED_AT = 400
+
+
+def understand(
+    text: str, html: str | None = None, existing: UnitTable | None = None, *, at_column: str | None = None
+) -> Understanding:
+    """Understand a pasted table; never raises, whatever the text.
+
+    Parameters
+    ----------
+    text : str
+        The plain text of the clipboard, or of a file.
+    html : str, optional
+        The HTML that came with it: spreadsheets keep there the digits that their plain text has rounded away.
+    existing : UnitTable, optional
+        The table that the rows will join: headings that name one of its extra columns mean that column.
+    at_column : str, optional
+        The key of the column in which the cursor stands: what a single column without a heading is taken for, if it
+        is not plainly something else.
+
+    Returns
+    -------
+    Understanding
+        With no rows, and a sentence that says so, for text without any.
+    """
+    rows, notes = _rows_of(text, html)
+    rows = [row for row in rows if any(map(str.strip, row))]
+    if is_list_of_lives(rows):
+        rows, notes = [[cell] for row in rows for cell in row if cell], (*notes, LIST_OF_LIVES)
+    columns = tuple([cell.strip() for cell in column] for column in zip_longest(*rows, fillvalue=""))
+    extras = existing.extra_columns if existing is not None else ()
+    return interpret(SourceTable(columns, _heading_row(rows), notes, extras, at_column), Choices())
+
+
+def reread(
+    understanding: Understanding,
+    *,
+    columns: Mapping[int, str | None] | None = None,
+    mark: DecimalMark | None = None,
+    yes_means: str | None = None,
+    headings: bool | None = None,
+) -> Understanding:
+    """Read the same source again with some meanings chosen by hand; earlier choices stand unless chosen anew.
+
+    Parameters
+    ----------
+    columns : mapping of int to str or None, optional
+        Per column of the source (from 0) the key it is to have; None makes it a column of the user's own.
+    mark : DecimalMark, optional
+        How the numbers of all columns are written.
+    yes_means : str, optional
+        "failed" or "running": what a yes, or a 1, in the state column means.
+    headings : bool, optional
+        Whether the first row is one of headings.
+    """
+    before = understanding.choices
+    choices = Choices(
+        columns={**before.columns, **(columns or {})},
+        mark=mark or before.mark,
+        yes_means=yes_means or before.yes_means,
+    )
+    source = understanding.source
+    if headings is not None and source.columns:
+        source = replace(source, heading_row=0 if headings else None)
+    return interpret(source, choices)
+
+
+def plain_block(text: str, html: str | None = None, *, columns: Sequence[str] = ()) -> list[list[str]] | None:
+    """Return the cells of a bare block, meant for the cells from the current one on; None for a table with headings.
+
+    A text in one line without a tab is one cell. Blank lines are kept: they are empty cells. Where `columns` (the
+    keys of the columns it will land in) names a column of numbers, its decimal mark is decided from all its cells.
+    """
+    rows, _ = _rows_of(text, html)
+    if not rows:
+        return None
+    if len(text.strip("\r\n").splitlines()) == 1 and "\t" not in text:
+        rows = [[text.strip()]]
+    if len(rows) > 1 and _heading_row([row for row in rows if any(map(str.strip, row))]) is not None:
+        return None
+    by_column = [[cell.strip() for cell in column] for column in zip_longest(*rows, fillvalue="")]
+    keys = [columns[place] if place < len(columns) else "" for place in range(len(by_column))]
+    texts = {str(p): cells for p, (key, cells) in enumerate(zip(keys, by_column, strict=True)) if key in NUMBER_COLUMNS}
+    for place, mark in decide_marks(texts).items():
+        by_column[int(place)] = plain_numbers(texts[place], mark)
+    return [list(row) for row in zip(*by_column, strict=True)]
+
+
+def _heading_row(rows: Sequence[Sequence[str]]) -> int | None:
+    return find_heading_row([[cell.strip() for cell in row] for row in rows[:_LOOKED_AT]])
+
+
+def _rows_of(text: str, html: str | None) -> tuple[list[list[str]], tuple[str, ...]]:
+    """Return the cells of the text, blank lines as rows without text, in full precision if the HTML has it."""
+    split = split_text(text)
+    rows = split.rows
+    if not html or (not has_full_values(html) and rows):
+        return rows, split.notes
+    table = read_html_table(html)
+    if table and not rows:
+        rows = [[cell.shown for cell in row] for row in table]
+    full = with_full_precision(rows, table) if table else None
+    return (full, split.notes) if full is not None else (rows, (*split.notes, AS_DISPLAYED))

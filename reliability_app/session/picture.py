@@ -1,0 +1,93 @@
+"""SetPicture and Reading: what the pages of the window draw and state of one set, finished numbers only."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+from numpy.typing import NDArray
+
+from reliability_app.engine.cautions import Caution
+from reliability_app.engine.curves import Curve
+
+if TYPE_CHECKING:  # the document carries the whole unit table with it; a picture needs the names only
+    from reliability_app.session.document import Ask, Basis
+
+Floats = NDArray[np.float64]
+Integers = NDArray[np.int64]
+
+
+@dataclass(frozen=True, eq=False)
+class Reading:
+    """One statement read off a fit.
+
+    Attributes
+    ----------
+    ask : LifeAsk, ReliabilityAsk or HazardAsk
+        What was asked.
+    estimate : float or None
+        The answer: an age, a share running or a hazard rate; None where there is none.
+    lower, upper : float or None
+        The bound; None on the open side, or where no bound exists.
+    basis : Basis
+        What the reading rests on.
+    cautions : tuple of Caution
+        What must be known before relying on it, worst first.
+    """
+
+    ask: Ask
+    estimate: float | None
+    lower: float | None
+    upper: float | None
+    basis: Basis
+    cautions: tuple[Caution, ...] = ()
+
+
+@dataclass(frozen=True, eq=False)
+class SetPicture:
+    """Everything a page draws of one set.
+
+    Attributes
+    ----------
+    name : str
+        The set's name.
+    colour : int
+        Index into the palette of the theme.
+    family : str
+        The family of the basis; it decides the paper.
+    point_age, point_fraction : ndarray of float, shape (n,)
+        Plotting positions: age and fraction failed.
+    point_quantity : ndarray of int, shape (n,)
+        Units that failed at each point.
+    point_rows : tuple of tuple of int
+        For each point the rows of the unit table it stands for.
+    running_age, running_quantity : ndarray, shape (m,)
+        Ages at which units were still running, and how many.
+    failure, hazard, survival : Curve or None
+        Over age: fraction failed, hazard rate, fraction running; None without an estimate.
+    steps : Curve or None
+        The Kaplan-Meier estimate of the fraction running, from age 0 and 1.0; None without units.
+    reading : Reading or None
+        The main reading, a B-life with its bound.
+    """
+
+    name: str
+    colour: int
+    family: str
+    point_age: Floats
+    point_fraction: Floats
+    point_quantity: Integers
+    point_rows: tuple[tuple[int, ...], ...]
+    running_age: Floats
+    running_quantity: Integers
+    failure: Curve | None
+    hazard: Curve | None
+    survival: Curve | None
+    steps: Curve | None
+    reading: Reading | None
+
+    @property
+    def is_empty(self) -> bool:
+        """True where there is nothing to draw."""
+        return self.point_age.size == 0 and self.running_age.size == 0

@@ -1,0 +1,1 @@
+"""Qt windows: they show the session and turn gestures into edits."""

@@ -1,0 +1,1 @@
+"""The chart pages: probability paper, hazard and survival."""

@@ -1,0 +1,143 @@
+"""The plot widget of a chart: pan, zoom and reading by keyboard, no menu entries that would ruin a scale."""
+
+from __future__ import annotations
+
+import pyqtgraph as pg
+from PySide6.QtCore import QPoint, QRect, Qt, Signal
+from PySide6.QtGui import QContextMenuEvent, QFocusEvent, QImage, QKeyEvent, QPainter, QPaintEvent, QPalette, QPen
+
+from reliability_app.windows.charts.round_axis import RoundAxis
+
+_PAN = 0.1  # share of the view that an arrow key moves
+_ZOOM = 1.25
+_PICTURE_SCALE = 2.0  # pixels of a copied picture for each on the screen: slides and prints enlarge
+_MARGINS = (6, 10, 16, 6)
+
+_ARROWS = {
+    Qt.Key.Key_Left: (-1.0, 0.0),
+    Qt.Key.Key_Right: (1.0, 0.0),
+    Qt.Key.Key_Up: (0.0, 1.0),
+    Qt.Key.Key_Down: (0.0, -1.0),
+}
+_MORE = (Qt.Key.Key_Up, Qt.Key.Key_Right)
+_READING_KEYS = Qt.KeyboardModifier.ShiftModifier | Qt.KeyboardModifier.AltModifier
+
+
+class ChartView(pg.PlotWidget):
+    """A plot with the keyboard of the program.
+
+    Arrows pan, + and - zoom, 0 and Home reset; Alt with an arrow moves the reading to the next round percent, Shift
+    with an arrow by a small step.
+
+    Signals
+    -------
+    moved_by_hand()
+        The user panned or zoomed.
+    reset_wanted()
+        0 or Home was pressed.
+    reading_stepped(direction, fine)
+        The reading is to move: +1 or -1; `fine` with Shift.
+    reading_step_done()
+        The key of the step was released.
+    menu_wanted(QPoint)
+        The context menu is wanted at this place of the screen.
+    """
+
+    moved_by_hand = Signal()
+    reset_wanted = Signal()
+    reading_stepped = Signal(int, bool)
+    reading_step_done = Signal()
+    menu_wanted = Signal(QPoint)
+
+    def __init__(self, level: RoundAxis, upright: RoundAxis) -> None:
+        super().__init__(axisItems={"bottom": level, "left": upright}, enableMenu=False)
+        self.setFrameShape(self.Shape.NoFrame)
+        self.plotItem.hideButtons()
+        self.plotItem.layout.setContentsMargins(*_MARGINS)
+        self.plotItem.vb.disableAutoRange()
+        self.plotItem.vb.setDefaultPadding(0.0)
+        self.plotItem.vb.sigRangeChangedManually.connect(self._moved)
+        self.scene().sigMouseClicked.connect(self._clicked)
+        self._stepping = False
+
+    def picture(self) -> QImage:
+        """Return the chart as an image, finer than on the screen."""
+        size = self.viewport().size()
+        image = QImage(size * _PICTURE_SCALE, QImage.Format.Format_RGB32)
+        image.setDevicePixelRatio(_PICTURE_SCALE)
+        image.fill(self.backgroundBrush().color())
+        painter = QPainter(image)
+        painter.setRenderHints(self.renderHints())
+        self.render(painter, QRect(QPoint(0, 0), size), self.viewport().rect())
+        painter.end()
+        return image
+
+    def pan(self, across: float, along: float) -> None:
+        """Move the view by shares of its size."""
+        (left, right), (low, high) = self.plotItem.vb.viewRange()
+        self.plotItem.vb.translateBy(x=across * (right - left), y=along * (high - low))
+        self.moved_by_hand.emit()
+
+    def zoom(self, factor: float) -> None:
+        """Enlarge what is shown by a factor about the middle of the view."""
+        self.plotItem.vb.scaleBy((1.0 / factor, 1.0 / factor))
+        self.moved_by_hand.emit()
+
+    def keyPressEvent(self, event: QKeyEvent) -> None:
+        """Pan, zoom, reset or step the reading."""
+        key, modifiers = Qt.Key(event.key()), event.modifiers() & ~Qt.KeyboardModifier.KeypadModifier
+        if key in _ARROWS and modifiers & _READING_KEYS:
+            self._stepping = True
+            fine = bool(modifiers & Qt.KeyboardModifier.ShiftModifier)
+            self.reading_stepped.emit(1 if key in _MORE else -1, fine)
+        elif key in _ARROWS and not modifiers:
+            self.pan(*(_PAN * share for share in _ARROWS[key]))
+        elif key in (Qt.Key.Key_Plus, Qt.Key.Key_Equal) and not modifiers & Qt.KeyboardModifier.ControlModifier:
+            self.zoom(_ZOOM)
+        elif key == Qt.Key.Key_Minus and not modifiers & Qt.KeyboardModifier.ControlModifier:
+            self.zoom(1.0 / _ZOOM)
+        elif key in (Qt.Key.Key_0, Qt.Key.Key_Home) and not modifiers:
+            self.reset_wanted.emit()
+        else:
+            event.ignore()
+            return
+        event.accept()
+
+    def keyReleaseEvent(self, event: QKeyEvent) -> None:
+        """Tell that a step of the reading is done, once, however long the key was held."""
+        if event.key() in _ARROWS and not event.isAutoRepeat():
+            self._finish_step()
+        super().keyReleaseEvent(event)
+
+    def focusOutEvent(self, event: QFocusEvent) -> None:
+        """End a step of the reading whose key is released elsewhere."""
+        self._finish_step()
+        super().focusOutEvent(event)
+
+    def contextMenuEvent(self, event: QContextMenuEvent) -> None:
+        """Open the menu from the keyboard; the mouse's right button also zooms and is told apart by the scene."""
+        if event.reason() == QContextMenuEvent.Reason.Keyboard:
+            self.menu_wanted.emit(self.viewport().mapToGlobal(self.viewport().rect().center()))
+            event.accept()
+
+    def paintEvent(self, event: QPaintEvent) -> None:
+        """Draw the chart, and a frame while it has the keyboard."""
+        super().paintEvent(event)
+        if self.hasFocus():
+            painter = QPainter(self.viewport())
+            painter.setPen(QPen(self.palette().color(QPalette.ColorRole.Highlight), 1.0))
+            painter.drawRect(self.viewport().rect().adjusted(0, 0, -1, -1))
+            painter.end()
+
+    def _clicked(self, event: pg.GraphicsScene.mouseEvents.MouseClickEvent) -> None:
+        if event.button() == Qt.MouseButton.RightButton:
+            event.accept()
+            self.menu_wanted.emit(event.screenPos().toPoint())
+
+    def _moved(self, *_: object) -> None:
+        self.moved_by_hand.emit()
+
+    def _finish_step(self) -> None:
+        if self._stepping:
+            self._stepping = False
+            self.reading_step_done.emit()

@@ -1,0 +1,325 @@
+"""The reading on a chart: a line to drag, a mark on the curve, a drop line to the age, the bound as a bracket."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+from typing import Literal
+
+import pyqtgraph as pg
+from PySide6.QtCore import QLineF, QPointF, QRectF, Qt, Signal
+from PySide6.QtGui import QColor, QFont, QFontMetricsF, QPainter, QPainterPath, QPen
+from PySide6.QtWidgets import QGraphicsObject, QStyleOptionGraphicsItem, QWidget
+
+from reliability_app.windows.charts.round_axis import RoundAxis
+from reliability_app.windows.theme import Theme, ink_on
+
+Along = Literal["age", "value"]
+
+_IN_FRONT = 50.0
+_GRIP = 7.0  # pixels to either side within which the mouse takes the line
+_RING = 5.0
+_FOOT = 5.0  # half the length of a bracket's end, and how far its feet reach inwards
+_PADDING = 4.0
+
+
+@dataclass(frozen=True)
+class ReadingMark:
+    """Where a reading stands, in positions of the two axes.
+
+    Attributes
+    ----------
+    age, value : float
+        The point on the curve.
+    along : "age" or "value"
+        The direction in which the bound lies.
+    lower, upper : float or None
+        The bound's ends in that direction; None on an open side.
+    age_text, value_text : str
+        What the tags on the axes say.
+    lower_text, upper_text : str
+        What is written at the ends of the bracket; may be empty.
+    """
+
+    age: float
+    value: float
+    along: Along
+    lower: float | None
+    upper: float | None
+    age_text: str
+    value_text: str
+    lower_text: str = ""
+    upper_text: str = ""
+
+    @property
+    def ends(self) -> Iterator[tuple[float, str, int]]:
+        """Give position, text and inward direction of each end there is."""
+        if self.lower is not None:
+            yield self.lower, self.lower_text, 1
+        if self.upper is not None:
+            yield self.upper, self.upper_text, -1
+
+
+class ReadingLine(QGraphicsObject):
+    """Draws a ReadingMark over a plot and lets it be dragged.
+
+    Parameters
+    ----------
+    plot : pyqtgraph.PlotItem
+        The plot it belongs to.
+    level, upright : RoundAxis
+        The axes that carry the tags.
+    drags : "age" or "value"
+        What a drag changes: "value" gives a level line, "age" an upright one.
+
+    Signals
+    -------
+    dragged(float)
+        The position on the dragged axis, while the mouse moves.
+    released()
+        The end of a drag.
+    """
+
+    dragged = Signal(float)
+    released = Signal()
+
+    def __init__(self, plot: pg.PlotItem, level: RoundAxis, upright: RoundAxis, *, drags: Along) -> None:
+        super().__init__(plot)
+        self._plot, self._level, self._upright = plot, level, upright
+        self._drags: Along = drags
+        self._mark: ReadingMark | None = None
+        self._colour, self._ground, self._ink = QColor(), QColor(), QColor()
+        self._font = QFont()
+        self._grabbed_at: float | None = None
+        self._hovered = False
+        self.setZValue(_IN_FRONT)
+        self.setVisible(False)
+        plot.vb.sigRangeChanged.connect(self._moved)
+        plot.vb.sigResized.connect(self._moved)
+
+    @property
+    def mark(self) -> ReadingMark | None:
+        """The mark shown, or None."""
+        return self._mark
+
+    @property
+    def is_dragging(self) -> bool:
+        """True from grip to release."""
+        return self._grabbed_at is not None
+
+    def show_mark(self, mark: ReadingMark | None) -> None:
+        """Show a reading, or hide without one."""
+        self._mark = mark
+        self.setVisible(mark is not None)
+        self._moved()
+
+    def dress(self, theme: Theme, colour: str, font: QFont) -> None:
+        """Take the theme, the colour of the set it reads, and the font of the tags."""
+        self._colour, self._ground = QColor(colour), QColor(theme.background)
+        self._ink, self._font = QColor(ink_on(colour)), QFont(font)
+        self._moved()
+
+    def grip(self) -> QPointF | None:
+        """Return a point of the scene at which the mouse can take the line, or None without one in sight."""
+        spot, area = self._spot(), self._area()
+        if spot is None:
+            return None
+        if self._drags == "value":
+            spot.setX(area.left() + 0.25 * area.width())
+        else:
+            spot.setY(area.top() + 0.25 * area.height())
+        return self.mapToScene(spot) if area.contains(spot) else None
+
+    # --- geometry, in pixels of the plot
+
+    def _area(self) -> QRectF:
+        return QRectF(self._plot.vb.geometry())
+
+    def _pixel(self, age: float, value: float) -> QPointF:
+        (left, right), (low, high) = self._plot.vb.viewRange()
+        area = self._area()
+        x = area.left() + (age - left) / (right - left) * area.width()
+        y = area.bottom() - (value - low) / (high - low) * area.height()
+        # A point far outside would overflow Qt's integer raster.
+        return QPointF(min(max(x, -1e5), 1e5), min(max(y, -1e5), 1e5))
+
+    def _spot(self) -> QPointF | None:
+        return None if self._mark is None else self._pixel(self._mark.age, self._mark.value)
+
+    def boundingRect(self) -> QRectF:
+        """Return the whole of the plot: the tags stand on its axes."""
+        return QRectF(self._plot.rect())
+
+    def shape(self) -> QPainterPath:
+        """Return the strip the mouse can take, and the tag it belongs to."""
+        path = QPainterPath()
+        spot, area = self._spot(), self._area()
+        if spot is None:
+            return path
+        if self._drags == "value" and area.top() <= spot.y() <= area.bottom():
+            path.addRect(QRectF(area.left(), spot.y() - _GRIP, area.width(), 2.0 * _GRIP))
+            path.addRect(self._value_tag())
+        elif self._drags == "age" and area.left() <= spot.x() <= area.right():
+            path.addRect(QRectF(spot.x() - _GRIP, area.top(), 2.0 * _GRIP, area.height()))
+            path.addRect(self._age_tag())
+        return path
+
+    def _moved(self, *_: object) -> None:
+        self.prepareGeometryChange()
+        self._cover_labels()
+        self.update()
+
+    def _cover_labels(self) -> None:
+        """Have the axes leave out the labels under the tags."""
+        mark, area = self._mark, self._area()
+        if mark is None or area.width() <= 0 or area.height() <= 0:
+            self._level.cover(())
+            self._upright.cover(())
+            return
+        (left, right), (low, high) = self._plot.vb.viewRange()
+        wide = (right - left) / area.width() * (0.5 * self._age_tag().width() + _PADDING)
+        tall = (high - low) / area.height() * 0.5 * self._value_tag().height()
+        self._level.cover([(mark.age - wide, mark.age + wide)] if mark.age_text else ())
+        self._upright.cover([(mark.value - tall, mark.value + tall)] if mark.value_text else ())
+
+    def _tag_size(self, text: str) -> tuple[float, float]:
+        metrics = QFontMetricsF(self._font)
+        return metrics.horizontalAdvance(text) + 2.0 * _PADDING, metrics.height()
+
+    def _age_tag(self) -> QRectF:
+        """Return the tag on the age axis, centred under the reading."""
+        spot, area = self._spot(), self._area()
+        if spot is None or self._mark is None:
+            return QRectF()
+        width, height = self._tag_size(self._mark.age_text)
+        return QRectF(round(spot.x() - 0.5 * width), area.bottom() + 5.0, width, height)
+
+    def _value_tag(self) -> QRectF:
+        """Return the tag on the upright axis, beside the line."""
+        spot, area = self._spot(), self._area()
+        if spot is None or self._mark is None:
+            return QRectF()
+        width, height = self._tag_size(self._mark.value_text)
+        return QRectF(area.left() - 5.0 - width, round(spot.y() - 0.5 * height), width, height)
+
+    # --- drawing
+
+    def paint(self, painter: QPainter, option: QStyleOptionGraphicsItem, widget: QWidget | None = None) -> None:
+        """Draw line, drop line, bracket and ring inside the view, and the tags on the axes."""
+        mark, spot, area = self._mark, self._spot(), self._area()
+        if mark is None or spot is None:
+            return
+        painter.save()
+        painter.setClipRect(area)
+        self._paint_lines(painter, spot, area)
+        self._paint_bracket(painter, mark, spot)
+        self._paint_ring(painter, spot)
+        painter.restore()
+        if mark.age_text and area.left() <= spot.x() <= area.right():
+            self._paint_tag(painter, self._age_tag(), mark.age_text)
+        if mark.value_text and area.top() <= spot.y() <= area.bottom():
+            self._paint_tag(painter, self._value_tag(), mark.value_text)
+
+    def _paint_lines(self, painter: QPainter, spot: QPointF, area: QRectF) -> None:
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing, False)
+        to_value = QLineF(area.left(), spot.y(), spot.x(), spot.y())
+        to_age = QLineF(spot.x(), spot.y(), spot.x(), area.bottom())
+        rest = (
+            QLineF(spot.x(), spot.y(), area.right(), spot.y())
+            if self._drags == "value"
+            else QLineF(spot.x(), area.top(), spot.x(), spot.y())
+        )
+        faint = QColor(self._colour)
+        faint.setAlphaF(0.45)
+        painter.setPen(QPen(faint, 1.0, Qt.PenStyle.DotLine))
+        painter.drawLine(rest)
+        width = 2.0 if self._hovered or self.is_dragging else 1.0
+        for line, drags in ((to_value, "value"), (to_age, "age")):
+            painter.setPen(QPen(self._colour, width if drags == self._drags else 1.0))
+            painter.drawLine(line)
+
+    def _paint_bracket(self, painter: QPainter, mark: ReadingMark, spot: QPointF) -> None:
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing, False)
+        for position, text, inward in mark.ends:
+            end = self._pixel(position, mark.value) if mark.along == "age" else self._pixel(mark.age, position)
+            painter.setPen(QPen(self._colour, 3.0, Qt.PenStyle.SolidLine, Qt.PenCapStyle.FlatCap))
+            painter.drawLine(end, spot)
+            painter.setPen(QPen(self._colour, 2.0, Qt.PenStyle.SolidLine, Qt.PenCapStyle.SquareCap))
+            if mark.along == "age":
+                corners = [QPointF(inward * _FOOT, -_FOOT), QPointF(0, -_FOOT), QPointF(0, _FOOT)]
+                corners.append(QPointF(inward * _FOOT, _FOOT))
+            else:
+                corners = [QPointF(-_FOOT, -inward * _FOOT), QPointF(-_FOOT, 0), QPointF(_FOOT, 0)]
+                corners.append(QPointF(_FOOT, -inward * _FOOT))
+            painter.drawPolyline([end + corner for corner in corners])
+            if text:
+                self._paint_end_text(painter, end, text, inward, mark.along)
+
+    def _paint_end_text(self, painter: QPainter, end: QPointF, text: str, inward: int, along: Along) -> None:
+        """Write the bound beside its end of the bracket, on the outer side, on a piece of ground."""
+        width, height = self._tag_size(text)
+        if along == "age":
+            x = end.x() - width - 3.0 if inward > 0 else end.x() + 3.0
+            box = QRectF(x, end.y() - 0.5 * height, width, height)
+        else:
+            y = end.y() + 3.0 if inward > 0 else end.y() - height - 3.0
+            box = QRectF(end.x() - 0.5 * width, y, width, height)
+        ground = QColor(self._ground)
+        ground.setAlphaF(0.85)
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing, True)
+        painter.setPen(Qt.PenStyle.NoPen)
+        painter.setBrush(ground)
+        painter.drawRoundedRect(box, 3.0, 3.0)
+        painter.setFont(self._font)
+        painter.setPen(self._colour)
+        painter.drawText(box, Qt.AlignmentFlag.AlignCenter, text)
+
+    def _paint_ring(self, painter: QPainter, spot: QPointF) -> None:
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing, True)
+        painter.setPen(QPen(self._colour, 2.0))
+        painter.setBrush(self._ground)
+        painter.drawEllipse(spot, _RING, _RING)
+
+    def _paint_tag(self, painter: QPainter, box: QRectF, text: str) -> None:
+        painter.setRenderHint(QPainter.RenderHint.Antialiasing, True)
+        painter.setPen(Qt.PenStyle.NoPen)
+        painter.setBrush(self._colour)
+        painter.drawRoundedRect(box, 3.0, 3.0)
+        painter.setFont(self._font)
+        painter.setPen(self._ink)
+        painter.drawText(box, Qt.AlignmentFlag.AlignCenter, text)
+
+    # --- the mouse, as pyqtgraph's scene hands it on
+
+    def hoverEvent(self, event: pg.GraphicsScene.mouseEvents.HoverEvent) -> None:
+        """Show that the line can be taken."""
+        over = not event.isExit() and event.acceptDrags(Qt.MouseButton.LeftButton)
+        if over != self._hovered:
+            self._hovered = over
+            upright = self._drags == "value"
+            shape = Qt.CursorShape.SizeVerCursor if upright else Qt.CursorShape.SizeHorCursor
+            if over:
+                self.setCursor(shape)
+            else:
+                self.unsetCursor()
+            self.update()
+
+    def mouseDragEvent(self, event: pg.GraphicsScene.mouseEvents.MouseDragEvent) -> None:
+        """Follow the mouse; the line keeps the distance to the mouse at which it was taken."""
+        if event.button() != Qt.MouseButton.LeftButton or self._mark is None:
+            event.ignore()
+            return
+        event.accept()
+        at = 0 if self._drags == "age" else 1
+        mouse = self._plot.vb.mapSceneToView(event.scenePos())
+        if event.isStart():
+            taken = self._plot.vb.mapSceneToView(event.buttonDownScenePos())
+            here = (self._mark.age, self._mark.value)[at]
+            self._grabbed_at = here - (taken.x(), taken.y())[at]
+        low, high = self._plot.vb.viewRange()[at]
+        wanted = (mouse.x(), mouse.y())[at] + (self._grabbed_at or 0.0)
+        self.dragged.emit(min(max(wanted, low), high))
+        if event.isFinish():
+            self._grabbed_at = None
+            self.released.emit()
+            self.update()

@@ -1,0 +1,179 @@
+"""From a set's picture to the mark of its reading on each chart, and between percents and ages along the fit."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from reliability_app.engine.curves import Curve
+from reliability_app.engine.paper import AgeScale, ProbabilityScale
+from reliability_app.session.document import HazardAsk, LifeAsk, ReliabilityAsk
+from reliability_app.session.picture import Reading, SetPicture
+from reliability_app.session.wording import age_text, as_given, number_text, value_text
+from reliability_app.windows.charts.reading_line import ReadingMark
+
+Floats = NDArray[np.float64]
+
+
+@dataclass(frozen=True)
+class Place:
+    """A reading in ages and fractions failed, with what is said of it.
+
+    Attributes
+    ----------
+    age, fraction : float
+        The point on the fit.
+    ages, fractions : (float or None, float or None)
+        The ends of the bound, in the one direction in which there is one.
+    age_text, percent_text : str
+        What the axes say; `percent_text` is empty where the percent was not asked for and not given.
+    """
+
+    age: float
+    fraction: float
+    ages: tuple[float | None, float | None] = (None, None)
+    fractions: tuple[float | None, float | None] = (None, None)
+    age_text: str = ""
+    percent_text: str = ""
+
+
+def place_of(picture: SetPicture, life_unit: str) -> Place | None:
+    """Return where the main reading of a picture stands, or None without one."""
+    reading, failure = picture.reading, picture.failure
+    if reading is None or reading.estimate is None or failure is None:
+        return None
+    ask = reading.ask
+    if isinstance(ask, LifeAsk):
+        return Place(
+            age=reading.estimate,
+            fraction=ask.percent / 100.0,
+            ages=(reading.lower, reading.upper),
+            age_text=age_text(reading.estimate, life_unit),
+            percent_text=percent_text(ask.percent),
+        )
+    said = f"{as_given(ask.age)} {life_unit}".rstrip()
+    if isinstance(ask, ReliabilityAsk):
+        failed = [None if end is None else 1.0 - end for end in (reading.upper, reading.lower)]
+        return Place(
+            age=ask.age,
+            fraction=1.0 - reading.estimate,
+            fractions=(failed[0], failed[1]),
+            age_text=said,
+            percent_text=f"{number_text(100.0 * (1.0 - reading.estimate))} %",
+        )
+    return Place(age=ask.age, fraction=fraction_at(picture, ask.age), age_text=said)
+
+
+def preview(picture: SetPicture, percent: float, life_unit: str) -> Place | None:
+    """Return where a reading of `percent` will stand, from the curve that is drawn.
+
+    Along a straight fit this is exact; the bound is read off the band, which is that of the same kind of bound.
+    """
+    failure = picture.failure
+    if failure is None:
+        return None
+    age = age_at(picture, percent / 100.0)
+    bounds = [_age_at(picture, edge, percent / 100.0) for edge in (failure.upper, failure.lower)]
+    return Place(
+        age=age,
+        fraction=percent / 100.0,
+        ages=(bounds[0], bounds[1]),
+        age_text=age_text(age, life_unit),
+        percent_text=percent_text(percent),
+    )
+
+
+def percent_text(percent: float) -> str:
+    """Return a percent as the tag of the reading says it."""
+    return f"{as_given(percent)} %"
+
+
+def age_at(picture: SetPicture, fraction: float) -> float:
+    """Return the age at which the drawn fit reaches a fraction failed."""
+    if picture.failure is None:
+        raise ValueError("A picture without a fit has no age at which a fraction has failed.")
+    x, z = _straightened(picture.failure, picture.family)
+    return float(np.exp(_along(z, x, float(ProbabilityScale(picture.family).to_scale(fraction)))))
+
+
+def fraction_at(picture: SetPicture, age: float) -> float:
+    """Return the fraction failed at an age on the drawn fit."""
+    if picture.failure is None:
+        raise ValueError("A picture without a fit has no fraction failed at an age.")
+    x, z = _straightened(picture.failure, picture.family)
+    return float(ProbabilityScale(picture.family).from_scale(_along(x, z, float(np.log(age)))))
+
+
+def value_at(curve: Curve, age: float) -> float:
+    """Return the value of a drawn curve at an age."""
+    return float(np.interp(np.log(age), np.log(curve.x), curve.y))
+
+
+def paper_mark(place: Place, probability: ProbabilityScale, age: AgeScale, life_unit: str) -> ReadingMark:
+    """Return the mark of a reading on probability paper."""
+    position = float(age.to_scale(place.age))
+    value = float(probability.to_scale(place.fraction))
+    if place.fractions != (None, None):
+        ends = [None if end is None else float(probability.to_scale(end)) for end in place.fractions]
+        texts = ["" if end is None else f"{number_text(100.0 * end)} %" for end in place.fractions]
+        return ReadingMark(position, value, "value", ends[0], ends[1], place.age_text, place.percent_text, *texts)
+    return aged_mark(place, value, age, life_unit, value_text=place.percent_text)
+
+
+def aged_mark(place: Place, value: float, age: AgeScale, life_unit: str, *, value_text: str) -> ReadingMark:
+    """Return the mark of a reading whose bound, if any, is an age, at a height of `value`."""
+    ends = [None if end is None else float(age.to_scale(end)) for end in place.ages]
+    texts = ["" if end is None else age_text(end, life_unit) for end in place.ages]
+    return ReadingMark(
+        float(age.to_scale(place.age)), value, "age", ends[0], ends[1], place.age_text, value_text, *texts
+    )
+
+
+def hazard_mark(picture: SetPicture, place: Place, age: AgeScale, life_unit: str) -> ReadingMark | None:
+    """Return the mark of a reading on the hazard rate; a hazard that was asked for brings its own bound."""
+    if picture.hazard is None:
+        return None
+    reading = picture.reading
+    if reading is not None and isinstance(reading.ask, HazardAsk) and reading.ask.age == place.age:
+        return _asked_hazard(reading, place, age, life_unit)
+    return aged_mark(place, value_at(picture.hazard, place.age), age, life_unit, value_text="")
+
+
+def _asked_hazard(reading: Reading, place: Place, age: AgeScale, life_unit: str) -> ReadingMark:
+    texts = ["" if end is None else value_text(reading.ask, end, life_unit) for end in (reading.lower, reading.upper)]
+    estimate = float(reading.estimate or 0.0)
+    position = float(age.to_scale(place.age))
+    return ReadingMark(
+        position, estimate, "value", reading.lower, reading.upper, place.age_text, number_text(estimate), *texts
+    )
+
+
+def _straightened(failure: Curve, family: str) -> tuple[Floats, Floats]:
+    """Return ln age and z of a curve where both are finite."""
+    x, z = np.log(failure.x), ProbabilityScale(family).to_scale(failure.y)
+    inside = np.isfinite(x) & np.isfinite(z)
+    return x[inside], z[inside]
+
+
+def _age_at(picture: SetPicture, edge: Floats | None, fraction: float) -> float | None:
+    """Return the age at which an edge of the band reaches a fraction, or None where it does not."""
+    if edge is None or picture.failure is None:
+        return None
+    scale = ProbabilityScale(picture.family)
+    x, z = np.log(picture.failure.x), scale.to_scale(edge)
+    inside = np.isfinite(z)
+    x, z, wanted = x[inside], z[inside], float(scale.to_scale(fraction))
+    if z.size < 2 or np.any(np.diff(z) <= 0.0) or not z[0] <= wanted <= z[-1]:
+        return None
+    return float(np.exp(np.interp(wanted, z, x)))
+
+
+def _along(x: Floats, y: Floats, wanted: float) -> float:
+    """Interpolate y over ascending x, and go straight on beyond both ends."""
+    if x.size < 2:
+        return float("nan")
+    at = int(np.clip(np.searchsorted(x, wanted), 1, x.size - 1))
+    share = (wanted - x[at - 1]) / (x[at] - x[at - 1])
+    return float(y[at - 1] + share * (y[at] - y[at - 1]))

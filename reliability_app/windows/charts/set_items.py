@@ -1,0 +1,143 @@
+"""What a chart draws of one set: a fitted line with its band, marks of units, and the marks along the lower edge."""
+
+from __future__ import annotations
+
+import numpy as np
+import pyqtgraph as pg
+from numpy.typing import NDArray
+from PySide6.QtCore import Qt
+from PySide6.QtGui import QColor, QPainterPath, QPen
+from PySide6.QtWidgets import QGraphicsPathItem
+
+from reliability_app.windows.theme import SeriesStyle
+
+Floats = NDArray[np.float64]
+
+BAND_DEPTH, LINE_DEPTH, STEPS_DEPTH, MARKS_DEPTH = -30.0, -20.0, -10.0, 10.0
+_LINE_WIDTH = 2.0
+_BAND_SHARE = {False: 0.12, True: 0.16}  # how strongly a band's ground is coloured, on light and on dark
+
+
+def smooth_curve() -> pg.PlotCurveItem:
+    """Return an empty line that breaks where its values do not exist."""
+    return pg.PlotCurveItem(connect="finite", antialias=True)
+
+
+class FitLine:
+    """A fitted line with its band: two edges, or one edge filled towards the line."""
+
+    def __init__(self, view_box: pg.ViewBox) -> None:
+        self._view_box = view_box
+        self.band = QGraphicsPathItem()
+        self.band.setPen(QPen(Qt.PenStyle.NoPen))
+        self.band.setZValue(BAND_DEPTH)
+        self.line, self.low_edge, self.high_edge = (smooth_curve() for _ in range(3))
+        for item in (self.band, self.low_edge, self.high_edge, self.line):
+            view_box.addItem(item, ignoreBounds=True)
+        for curve in (self.line, self.low_edge, self.high_edge):
+            curve.setZValue(LINE_DEPTH)
+
+    def show(self, x: Floats, y: Floats, lower: Floats | None, upper: Floats | None) -> None:
+        """Show the line y over x; a bound that is None is open, one that is NaN does not exist there."""
+        self.line.setData(x, y)
+        for edge, bound in ((self.low_edge, lower), (self.high_edge, upper)):
+            edge.setVisible(bound is not None)
+            if bound is not None:
+                edge.setData(x, bound)
+        path = QPainterPath()
+        if lower is not None or upper is not None:
+            path = band_path(x, y if lower is None else lower, y if upper is None else upper)
+        self.band.setPath(path)
+
+    def clear(self) -> None:
+        """Show nothing."""
+        nothing = np.empty(0)
+        self.show(nothing, nothing, None, None)
+
+    def dress(self, style: SeriesStyle, *, is_dark: bool) -> None:
+        """Take the colour and the dash of a set."""
+        colour = QColor(style.colour)
+        self.line.setPen(pg.mkPen(colour, width=_LINE_WIDTH, style=style.dash))
+        edge, ground = QColor(colour), QColor(colour)
+        edge.setAlphaF(0.65)
+        ground.setAlphaF(_BAND_SHARE[is_dark])
+        for curve in (self.low_edge, self.high_edge):
+            curve.setPen(pg.mkPen(edge, width=1.0))
+        self.band.setBrush(ground)
+
+    def remove(self) -> None:
+        """Take the items out of the view for good."""
+        for item in (self.band, self.low_edge, self.high_edge, self.line):
+            self._view_box.removeItem(item)
+
+
+class Marks:
+    """Marks of units in the colour and shape of their set, filled or open."""
+
+    def __init__(self, view_box: pg.ViewBox, *, filled: bool) -> None:
+        self._view_box, self._filled = view_box, filled
+        self.item = pg.ScatterPlotItem(pxMode=True)
+        self.item.setZValue(MARKS_DEPTH)
+        view_box.addItem(self.item, ignoreBounds=True)
+
+    def show(self, x: Floats, y: Floats) -> None:
+        """Show a mark at each finite point."""
+        inside = np.isfinite(x) & np.isfinite(y)
+        self.item.setData(x=x[inside], y=y[inside])
+
+    def dress(self, style: SeriesStyle, *, size: float, background: str) -> None:
+        """Take colour and shape of a set; filled marks get a rim of ground so that neighbours stay apart."""
+        self.item.setSymbol(style.symbol)
+        self.item.setSize(size)
+        if self._filled:
+            self.item.setPen(pg.mkPen(background, width=0.75))
+            self.item.setBrush(pg.mkBrush(style.colour))
+        else:
+            self.item.setPen(pg.mkPen(style.colour, width=1.25))
+            self.item.setBrush(pg.mkBrush(background))
+
+    def remove(self) -> None:
+        """Take the marks out of the view for good."""
+        self._view_box.removeItem(self.item)
+
+
+class EdgeMarks(Marks):
+    """Open marks that stand on the lower edge of the view wherever the view goes."""
+
+    def __init__(self, view_box: pg.ViewBox) -> None:
+        super().__init__(view_box, filled=False)
+        self._height = 0.0
+        view_box.sigYRangeChanged.connect(self._follow)
+        view_box.sigResized.connect(self._follow)
+
+    def stand(self, x: Floats, *, height: float) -> None:
+        """Show a mark at each finite x, `height` pixels above the lower edge."""
+        self._height = height
+        self.show(x, np.zeros_like(x))
+        self._follow()
+
+    def _follow(self, *_: object) -> None:
+        pixels = float(self._view_box.height())
+        if pixels > 0.0:
+            low, high = self._view_box.viewRange()[1]
+            self.item.setPos(0.0, low + self._height * (high - low) / pixels)
+
+    def remove(self) -> None:
+        """Take the marks out of the view for good."""
+        self._view_box.sigYRangeChanged.disconnect(self._follow)
+        self._view_box.sigResized.disconnect(self._follow)
+        super().remove()
+
+
+def band_path(x: Floats, lower: Floats, upper: Floats) -> QPainterPath:
+    """Return the area between two edges, in one piece for each stretch on which both exist."""
+    path = QPainterPath()
+    exists = np.isfinite(x) & np.isfinite(lower) & np.isfinite(upper)
+    borders = np.flatnonzero(np.diff(np.concatenate([[False], exists, [False]]).astype(int)))
+    for start, stop in borders.reshape(-1, 2):
+        piece = slice(int(start), int(stop))
+        around_x = np.concatenate([x[piece], x[piece][::-1]])
+        around_y = np.concatenate([upper[piece], lower[piece][::-1]])
+        path.addPolygon(pg.functions.arrayToQPolygonF(around_x, around_y))
+        path.closeSubpath()
+    return path

@@ -1,0 +1,120 @@
+"""The menus of the main window: every action, its keys, and what it calls."""
+
+from __future__ import annotations
+
+import json
+from collections.abc import Callable
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from PySide6.QtCore import QObject
+from PySide6.QtGui import QAction, QActionGroup, QGuiApplication, QKeySequence
+from PySide6.QtWidgets import QApplication, QMenu, QMessageBox
+
+from reliability_app import __version__
+from reliability_app.session.shipped import shipped
+from reliability_app.session.wording import STANDING_CAUTION
+from reliability_app.windows.theme import apply_scheme
+
+if TYPE_CHECKING:
+    from reliability_app.windows.main_window import MainWindow
+
+SCHEMES = {"system": "As the system", "light": "Light", "dark": "Dark"}
+
+
+class Menus(QObject):
+    """Builds the menu bar of a window whose contents exist."""
+
+    def __init__(self, window: MainWindow) -> None:
+        super().__init__(window)
+        self._window = window
+        bar = window.menuBar()
+        bar.clear()
+        self._build_file(bar.addMenu("&File"))
+        self._build_edit(bar.addMenu("&Edit"))
+        self._build_sets(bar.addMenu("&Sets"))
+        self._build_view(bar.addMenu("&View"))
+        self._build_help(bar.addMenu("&Help"))
+
+    def _build_file(self, menu: QMenu) -> None:
+        files = self._window.files
+        self._add(menu, "&New session", "Ctrl+N", files.new)
+        self._add(menu, "&Open …", "Ctrl+O", files.open_by_dialog)
+        self._recent = menu.addMenu("Open &recent")
+        self._recent.aboutToShow.connect(self._list_recent)
+        self._samples = menu.addMenu("Sa&mple sets")
+        self._list_samples()
+        menu.addSeparator()
+        self._add(menu, "&Save", "Ctrl+S", files.save)
+        self._add(menu, "Save &as …", "Ctrl+Shift+S", files.save_as)
+        menu.addSeparator()
+        self._add(menu, "&Quit", "Ctrl+Q", self._window.close)
+
+    def _build_edit(self, menu: QMenu) -> None:
+        menu.addActions(list(self._window.undo.make_actions(self._window)))
+        menu.addSeparator()
+        menu.addActions(self._window.contents.grid.actions_for_menu())
+        menu.addSeparator()
+        reading = self._window.contents.reading
+        self._add(menu, "Copy the &reading with its cautions", "Ctrl+Shift+C", reading.copy_statement)
+        self._add(menu, "Copy all readings as a &table", "Ctrl+Alt+C", reading.table.copy_all)
+
+    def _build_sets(self, menu: QMenu) -> None:
+        bar = self._window.contents.set_bar
+        self._add(menu, "&Add a set", "Ctrl+Shift+N", bar.add_set)
+        self._add(menu, "Add sets from a &file …", "Ctrl+Shift+O", self._window.files.add_sets_by_dialog)
+        self._add(menu, "&Rename the set …", "F6", bar.rename_set)
+        self._add(menu, "Re&move the set", "", bar.remove_set)
+
+    def _build_view(self, menu: QMenu) -> None:
+        tabs = self._window.contents.tabs
+        for place in range(tabs.count()):
+            self._add(menu, tabs.tabText(place), f"Ctrl+{place + 1}", lambda place=place: tabs.setCurrentIndex(place))
+        menu.addSeparator()
+        group = QActionGroup(menu)
+        for name, title in SCHEMES.items():
+            action = self._add(menu, title, "", lambda name=name: self._choose_scheme(name))
+            action.setCheckable(True)
+            action.setChecked(self._window.settings.scheme == name)
+            group.addAction(action)
+
+    def _build_help(self, menu: QMenu) -> None:
+        self._add(menu, "&About Rigpaper", "", self._tell_about)
+
+    def _add(self, menu: QMenu, text: str, keys: str, act: Callable[[], object]) -> QAction:
+        action = QAction(text, self._window)
+        if keys:
+            action.setShortcut(QKeySequence(keys))
+        action.triggered.connect(lambda _=False: act())
+        menu.addAction(action)
+        return action
+
+    def _list_recent(self) -> None:
+        self._recent.clear()
+        for path in self._window.settings.recent:
+            self._add(self._recent, str(path), "", lambda path=path: self._window.files.open(path))
+        if self._recent.isEmpty():
+            self._recent.addAction("None yet").setEnabled(False)
+
+    def _list_samples(self) -> None:
+        for path in sorted(shipped("sample_sets").glob("*.json")):
+            self._add(self._samples, _title_of(path), "", lambda path=path: self._window.files.open_copy(path))
+
+    def _choose_scheme(self, name: str) -> None:
+        self._window.settings.scheme = name
+        application = QGuiApplication.instance()
+        if isinstance(application, QApplication):
+            apply_scheme(application, name)
+
+    def _tell_about(self) -> None:
+        QMessageBox.about(
+            self._window,
+            "About Rigpaper",
+            f"<p><b>Rigpaper {__version__}</b></p><p>Life-data analysis for test rigs and field returns.</p>"
+            f"<p>{STANDING_CAUTION.text}</p>",
+        )
+
+
+def _title_of(path: Path) -> str:
+    """Return a session's title without opening it whole."""
+    return str(json.loads(path.read_text(encoding="utf-8")).get("title") or path.stem)

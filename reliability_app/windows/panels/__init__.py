@@ -1,0 +1,1 @@
+"""The panels beside the charts: basis, sentence, readings, cautions."""

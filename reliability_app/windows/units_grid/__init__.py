@@ -1,0 +1,1 @@
+"""The units grid: a spreadsheet over the unit table."""

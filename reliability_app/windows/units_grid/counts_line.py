@@ -1,0 +1,80 @@
+"""The line below the grid: how many units are in which state, and why the current row cannot be read."""
+
+from __future__ import annotations
+
+from PySide6.QtCore import Qt, Signal
+from PySide6.QtWidgets import QHBoxLayout, QLabel, QSizePolicy, QToolButton, QVBoxLayout, QWidget
+
+from reliability_app.session.unit_table import Counts
+
+
+class CountsLine(QWidget):
+    """Counts the units, and while any row cannot be read says why, with a button that goes to the next such row.
+
+    Signals
+    -------
+    next_unread_asked()
+        The next row that cannot be read is to be shown.
+    """
+
+    next_unread_asked = Signal()
+
+    def __init__(self, parent: QWidget | None = None) -> None:
+        super().__init__(parent)
+        self._unread = 0
+        self._counts = QLabel()
+        self._counts.setTextInteractionFlags(Qt.TextInteractionFlag.TextSelectableByMouse)
+        self._reason = QLabel()
+        self._reason.setWordWrap(True)
+        self._reason.setTextInteractionFlags(Qt.TextInteractionFlag.TextSelectableByMouse)
+        self._reason.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Minimum)
+        self._button = QToolButton()
+        self._button.setText("Show unread")
+        self._button.setAccessibleName("Show the next unread row")
+        self._button.setToolTip("Go to the next row that cannot be read (F8)")
+        self._button.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
+        self._button.clicked.connect(self.next_unread_asked)
+        self._lay_out()
+
+    @property
+    def counts_text(self) -> str:
+        """The counts as shown."""
+        return self._counts.text()
+
+    @property
+    def reason_text(self) -> str:
+        """The reason as shown; "" where none is."""
+        return self._reason.text() if self._unread else ""
+
+    def tell_counts(self, counts: Counts) -> None:
+        """Show the counts."""
+        self._unread = counts.unread
+        self._counts.setText(counts_sentence(counts))
+        self._button.setVisible(counts.unread > 0)
+        self._reason.setVisible(counts.unread > 0)
+
+    def tell_reason(self, row: int, reason: str | None) -> None:
+        """Show why a row cannot be read, in a sentence; None for a row that can be."""
+        if reason is None:
+            left_out = "1 row is" if self._unread == 1 else f"{self._unread} rows are"
+            self._reason.setText(f"{left_out} kept but left out of the analysis.")
+        else:
+            self._reason.setText(f"! Row {row + 1}: {reason}")
+
+    def _lay_out(self) -> None:
+        line = QHBoxLayout()
+        line.setContentsMargins(0, 0, 0, 0)
+        line.addWidget(self._counts)
+        line.addStretch(1)
+        line.addWidget(self._button)
+        column = QVBoxLayout(self)
+        column.setContentsMargins(6, 0, 3, 3)
+        column.setSpacing(2)
+        column.addLayout(line)
+        column.addWidget(self._reason)
+
+
+def counts_sentence(counts: Counts) -> str:
+    """Say the counts: "12 failed, 8 running, 0 unread"; found failed are named where there are any."""
+    found = f", {counts.found_failed} found failed" if counts.found_failed else ""
+    return f"{counts.failed} failed, {counts.running} running{found}, {counts.unread} unread"

@@ -1,0 +1,1 @@
+"""Tests of the program; each folder mirrors a part of the package."""

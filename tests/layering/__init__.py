@@ -1,0 +1,1 @@
+"""Tests of the house itself: which floor may import which."""

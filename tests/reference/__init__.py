@@ -1,0 +1,1 @@
+"""Published and computed values the engine is held to, each file with its source."""

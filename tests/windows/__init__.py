@@ -1,0 +1,1 @@
+"""Tests of the windows, driven as a person would: keys, mouse, clipboard."""
