@@ -13,6 +13,7 @@ from reliability_app.engine.life_data import LifeData
 
 Array = NDArray[np.float64]
 
+_MOST_RANKED = 1_000_000
 PLOTTING_METHODS = ("kaplan_meier_midpoint", "median_rank", "benard")
 
 
@@ -78,7 +79,7 @@ def kaplan_meier(data: LifeData, *, confidence: float = 0.95) -> SurvivalSteps:
     failures = np.bincount(where, weights=data.quantity[failed], minlength=age.size).astype(np.float64)
     at_risk = _total_from(data.lower, data.quantity, age) - _total_from(data.entered, data.quantity, age)
     with np.errstate(divide="ignore", invalid="ignore"):
-        survival = np.cumprod(1.0 - failures / at_risk)
+        survival = np.cumprod(1.0 - failures / at_risk).astype(np.float64)
         variance = np.cumsum(failures / (at_risk * (at_risk - failures)))
         error = np.where(survival > 0, survival * np.sqrt(variance), np.nan)
         width = ndtri(0.5 + 0.5 * confidence) * np.sqrt(variance) / np.abs(np.log(survival))
@@ -117,14 +118,17 @@ def plotting_positions(data: LifeData, *, method: str = "kaplan_meier_midpoint")
             f"There are no plotting positions called {method!r}. There are: {', '.join(PLOTTING_METHODS)}."
         )
     _refuse_intervals(data, "Plotting positions")
-    age, rank = adjusted_ranks(data)
     if method != "kaplan_meier_midpoint":
+        age, rank = adjusted_ranks(data)
         place = median_rank if method == "median_rank" else benard_rank
         return PlottingPositions(age, place(rank, data.unit_count), rank)
     steps = kaplan_meier(data)
     before = np.concatenate([[1.0], steps.survival[:-1]])
-    last = np.searchsorted(age, steps.age, side="right") - 1
-    return PlottingPositions(steps.age, 1.0 - 0.5 * (before + steps.survival), rank[last])
+    # The product over the units of one age telescopes, so that their number does not matter.
+    remaining = _total_from(data.lower, data.quantity, steps.age)
+    kept = np.cumprod((remaining - steps.failures + 1.0) / (remaining + 1.0)).astype(np.float64)
+    rank = (data.unit_count + 1) * (1.0 - kept)
+    return PlottingPositions(steps.age, 1.0 - 0.5 * (before + steps.survival), rank)
 
 
 def adjusted_ranks(data: LifeData) -> tuple[Array, Array]:
@@ -134,13 +138,17 @@ def adjusted_ranks(data: LifeData) -> tuple[Array, Array]:
     running units of the same age and units of a quantity one after the other (Johnson 1964, from memory).
     """
     failed = data.is_failed
+    if data.failed_count > _MOST_RANKED:
+        raise BoundUnavailable(
+            f"Ranks are given unit by unit, for {_MOST_RANKED} failures at the most: use the Kaplan-Meier mid-points."
+        )
     order = np.argsort(data.lower[failed], kind="stable")
     age = np.repeat(data.lower[failed][order], data.quantity[failed][order].astype(np.intp))
     place = np.arange(age.size) - np.searchsorted(age, age, side="left")
     remaining = _total_from(data.lower, data.quantity, age) - place
     # With q = (n + 1 - rank)/(n + 1) the recursion is the product of remaining/(remaining + 1).
     unit_count = data.unit_count
-    return age, (unit_count + 1) * (1.0 - np.cumprod(remaining / (remaining + 1.0)))
+    return age, (unit_count + 1) * (1.0 - np.cumprod(remaining / (remaining + 1.0)).astype(np.float64))
 
 
 def median_rank(order: ArrayLike, n: int) -> Array:

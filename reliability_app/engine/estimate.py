@@ -54,6 +54,11 @@ class Estimate:
         return self.family.fixed_sigma is not None
 
     @property
+    def is_concave(self) -> bool:
+        """True where the log-likelihood is concave in (a, b): no unit entered late, or there is only a."""
+        return self.b_is_fixed or not self.sample.entered.y.shape[1]
+
+    @property
     def log_likelihood(self) -> float:
         """Log-likelihood of the lives themselves."""
         failures = float(self.sample.failed.weight.sum())

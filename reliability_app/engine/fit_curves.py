@@ -2,13 +2,11 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
-
 import numpy as np
 from numpy.typing import NDArray
 
 from reliability_app.engine.bounds import check_bound
-from reliability_app.engine.bounds.kinds import tail_of
+from reliability_app.engine.bounds.kinds import OPPOSITE_SIDE, Interval, tail_of
 from reliability_app.engine.curves import Curve
 from reliability_app.engine.empirical import SurvivalSteps
 from reliability_app.engine.errors import BoundUnavailable
@@ -18,23 +16,28 @@ from reliability_app.engine.life_measures import Measure
 Array = NDArray[np.float64]
 
 
-def failure_curve(fit: Fit, ages: Array, *, confidence: float, side: str, kind: str) -> Curve:
-    """Return the failure probability over age; `side` is that of the probability."""
-    cdf = fit.family.standard.cdf
-    return _curve(fit, ages, cdf(fit.score(ages)), fit.score_measure(ages), cdf, (kind, side, confidence))
-
-
-def survival_curve(fit: Fit, ages: Array, *, confidence: float, side: str, kind: str) -> Curve:
-    """Return the reliability over age; `side` is that of the reliability."""
-    survival = fit.family.standard.survival
-    measure = fit.score_measure(ages)
-    return _curve(fit, ages, survival(fit.score(ages)), measure, survival, (kind, side, confidence), falling=True)
+def probability_curves(fit: Fit, ages: Array, *, confidence: float, side: str, kind: str) -> tuple[Curve, Curve]:
+    """Return the failure probability and the reliability over age; `side` is that of the failure probability."""
+    standard, z = fit.family.standard, fit.score(ages)
+    interval = _interval(fit, fit.score_measure(ages), kind=kind, side=side, confidence=confidence)
+    if interval is None:
+        return Curve(ages, standard.cdf(z)), Curve(ages, standard.survival(z))
+    lower, upper = fit.reading_ends(interval, standard.cdf, ages, side, falling=False)
+    mirrored = fit.reading_ends(interval, standard.survival, ages, OPPOSITE_SIDE[side], falling=True)
+    return (
+        Curve(ages, standard.cdf(z), _band(lower), _band(upper)),
+        Curve(ages, standard.survival(z), _band(mirrored[0]), _band(mirrored[1])),
+    )
 
 
 def hazard_curve(fit: Fit, ages: Array, *, confidence: float, side: str, kind: str) -> Curve:
     """Return the hazard rate over age; `side` is that of the hazard."""
     values = np.asarray(fit.hazard(ages))
-    return _curve(fit, ages, values, fit.hazard_measure(ages), fit.hazard_of(ages), (kind, side, confidence))
+    interval = _interval(fit, fit.hazard_measure(ages), kind=kind, side=side, confidence=confidence)
+    if interval is None:
+        return Curve(ages, values)
+    lower, upper = fit.reading_ends(interval, fit.hazard_of(ages), ages, side, falling=False)
+    return Curve(ages, values, _band(lower), _band(upper))
 
 
 def step_curve(steps: SurvivalSteps, end: float) -> Curve:
@@ -47,24 +50,13 @@ def _corners(values: Array, start: float) -> Array:
     return np.repeat(np.concatenate([[start], values]), 2)
 
 
-def _curve(
-    fit: Fit,
-    ages: Array,
-    values: Array,
-    measure: Measure,
-    to_reading: Callable[[Array], Array],
-    bound: tuple[str, str, float],
-    *,
-    falling: bool = False,
-) -> Curve:
-    kind, side, confidence = bound
+def _interval(fit: Fit, measure: Measure, *, kind: str, side: str, confidence: float) -> Interval | None:
+    """Return the band of a measure, or None where this kind of bound does not exist for it."""
     check_bound(kind, side, confidence)
     try:
-        interval = fit.bounder.band(measure, kind, tail_of(side, confidence))
+        return fit.bounder.band(measure, kind, tail_of(side, confidence))
     except BoundUnavailable:
-        return Curve(ages, values)
-    lower, upper = fit.reading_ends(interval, to_reading, ages, side, falling=falling)
-    return Curve(ages, values, _band(lower), _band(upper))
+        return None
 
 
 def _band(values: float | Array | None) -> Array | None:

@@ -27,6 +27,10 @@ class Measure(ABC):
         """How many functions this is."""
 
     @abstractmethod
+    def at(self, places: NDArray[np.intp]) -> Measure:
+        """Return the chosen ones of these functions."""
+
+    @abstractmethod
     def terms(self, a: Array, b: Array) -> Terms:
         """Return values and derivatives at a, b, which broadcast against the functions on the first axis."""
 
@@ -41,6 +45,10 @@ class LifeMeasure(Measure):
     def size(self) -> int:
         """How many lives."""
         return self.z.size
+
+    def at(self, places: NDArray[np.intp]) -> LifeMeasure:
+        """Return the chosen lives."""
+        return LifeMeasure(self.z[places])
 
     def terms(self, a: Array, b: Array) -> Terms:
         """Return the standardised ln life and its derivatives."""
@@ -61,6 +69,10 @@ class ScoreMeasure(Measure):
         """How many ages."""
         return self.y.size
 
+    def at(self, places: NDArray[np.intp]) -> ScoreMeasure:
+        """Return the scores at the chosen ages."""
+        return ScoreMeasure(self.y[places])
+
     def terms(self, a: Array, b: Array) -> Terms:
         """Return z and its derivatives."""
         y = _column(self.y, a)
@@ -80,6 +92,10 @@ class HazardMeasure(Measure):
     def size(self) -> int:
         """How many ages."""
         return self.y.size
+
+    def at(self, places: NDArray[np.intp]) -> HazardMeasure:
+        """Return the hazards at the chosen ages."""
+        return HazardMeasure(self.y[places], self.standard)
 
     def terms(self, a: Array, b: Array) -> Terms:
         """Return the log hazard and its derivatives."""
@@ -103,6 +119,10 @@ class SlopeMeasure(Measure):
     def size(self) -> int:
         """One."""
         return 1
+
+    def at(self, places: NDArray[np.intp]) -> SlopeMeasure:  # noqa: ARG002 - there is only one
+        """Return itself."""
+        return self
 
     def terms(self, a: Array, b: Array) -> Terms:
         """Return ln b and its derivatives."""

@@ -16,6 +16,7 @@ from reliability_app.session.numbers import (
     is_plain,
     looks_numeric,
     plain_number,
+    proven_mark,
     quoted,
     read_number,
 )
@@ -37,13 +38,12 @@ class StateColumn:
 
 
 def decide_marks(texts: Mapping[str, Sequence[str]]) -> dict[str, DecimalMark]:
-    """Decide the decimal mark of each column of numbers; one in doubt follows the others of the same table."""
+    """Decide the decimal mark of each column of numbers; a column that proves none follows the rest of its table."""
     ends = {key: _ends(cells) for key, cells in texts.items()}
-    marks = {key: decide_mark(cells) for key, cells in ends.items()}
-    if DecimalMark.AMBIGUOUS in marks.values():
-        together = decide_mark([end for cells in ends.values() for end in cells])
-        marks = {key: together if mark is DecimalMark.AMBIGUOUS else mark for key, mark in marks.items()}
-    return marks
+    proven = {key: proven_mark(cells) for key, cells in ends.items()}
+    others = {mark for mark in proven.values() if mark is not None}
+    common = others.pop() if len(others) == 1 else None
+    return {key: proven[key] or common or decide_mark(cells) for key, cells in ends.items()}
 
 
 def _ends(cells: Sequence[str]) -> Sequence[str]:
@@ -53,8 +53,13 @@ def _ends(cells: Sequence[str]) -> Sequence[str]:
     return [end for cell in cells for end in _RANGE_DASH.split(cell)]
 
 
-def plain_numbers(cells: Sequence[str], mark: DecimalMark) -> list[str]:
-    """Return cells with all numbers that can be read under `mark` in plain form, also those in "1.500,5+"."""
+def plain_numbers(cells: Sequence[str], mark: DecimalMark, *, only_marked: bool = False) -> list[str]:
+    """Return cells with all numbers that can be read under `mark` in plain form, also those in "1.500,5+".
+
+    `only_marked` leaves numbers without comma or point as typed: in a column of codes "0012" is no 12.
+    """
+    if only_marked:
+        return [_plain_cell(cell, mark) if "," in cell or "." in cell else cell for cell in cells]
     if mark is not DecimalMark.COMMA:
         return [cell if not cell or is_plain(cell) else _plain_cell(cell, mark) for cell in cells]
     return [cell if not cell or ("." not in cell and is_plain(cell)) else _plain_cell(cell, mark) for cell in cells]
@@ -81,7 +86,7 @@ def mark_notes(key: str, before: Sequence[str], after: Sequence[str], mark: Deci
         return []
     changed = next(((old, new) for old, new in zip(before, after, strict=True) if old != new), None)
     if mark is DecimalMark.COMMA and changed:
-        return [f"{heading} has a decimal comma: {quoted(changed[0])} was read as {changed[1]}."]
+        return [f"{heading} is written with decimal commas: {quoted(changed[0])} was read as {changed[1]}."]
     doubtful = next((cell for cell in after if re.fullmatch(r"[1-9]\d{0,2},\d{3}", cell)), None)
     if doubtful:
         whole, fraction = doubtful.replace(",", ""), doubtful.replace(",", ".")

@@ -8,8 +8,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from reliability_app.engine import Curve, Fit, LifeData, kaplan_meier, plotting_positions
-from reliability_app.engine.fit_curves import failure_curve, hazard_curve, step_curve, survival_curve
-from reliability_app.session.document import Basis, HazardAsk, LifeAsk
+from reliability_app.engine.fit_curves import hazard_curve, probability_curves, step_curve
+from reliability_app.session.document import Basis, HazardAsk
 from reliability_app.session.taking_readings import bound_side
 from reliability_app.session.unit_table import ReadUnits
 
@@ -78,12 +78,9 @@ def draw_curves(fitted: Fit, basis: Basis) -> Curves:
     ages = _ages(fitted)
     confidence, kind = basis.confidence, basis.bound
     against = bound_side(HazardAsk(0.0), basis.side)
-    along = bound_side(LifeAsk(0.0), basis.side)
-    return Curves(
-        failure=failure_curve(fitted, ages, confidence=confidence, side=against, kind=kind),
-        hazard=hazard_curve(fitted, ages, confidence=confidence, side=against, kind=kind),
-        survival=survival_curve(fitted, ages, confidence=confidence, side=along, kind=kind),
-    )
+    failure, survival = probability_curves(fitted, ages, confidence=confidence, side=against, kind=kind)
+    hazard = hazard_curve(fitted, ages, confidence=confidence, side=against, kind=kind)
+    return Curves(failure=failure, hazard=hazard, survival=survival)
 
 
 def _ages(fitted: Fit) -> Floats:

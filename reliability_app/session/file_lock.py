@@ -6,10 +6,10 @@ holds it, however that ends, so a lock never outlives its owner. What the file s
 
 from __future__ import annotations
 
-import fcntl
 import json
 import os
 import platform
+import sys
 from contextlib import suppress
 from datetime import datetime
 from pathlib import Path
@@ -114,7 +114,17 @@ def _open(path: Path) -> int:
 
 def _lock(descriptor: int) -> None:
     """Lock the open file for this descriptor alone; BlockingIOError when another one has it."""
-    fcntl.flock(descriptor, fcntl.LOCK_EX | fcntl.LOCK_NB)
+    if sys.platform == "win32":
+        import msvcrt
+
+        try:
+            msvcrt.locking(descriptor, msvcrt.LK_NBLCK, 1)
+        except OSError as error:
+            raise BlockingIOError(*error.args) from None
+    else:
+        import fcntl
+
+        fcntl.flock(descriptor, fcntl.LOCK_EX | fcntl.LOCK_NB)
 
 
 def _is_still(path: Path, descriptor: int) -> bool:

@@ -87,7 +87,8 @@ _RANKED = _ranked_headings()
 _BRACKETED = re.compile(r"[(\[{]([^()\[\]{}]*)[)\]}]?")
 _TO_FAILURE = re.compile(
     r"(?:\w+ )?(?:(?:to|until|till|at|before) (?:first )?(?:failure|break|breakdown|fracture)"
-    r"|bis (?:zum )?(?:ausfall|bruch)|jusqu a (?:la )?(?:defaillance|rupture)|hasta (?:el |la )?(?:fallo|falla|rotura)|fino al? (?:guasto|rottura))"
+    r"|bis (?:zum )?(?:ausfall|bruch)|jusqu a (?:la )?(?:defaillance|rupture)"
+    r"|hasta (?:el |la )?(?:fallo|falla|rotura)|fino al? (?:guasto|rottura))"
 )
 _QUESTION = re.compile(r"(?:is|has|was|did|did it|had|still)\b|\b(?:y n|yes no|indicator|flag|code|1 0|0 1)$")
 _CODE = re.compile(r"\b([01]|yes|no|y|n|true|false)\s*(?:=|:|means|is)\s*(\w+)", re.IGNORECASE)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import html
+import math
 import re
 from collections.abc import Sequence
 from dataclasses import dataclass
@@ -87,11 +88,10 @@ def with_full_precision(rows: Sequence[Sequence[str]], cells: Sequence[Sequence[
 
 def _is_in_full(cell: HtmlCell) -> bool:
     """Return whether the number behind a cell is the one displayed, up to the rounding of the display."""
-    if not cell.value or not is_plain(cell.value):
+    if not is_plain(cell.value) or math.isinf(value := float(cell.value)):
         return False
     if cell.shown and not cell.shown.strip("#"):
         return True  # a column too narrow to display its numbers
-    value = read_number(cell.value)
     return any(_rounds_to(value, cell.shown, mark) for mark in (DecimalMark.POINT, DecimalMark.COMMA))
 
 

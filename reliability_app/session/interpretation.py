@@ -108,7 +108,7 @@ def _read_numbers(
         return dict.fromkeys(numeric, DecimalMark.POINT)
     marks = dict.fromkeys(numeric, mark) if mark else decide_marks(numeric)
     for key, as_typed in numeric.items():
-        texts[key] = plain_numbers(as_typed, marks[key])
+        texts[key] = plain_numbers(as_typed, marks[key], only_marked=key in extras)
         notes += mark_notes(key, as_typed, texts[key], marks[key])
     return marks
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 import enum
 import math
 import re
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 
 
 class DecimalMark(enum.Enum):
@@ -88,30 +88,36 @@ def are_plain(cells: Iterable[str]) -> bool:
     return all(map(_is_plain_or_empty, cells))
 
 
-def decide_mark(cells: Iterable[str]) -> DecimalMark:
-    """Decide the decimal mark of a column from all its cells.
+def proven_mark(cells: Iterable[str]) -> DecimalMark | None:
+    """Return the decimal mark that cells prove: by "53,2" or "1.401,40", by "53.2" or "1,401.40".
 
-    Parameters
-    ----------
-    cells : iterable of str
-        The cells as typed; cells that are no numbers are passed over.
-
-    Returns
-    -------
-    DecimalMark
-        COMMA or POINT when at least one cell proves it ("53,2", "1.401,40"; "53.2", "1,401.40") and none the
-        other. POINT when nothing speaks for a comma. AMBIGUOUS when the cells contradict each other, or when
-        commas occur only as in "1,234".
+    AMBIGUOUS if they contradict each other, None if no cell proves anything; cells that are no numbers are passed over.
     """
-    joined = "\n".join(cell.replace("\n", "\0") for cell in cells if "," in cell or "." in cell)
-    joined = joined.translate(_LOOKALIKES)
-    comma = _COMMA_LINE.search(joined) is not None
-    point = _POINT_LINE.search(joined) is not None
-    if comma or point:
-        if comma and point:
-            return DecimalMark.AMBIGUOUS
-        return DecimalMark.COMMA if comma else DecimalMark.POINT
-    return DecimalMark.AMBIGUOUS if _DOUBTFUL_LINE.search(joined) else DecimalMark.POINT
+    lines = _marked_lines(cells)
+    comma = _COMMA_LINE.search(lines) is not None
+    point = _POINT_LINE.search(lines) is not None
+    if comma and point:
+        return DecimalMark.AMBIGUOUS
+    if comma:
+        return DecimalMark.COMMA
+    return DecimalMark.POINT if point else None
+
+
+def decide_mark(cells: Sequence[str]) -> DecimalMark:
+    """Return the decimal mark of a column from all its cells.
+
+    Where none proves a mark, it is POINT, or AMBIGUOUS if there are commas, which are then all as in "1,234".
+    """
+    proven = proven_mark(cells)
+    if proven is not None:
+        return proven
+    return DecimalMark.AMBIGUOUS if _DOUBTFUL_LINE.search(_marked_lines(cells)) else DecimalMark.POINT
+
+
+def _marked_lines(cells: Iterable[str]) -> str:
+    """Return the cells with a comma or point in them, one a line, with look-alike signs replaced."""
+    marked = (cell.replace("\n", "\0") for cell in cells if "," in cell or "." in cell)
+    return "\n".join(marked).translate(_LOOKALIKES)
 
 
 def plain_number(text: str, mark: DecimalMark | None = None) -> str:

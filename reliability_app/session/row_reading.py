@@ -31,7 +31,9 @@ _FAILED_BETWEEN = re.compile(
 )
 
 # A quick look for one of the signs above, since most texts have none.
-_HAS_SIGN = re.compile(r"^[<>\u2264\u2265(\[]|\+$|[0-9)\]]\s*(?:[-\u2013\u2014\u2026;]|\.\.|to|bis)", re.IGNORECASE).search
+_HAS_SIGN = re.compile(
+    r"^[<>\u2264\u2265(\[]|\+$|[0-9)\]]\s*(?:[-\u2013\u2014\u2026;]|\.\.|to|bis)", re.IGNORECASE
+).search
 
 
 @dataclass(frozen=True)

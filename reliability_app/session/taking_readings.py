@@ -3,18 +3,18 @@
 from __future__ import annotations
 
 from functools import partial
+from typing import cast
 
 import numpy as np
 
 from reliability_app.engine import Fit
+from reliability_app.engine.bounds.kinds import OPPOSITE_SIDE
 from reliability_app.engine.cautions import Caution, Severity, worst_first
 from reliability_app.engine.errors import RigpaperError
 from reliability_app.engine.fit_cautions import cautions_of_age, cautions_of_bound
 from reliability_app.session.document import Ask, Basis, HazardAsk, LifeAsk, ReliabilityAsk, Side
 from reliability_app.session.picture import Reading
 from reliability_app.session.wording import age_text, ask_title
-
-_OPPOSITE: dict[Side, Side] = {"lower": "upper", "upper": "lower", "two": "two"}
 
 
 def take_reading(fitted: Fit, ask: Ask, basis: Basis, life_unit: str) -> Reading:
@@ -57,4 +57,4 @@ def bound_side(ask: Ask, side: Side) -> Side:
     The side of a basis is that of lives and reliabilities; a hazard is bounded on the opposite side, so that a lower
     bound of the life goes with an upper bound of the hazard.
     """
-    return _OPPOSITE[side] if isinstance(ask, HazardAsk) else side
+    return cast(Side, OPPOSITE_SIDE[side]) if isinstance(ask, HazardAsk) else side

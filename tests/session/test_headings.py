@@ -85,8 +85,16 @@ def test_heading_tells_what_a_yes_means(text: str, yes_means: str | None) -> Non
 
 @pytest.mark.parametrize(
     ("text", "unit"),
-    [("hrs", "h"), ("Cycles", "cycles"), ("km", "km"), ("10^3 km", "10^3 km"), ("thousand hours", "thousand hours")]
-    + [("pump A", None), ("", None), ("mm", None), ("°C", None)],
+    [
+        ("hrs", "h"),
+        ("Cycles", "cycles"),
+        ("10^3 km", "10^3 km"),
+        ("thousand hours", "thousand hours"),
+        ("pump A", None),
+        ("", None),
+        ("mm", None),
+        ("°C", None),
+    ],
 )
 def test_units_of_age_are_known(text: str, unit: str | None) -> None:
     assert read_life_unit(text) == unit

@@ -134,9 +134,17 @@ def test_sound_row_has_no_fault(row: dict[str, str]) -> None:
         ({"life": "200", "state": FOUND_FAILED}, "until", "Until is empty: type the age"),
         ({"life": "200", "until": "200"}, "until", "Until '200' is not above Life '200': type"),
         ({"life": "200", "until": "x"}, "until", "Until 'x' is not a number"),
-        ({"life": "200", "until": "400", "state": FAILED}, "until", "but State says failed: clear Until or change State"),
+        (
+            {"life": "200", "until": "400", "state": FAILED},
+            "until",
+            "but State says failed: clear Until or change State",
+        ),
         ({"life": "abc", "until": "-4"}, "until", "is not above 0"),
-        ({"life": "812", "state": FAILED, "quantity": "0"}, "quantity", "Qty '0' is not a whole number of units: type 1"),
+        (
+            {"life": "812", "state": FAILED, "quantity": "0"},
+            "quantity",
+            "Qty '0' is not a whole number of units: type 1",
+        ),
         ({"life": "812", "state": FAILED, "quantity": "2.5"}, "quantity", "Qty '2.5' is not a whole number"),
         ({"life": "812", "state": FAILED, "quantity": "-1"}, "quantity", "Qty '-1' is not a whole number"),
         ({"life": "812", "state": FAILED, "quantity": "two"}, "quantity", "Qty 'two' is not a number"),
@@ -158,7 +166,9 @@ def test_all_faults_of_a_row_are_told_together() -> None:
     assert list(found) == ["life", "state", "quantity", "entered"]
 
 
-NUMBERS = st.sampled_from(["", "0", "1", "812", "53.2", "-5", "1e999", "abc", "1,234", "1500+", "2-4", "2.5", "3.0", "1e10"])
+NUMBERS = st.sampled_from(
+    ["", "0", "1", "812", "53.2", "-5", "1e999", "abc", "1,234", "1500+", "2-4", "2.5", "3.0", "1e10"]
+)
 ROWS = st.lists(
     st.tuples(NUMBERS, NUMBERS, st.sampled_from(["", FAILED, RUNNING, FOUND_FAILED, "who"]), NUMBERS, NUMBERS),
     min_size=1,

@@ -88,7 +88,10 @@ def test_nothing_to_analyse_says_why() -> None:
 
 def test_faults_name_row_column_and_what_was_typed() -> None:
     table = table_of(("812", "failed"), ("-5", "who"))
-    assert [(fault.row, fault.column, fault.typed) for fault in table.faults()] == [(1, "life", "-5"), (1, "state", "who")]
+    assert [(fault.row, fault.column, fault.typed) for fault in table.faults()] == [
+        (1, "life", "-5"),
+        (1, "state", "who"),
+    ]
     assert table.faults()[0].reason == table.fault(1, "life") == "Life '-5' is negative: type an age above 0."
     assert table.fault(0, "life") is None
     assert table.fault(1, "note") is None

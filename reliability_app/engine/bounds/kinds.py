@@ -11,6 +11,7 @@ from scipy.special import ndtri
 
 from reliability_app.engine.bounds.exact import exact_interval
 from reliability_app.engine.bounds.likelihood_ratio import likelihood_interval, outline_interval
+from reliability_app.engine.bounds.profile import profile_interval
 from reliability_app.engine.bounds.region import Region, likelihood_region
 from reliability_app.engine.bounds.wald import wald_interval
 from reliability_app.engine.errors import BoundUnavailable, DataError, UnknownName
@@ -24,6 +25,9 @@ Interval = tuple[Array, Array]
 BOUND_KINDS = ("likelihood", "wald", "exact")
 _PROMISED = ("automatic", "calibrated")
 SIDES = ("lower", "upper", "two")
+OPPOSITE_SIDE = {"lower": "upper", "upper": "lower", "two": "two"}
+# Where each bound is slow a band is computed at this many of its ages and joined.
+_SLOW_BAND = 24
 _LEAST_CONFIDENCE, _MOST_CONFIDENCE = 0.5, 0.999999
 
 
@@ -68,13 +72,23 @@ class Bounder:
         """Return both ends of the bound of a measure, each of shape (measure.size,)."""
         chosen: dict[str, Callable[[], Interval]] = {
             "wald": lambda: wald_interval(self.estimate, measure, -float(ndtri(tail))),
-            "likelihood": lambda: likelihood_interval(self.estimate, measure, self.region(tail)),
+            "likelihood": lambda: self._likelihood(measure, tail),
             "exact": lambda: exact_interval(self.estimate, self.data, measure, tail),
         }
         return chosen[kind]()
 
     def band(self, measure: Measure, kind: str, tail: float) -> Interval:
         """Return the same to the accuracy of a picture, quickly for many functions at once."""
-        if kind == "likelihood":
+        if kind == "likelihood" and self.estimate.is_concave:
             return outline_interval(measure, self.region(tail))
-        return self.interval(measure, kind, tail)
+        if kind == "wald" or measure.size <= _SLOW_BAND:
+            return self.interval(measure, kind, tail)
+        every = np.arange(measure.size)
+        some = np.unique(np.linspace(0, measure.size - 1, _SLOW_BAND).round().astype(np.intp))
+        low, high = self.interval(measure.at(some), kind, tail)
+        return np.interp(every, some, low), np.interp(every, some, high)
+
+    def _likelihood(self, measure: Measure, tail: float) -> Interval:
+        if self.estimate.is_concave:
+            return likelihood_interval(self.estimate, measure, self.region(tail))
+        return profile_interval(self.estimate, measure, -float(ndtri(tail)))

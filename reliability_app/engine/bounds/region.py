@@ -11,7 +11,6 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from reliability_app.engine.errors import BoundUnavailable
 from reliability_app.engine.estimate import Estimate
 
 Array = NDArray[np.float64]
@@ -23,8 +22,6 @@ _OUTLINE_POINTS = 480
 _MOST_STEPS = 60
 _DISTANCE_REACHED = 1e-9
 _NEAREST_TO_ZERO = 1e-9
-# Rays in whitened steps are as long as the root where the log-likelihood is quadratic.
-_WILDEST = 4.0
 
 
 @dataclass(frozen=True, eq=False)
@@ -54,25 +51,21 @@ def likelihood_region(estimate: Estimate, root: float) -> Region:
         step = np.array([[-scale, 0.0], [scale, 0.0]])
         radius, closed = ray_lengths(estimate, step, root)
         return Region(estimate.a + radius * step[:, 0], np.full(2, estimate.b), closed, drop)
-    rays = _ray_count(estimate)
-    angles = np.arange(rays) * (2.0 * np.pi / rays)
-    whitening = np.linalg.cholesky(estimate.covariance_ab)
-    steps = np.stack([np.cos(angles), np.sin(angles)], axis=-1) @ whitening.T
+    steps = _rays(estimate, _ray_count(estimate))
     radius, closed = ray_lengths(estimate, steps, root)
-    _refuse_wild_region(estimate, radius, closed, root)
-    if closed.all():
-        radius, steps = _fill_in(radius, whitening)
-        closed = np.ones(radius.size, dtype=bool)
-    return Region(estimate.a + radius * steps[:, 0], estimate.b + radius * steps[:, 1], closed, drop)
+    if not closed.all():
+        return Region(estimate.a + radius * steps[:, 0], estimate.b + radius * steps[:, 1], closed, drop)
+    radius = _filled_in(radius)
+    steps = _rays(estimate, radius.size)
+    every = np.ones(radius.size, dtype=bool)
+    return Region(estimate.a + radius * steps[:, 0], estimate.b + radius * steps[:, 1], every, drop)
 
 
-def _refuse_wild_region(estimate: Estimate, radius: Array, closed: Mask, root: float) -> None:
-    """Refuse where late entry bends the log-likelihood so far from concave that the outline cannot be trusted."""
-    if estimate.sample.entered.y.shape[1] and (not closed.all() or radius.max() > _WILDEST * root):
-        raise BoundUnavailable(
-            "The units came under observation so late that the likelihood is nearly flat to one side, and no "
-            "likelihood-ratio bound can be given at this confidence: units watched from an earlier age would help."
-        )
+def _rays(estimate: Estimate, count: int) -> Array:
+    """Return steps (a, b) in evenly spaced directions, each one standard error long; shape (count, 2)."""
+    angles = np.arange(count) * (2.0 * np.pi / count)
+    whitening = np.linalg.cholesky(estimate.covariance_ab)
+    return np.asarray(np.stack([np.cos(angles), np.sin(angles)], axis=-1) @ whitening.T)
 
 
 def _ray_count(estimate: Estimate) -> int:
@@ -117,12 +110,10 @@ def ray_lengths(estimate: Estimate, steps: Array, root: float) -> tuple[Array, M
     return radius, closed
 
 
-def _fill_in(radius: Array, whitening: Array) -> tuple[Array, Array]:
-    """Interpolate the radii by a periodic trigonometric polynomial; returns radii and whitened steps."""
+def _filled_in(radius: Array) -> Array:
+    """Interpolate the radii between the rays by a periodic trigonometric polynomial."""
     count = radius.size
-    spectrum = np.fft.rfft(np.log(radius))
     points = _OUTLINE_POINTS // count * count
+    spectrum = np.fft.rfft(np.log(radius))
     spectrum[-1] *= 0.5 if points > count else 1.0
-    dense = np.exp(np.fft.irfft(spectrum, points).astype(np.float64) * (points / count))
-    angles = np.arange(points) * (2.0 * np.pi / points)
-    return dense, np.stack([np.cos(angles), np.sin(angles)], axis=-1) @ whitening.T
+    return np.exp(np.asarray(np.fft.irfft(spectrum, points), dtype=np.float64) * (points / count))

@@ -9,6 +9,7 @@ from __future__ import annotations
 from typing import NamedTuple
 
 import numpy as np
+from numpy.typing import NDArray
 
 from reliability_app.engine.families.base import Array, Derivatives, StandardDistribution
 
@@ -46,7 +47,7 @@ def log_interval(standard: StandardDistribution, middle: Array, half: Array) -> 
 def _integrated(
     standard: StandardDistribution, at_middle: Derivatives, middle: Array, half: Array
 ) -> IntervalDerivatives:
-    """Integrate the density by Gauss-Legendre; slope and curvature are its mean slope and curvature over the interval."""
+    """Integrate the density by Gauss-Legendre; slope and curvature are its means over the interval."""
     at_nodes = standard.log_density(middle[..., None] + half[..., None] * _NODES)
     relative = _SHARES * np.exp(at_nodes.value - at_middle.value[..., None])
     inside = relative.sum(axis=-1)
@@ -75,7 +76,7 @@ def _subtracted(standard: StandardDistribution, middle: Array, half: Array) -> I
     return _assembled(larger + np.log(share), (ratio_low, ratio_high), ends)
 
 
-def _tail(standard: StandardDistribution, z: Array, left: Array) -> Derivatives:
+def _tail(standard: StandardDistribution, z: Array, left: NDArray[np.bool_]) -> Derivatives:
     """Return ln F where `left`, else ln S."""
     cdf, survival = standard.log_cdf(z), standard.log_survival(z)
     return Derivatives(*(np.where(left, *both) for both in zip(cdf, survival, strict=True)))

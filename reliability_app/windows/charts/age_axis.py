@@ -5,18 +5,22 @@ from __future__ import annotations
 from reliability_app.engine.paper import AgeScale, AgeScaleKind, Tick
 from reliability_app.windows.charts.round_axis import RoundAxis
 
+_ROOM_BETWEEN: dict[AgeScaleKind, float] = {"log": 1.2, "linear": 2.2}
+
 
 class AgeAxis(RoundAxis):
     """Shows positions of an age scale as ages."""
 
     def __init__(self, kind: AgeScaleKind) -> None:
         self.age_scale = AgeScale(kind)
+        self.room_between = _ROOM_BETWEEN[kind]
         super().__init__("bottom")
 
     def set_kind(self, kind: AgeScaleKind) -> None:
         """Change over to a log or a linear scale."""
         if kind != self.age_scale.kind:
             self.age_scale = AgeScale(kind)
+            self.room_between = _ROOM_BETWEEN[kind]
             self._forget()
 
     def ticks_between(self, low: float, high: float, most: int) -> list[Tick]:

@@ -5,8 +5,9 @@ from __future__ import annotations
 from collections.abc import Sequence
 from typing import Protocol
 
+import numpy as np
 from PySide6.QtCore import QEvent, QPoint, Qt, Signal
-from PySide6.QtGui import QAction, QActionGroup, QFontMetricsF, QGuiApplication
+from PySide6.QtGui import QAction, QActionGroup, QFont, QFontMetricsF, QGuiApplication
 from PySide6.QtWidgets import QLabel, QMenu, QStackedLayout, QWidget
 
 from reliability_app.engine.paper import AgeScale, AgeScaleKind
@@ -24,16 +25,17 @@ from reliability_app.windows.charts.round_axis import RoundAxis
 from reliability_app.windows.theme import SeriesStyle, Theme, theme_of
 
 NO_UNITS = "Paste or type lives in the Units grid."
+_SMALL = 0.85
 _MARK_SHARE = 0.62  # size of a unit's mark, in line heights
 
 
 class SetDrawing(Protocol):
     """What a page draws of one set."""
 
-    def show(self, picture: SetPicture) -> None:
+    def show(self, picture: SetPicture, life_unit: str) -> None:
         """Draw a picture."""
 
-    def dress(self, style: SeriesStyle, theme: Theme, mark_size: float) -> None:
+    def dress(self, style: SeriesStyle, theme: Theme, *, mark_size: float, font: QFont) -> None:
         """Take the looks of the set."""
 
     def remove(self) -> None:
@@ -51,12 +53,16 @@ class ChartPage(QWidget):
         The percent of the reading while it is moved by mouse or key.
     percent_chosen(float)
         The percent at which it was let go.
+    age_dragged(float), age_chosen(float)
+        On a page whose line is upright, the age that goes with the percent.
     age_scale_changed(str)
         "log" or "linear", when the user changed the age axis.
     """
 
     percent_dragged = Signal(float)
     percent_chosen = Signal(float)
+    age_dragged = Signal(float)
+    age_chosen = Signal(float)
     age_scale_changed = Signal(str)
 
     _is_built = False  # Qt sends change events while a widget is still being made
@@ -78,8 +84,9 @@ class ChartPage(QWidget):
         self._life_unit = "h"
         self._drawings: list[SetDrawing] = []
         self._percent: float | None = None
-        self._moved_percent: float | None = None
+        self._moved: tuple[float, float] | None = None  # percent and age of a reading not yet let go
         self._is_moved_by_hand = False
+        self._drags: Along = drags
         self._age_axis = AgeAxis(age_scale)
         self._upright = upright
         self.view = ChartView(self._age_axis, upright)
@@ -102,7 +109,7 @@ class ChartPage(QWidget):
         """Return a drawing for one more set."""
         raise NotImplementedError
 
-    def _place_mark(self, picture: SetPicture, place: Place) -> ReadingMark | None:
+    def _place_mark(self, place: Place) -> ReadingMark | None:
         """Return where the reading stands on this chart."""
         raise NotImplementedError
 
@@ -141,16 +148,15 @@ class ChartPage(QWidget):
         """Draw these sets over each other, with the reading of the one at `current`."""
         before = self._pictures[self._current] if self._pictures else None
         was = self._pictures
+        if life_unit != self._life_unit:
+            self._forget_drawings()
         self._pictures, self._life_unit = tuple(pictures), life_unit
         self._current = min(max(current, 0), max(len(pictures) - 1, 0))
         if before is None or self.current is None or before.name != self.current.name:
             self._is_moved_by_hand = False
         self._draw()
-        is_new = len(was) != len(pictures) or any(
-            old.point_age is not new.point_age or old.failure is not new.failure or old.family != new.family
-            for old, new in zip(was, pictures, strict=True)
-        )
-        self._settle_view(is_new=is_new)
+        is_same = len(was) == len(pictures) and all(map(_same_units, was, pictures))
+        self._settle_view(is_new=not is_same)
 
     def retheme(self, theme: Theme) -> None:
         """Take the colours of a theme."""
@@ -260,6 +266,12 @@ class ChartPage(QWidget):
     def _mark_size(self) -> float:
         return round(_MARK_SHARE * QFontMetricsF(self.font()).height())
 
+    @property
+    def _small_font(self) -> QFont:
+        font = QFont(self.font())
+        font.setPointSizeF(_SMALL * font.pointSizeF() if font.pointSizeF() > 0 else 8.0)
+        return font
+
     def _draw(self) -> None:
         nothing = self._nothing_to_show()
         self._note.setText(nothing)
@@ -271,7 +283,7 @@ class ChartPage(QWidget):
         while len(self._drawings) < len(self._pictures):
             self._drawings.append(self._new_drawing())
         for drawing, picture in zip(self._drawings, self._pictures, strict=True):
-            drawing.show(picture)
+            drawing.show(picture, self._life_unit)
         self._age_axis.setLabel(f"Age ({self._life_unit})" if self._life_unit else "Age")
         self._upright.setLabel(self._upright_title())
         self._legend.show_entries(
@@ -282,7 +294,8 @@ class ChartPage(QWidget):
 
     def _dress_drawings(self) -> None:
         for drawing, picture in zip(self._drawings, self._pictures, strict=True):
-            drawing.dress(self._theme.style(picture.colour), self._theme, self._mark_size)
+            style = self._theme.style(picture.colour)
+            drawing.dress(style, self._theme, mark_size=self._mark_size, font=self._small_font)
         current = self.current
         if current is not None:
             self.reading_line.dress(self._theme, self._theme.style(current.colour).colour, self.font())
@@ -303,13 +316,11 @@ class ChartPage(QWidget):
         self.view.setAccessibleDescription(said)
 
     def _show_place(self, place: Place | None) -> None:
-        current = self.current
-        mark = None if current is None or place is None else self._place_mark(current, place)
-        self.reading_line.show_mark(mark)
+        self.reading_line.show_mark(None if place is None else self._place_mark(place))
 
     def _settle_view(self, *, is_new: bool) -> None:
         """Show the whole picture, unless the user has chosen a part or nothing would be gained by moving."""
-        if self._is_moved_by_hand or self.reading_line.is_dragging or self._moved_percent is not None:
+        if self._is_moved_by_hand or self.reading_line.is_dragging or self._moved is not None:
             return
         mark = self.reading_line.mark
         (left, right), (low, high) = self.view.plotItem.vb.viewRange()
@@ -337,12 +348,30 @@ class ChartPage(QWidget):
         place = preview(current, percent, self._life_unit)
         if place is None:
             return
-        self._percent = self._moved_percent = percent
+        self._percent = percent
+        self._moved = (percent, place.age)
         self._show_place(place)
         self.percent_dragged.emit(percent)
+        if self._drags == "age":
+            self.age_dragged.emit(place.age)
 
     def _choose_percent(self) -> None:
-        percent, self._moved_percent = self._moved_percent, None
-        if percent is not None:
-            self.percent_chosen.emit(percent)
-            self._settle_view(is_new=False)
+        moved, self._moved = self._moved, None
+        if moved is None:
+            return
+        percent, age = moved
+        self.percent_chosen.emit(percent)
+        if self._drags == "age":
+            self.age_chosen.emit(age)
+        self._settle_view(is_new=False)
+
+
+def _same_units(old: SetPicture, new: SetPicture) -> bool:
+    """Tell whether two pictures show the same units on the same paper, so that the view may stay."""
+    return (
+        old.family == new.family
+        and (old.failure is None) == (new.failure is None)
+        and np.array_equal(old.point_age, new.point_age)
+        and np.array_equal(old.point_fraction, new.point_fraction)
+        and np.array_equal(old.running_age, new.running_age)
+    )

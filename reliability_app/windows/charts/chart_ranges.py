@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -74,17 +74,26 @@ def paper_range(
     if mark is not None:
         heights.append(mark.value)
     low, high = min([float(usual[0]), *heights]), max([float(usual[1]), *heights])
-    left, right = unit_ages(pictures, scale)
-    width = right - left
+    units = unit_ages(pictures, scale)
+    width = units[1] - units[0]
+    fits = [p for p in pictures if p.failure is not None and p.failure.x.size > 1]
     reached = [
         float(scale.to_scale(age_at(p, fraction)))
-        for p in pictures
-        if p.failure is not None and p.failure.x.size > 1
+        for p in fits
         for fraction in probability.from_scale([low, high]).tolist()
     ]
-    left, right = _widened(left, right, reached, _FIT_BEYOND * width)
+    left, right = _widened(*units, reached, _FIT_BEYOND * width)
     left, right = _with_mark(left, right, mark, _BOUND_BEYOND * width)
-    return Range(left, right, low, high).padded(left=_PADDING, right=_PADDING, low=0.09, high=_PADDING)
+    whole = Range(left, right, low, high).padded(left=_PADDING, right=_PADDING, low=0.09, high=_PADDING)
+    drawn = scale.to_scale([end for p in fits if p.failure is not None for end in p.failure.x[[0, -1]]])
+    return whole if drawn.size == 0 else _within_drawn(whole, (float(drawn.min()), float(drawn.max())), (left, right))
+
+
+def _within_drawn(whole: Range, drawn: tuple[float, float], needed: tuple[float, float]) -> Range:
+    """Keep the ends of the drawn curves out of sight, as far as all that must be seen allows."""
+    left = min(max(whole.left, drawn[0]), needed[0])
+    right = max(min(whole.right, drawn[1]), needed[1])
+    return replace(whole, left=left, right=right)
 
 
 def curve_range(pictures: Sequence[SetPicture], mark: ReadingMark | None, scale: AgeScale, *, high: float) -> Range:

@@ -23,7 +23,7 @@ _MORE = (Qt.Key.Key_Up, Qt.Key.Key_Right)
 _READING_KEYS = Qt.KeyboardModifier.ShiftModifier | Qt.KeyboardModifier.AltModifier
 
 
-class ChartView(pg.PlotWidget):
+class ChartView(pg.PlotWidget):  # type: ignore[misc]  # pyqtgraph ships no types
     """A plot with the keyboard of the program.
 
     Arrows pan, + and - zoom, 0 and Home reset; Alt with an arrow moves the reading to the next round percent, Shift

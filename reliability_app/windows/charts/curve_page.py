@@ -2,11 +2,13 @@
 
 from __future__ import annotations
 
+from functools import partial
+
 import numpy as np
 import pyqtgraph as pg
 from numpy.typing import NDArray
 from PySide6.QtCore import QPointF
-from PySide6.QtGui import QColor, QPainterPath
+from PySide6.QtGui import QColor, QFont, QPainterPath
 from PySide6.QtWidgets import QWidget
 
 from reliability_app.engine.curves import Curve
@@ -17,7 +19,7 @@ from reliability_app.windows.charts.chart_page import ChartPage, SetDrawing
 from reliability_app.windows.charts.chart_ranges import Range, curve_range, hazard_top, unit_ages
 from reliability_app.windows.charts.legend import Corner
 from reliability_app.windows.charts.reading_line import ReadingMark
-from reliability_app.windows.charts.reading_marks import Place, aged_mark, fraction_at, hazard_mark
+from reliability_app.windows.charts.reading_marks import Place, aged_mark, fraction_at, hazard_mark, running_tip
 from reliability_app.windows.charts.reading_steps import snapped
 from reliability_app.windows.charts.set_items import STEPS_DEPTH, FitLine, Marks, smooth_curve
 from reliability_app.windows.theme import SeriesStyle, Theme
@@ -75,8 +77,8 @@ class HazardPage(CurvePage):
             return NO_ESTIMATE
         return nothing
 
-    def _place_mark(self, picture: SetPicture, place: Place) -> ReadingMark | None:
-        return hazard_mark(picture, place, self._scale, self._life_unit)
+    def _place_mark(self, place: Place) -> ReadingMark | None:
+        return hazard_mark(self.current, place, self._scale, self._life_unit)
 
     def _whole_range(self, mark: ReadingMark | None) -> Range:
         ages = self._scale.from_scale(unit_ages(self._pictures, self._scale))
@@ -96,7 +98,7 @@ class SurvivalPage(CurvePage):
     def _upright_title(self) -> str:
         return "Reliability (%)"
 
-    def _place_mark(self, picture: SetPicture, place: Place) -> ReadingMark | None:
+    def _place_mark(self, place: Place) -> ReadingMark | None:
         running = 100.0 * (1.0 - place.fraction)
         if place.fractions != (None, None):
             return running_mark(place, self._scale)
@@ -115,14 +117,14 @@ class HazardOfSet:
         self._shown: SetPicture | None = None
         self.fit = FitLine(view_box)
 
-    def show(self, picture: SetPicture) -> None:
+    def show(self, picture: SetPicture, life_unit: str) -> None:  # noqa: ARG002 - no mark here says an age
         """Draw a picture."""
         if self._shown is None or self._shown.hazard is not picture.hazard:
             show_curve(self.fit, picture.hazard, self._age, times=1.0)
         self._shown = picture
 
-    def dress(self, style: SeriesStyle, theme: Theme, mark_size: float) -> None:
-        """Take the looks of the set."""
+    def dress(self, style: SeriesStyle, theme: Theme, *, mark_size: float, font: QFont) -> None:  # noqa: ARG002
+        """Take the looks of the set; a hazard has no marks."""
         self.fit.dress(style, is_dark=theme.is_dark)
 
     def remove(self) -> None:
@@ -142,23 +144,21 @@ class SurvivalOfSet:
         view_box.addItem(self.steps, ignoreBounds=True)
         self.running = Marks(view_box, filled=False)
 
-    def show(self, picture: SetPicture) -> None:
+    def show(self, picture: SetPicture, life_unit: str) -> None:
         """Draw a picture."""
         was, self._shown = self._shown, picture
         if was is None or was.survival is not picture.survival:
             show_curve(self.fit, picture.survival, self._age, times=100.0)
         if was is None or was.steps is not picture.steps or was.running_age is not picture.running_age:
-            self._show_steps(picture)
+            self._show_steps(picture, life_unit)
 
-    def dress(self, style: SeriesStyle, theme: Theme, mark_size: float) -> None:
+    def dress(self, style: SeriesStyle, theme: Theme, *, mark_size: float, font: QFont) -> None:
         """Take the looks of the set; running units are upright ticks on the steps."""
         self.fit.dress(style, is_dark=theme.is_dark)
         colour = QColor(style.colour)
         colour.setAlphaF(0.85)
         self.steps.setPen(pg.mkPen(colour, width=1.0))
-        self.running.item.setSymbol(_upright_tick())
-        self.running.item.setSize(mark_size)
-        self.running.item.setPen(pg.mkPen(style.colour, width=1.25))
+        self.running.dress(style, theme, size=mark_size, font=font, symbol=_upright_tick())
 
     def remove(self) -> None:
         """Leave the plot for good."""
@@ -166,15 +166,21 @@ class SurvivalOfSet:
         self.running.remove()
         self._view_box.removeItem(self.steps)
 
-    def _show_steps(self, picture: SetPicture) -> None:
+    def _show_steps(self, picture: SetPicture, life_unit: str) -> None:
         steps = picture.steps
         if steps is None:
             self.steps.setData(np.empty(0), np.empty(0))
-            self.running.show(np.empty(0), np.empty(0))
-            return
-        self.steps.setData(_begun(self._age.to_scale(steps.x)), 100.0 * steps.y)
-        last = np.searchsorted(steps.x, picture.running_age, side="right") - 1
-        self.running.show(self._age.to_scale(picture.running_age), 100.0 * steps.y[np.maximum(last, 0)])
+            height = np.full_like(picture.running_age, np.nan)
+        else:
+            self.steps.setData(_begun(self._age.to_scale(steps.x)), 100.0 * steps.y)
+            last = np.searchsorted(steps.x, picture.running_age, side="right") - 1
+            height = 100.0 * steps.y[np.maximum(last, 0)]
+        self.running.show(
+            self._age.to_scale(picture.running_age),
+            height,
+            counts=picture.running_quantity,
+            tip=partial(running_tip, picture, life_unit),
+        )
 
 
 def show_curve(fit: FitLine, curve: Curve | None, age: AgeScale, *, times: float) -> None:

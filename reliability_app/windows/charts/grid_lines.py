@@ -39,7 +39,7 @@ class GridLines(QGraphicsItem):
         """Return the whole of the view."""
         return QRectF(self._view_box.rect())
 
-    def paint(self, painter: QPainter, option: QStyleOptionGraphicsItem, widget: QWidget | None = None) -> None:
+    def paint(self, painter: QPainter, _option: QStyleOptionGraphicsItem, _widget: QWidget | None = None) -> None:
         """Draw the fine lines, then those at labels, each on whole pixels."""
         painter.setRenderHint(QPainter.RenderHint.Antialiasing, False)
         (left, right), (low, high) = self._view_box.viewRange()

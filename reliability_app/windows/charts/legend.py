@@ -18,7 +18,7 @@ Corner = Literal["left", "right"]
 _SAMPLE = 30.0
 _GAP = 8.0
 _MARGIN = 10.0
-_LONGEST_NAME = 190.0
+_LONGEST_NAME = 30  # characters of average width
 _IN_FRONT = 40.0
 
 
@@ -70,7 +70,7 @@ class Legend(QGraphicsItem):
         left = _MARGIN if self._corner == "left" else self._view_box.width() - width - _MARGIN
         return QRectF(left, _MARGIN, width, height)
 
-    def paint(self, painter: QPainter, option: QStyleOptionGraphicsItem, widget: QWidget | None = None) -> None:
+    def paint(self, painter: QPainter, _option: QStyleOptionGraphicsItem, _widget: QWidget | None = None) -> None:
         """Draw ground, samples and names."""
         box = self.boundingRect()
         ground = QColor(self._ground)
@@ -96,7 +96,9 @@ class Legend(QGraphicsItem):
         painter.restore()
 
     def _elided(self, name: str) -> str:
-        return QFontMetricsF(self._font).elidedText(name, Qt.TextElideMode.ElideMiddle, _LONGEST_NAME)
+        metrics = QFontMetricsF(self._font)
+        longest = _LONGEST_NAME * metrics.averageCharWidth()
+        return metrics.elidedText(name, Qt.TextElideMode.ElideMiddle, longest)
 
     def _line_height(self) -> float:
         return QFontMetricsF(self._font).height() + 4.0

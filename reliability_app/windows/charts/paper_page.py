@@ -2,9 +2,12 @@
 
 from __future__ import annotations
 
+from functools import partial
+
 import numpy as np
 import pyqtgraph as pg
 from numpy.typing import NDArray
+from PySide6.QtGui import QFont
 from PySide6.QtWidgets import QWidget
 
 from reliability_app.engine.paper import AgeScale, ProbabilityScale
@@ -13,7 +16,7 @@ from reliability_app.windows.charts.chart_page import ChartPage, SetDrawing
 from reliability_app.windows.charts.chart_ranges import Range, paper_range
 from reliability_app.windows.charts.probability_axis import ProbabilityAxis
 from reliability_app.windows.charts.reading_line import ReadingMark
-from reliability_app.windows.charts.reading_marks import Place, paper_mark
+from reliability_app.windows.charts.reading_marks import Place, failed_tip, paper_mark, running_tip
 from reliability_app.windows.charts.reading_steps import snapped
 from reliability_app.windows.charts.set_items import EdgeMarks, FitLine, Marks
 from reliability_app.windows.theme import SeriesStyle, Theme
@@ -53,7 +56,7 @@ class PaperPage(ChartPage):
     def _upright_title(self) -> str:
         return "Failed (%)"
 
-    def _place_mark(self, picture: SetPicture, place: Place) -> ReadingMark | None:
+    def _place_mark(self, place: Place) -> ReadingMark | None:
         return paper_mark(place, self._probability, self._scale, self._life_unit)
 
     def _whole_range(self, mark: ReadingMark | None) -> Range:
@@ -73,39 +76,40 @@ class SetOnPaper:
     def __init__(self, view_box: pg.ViewBox, probability: ProbabilityScale, age: AgeScale, *, row: int) -> None:
         self._probability, self._age, self._row = probability, age, row
         self._shown: SetPicture | None = None
-        self._mark_size = 8.0
         self.fit = FitLine(view_box)
         self.points = Marks(view_box, filled=True)
         self.running = EdgeMarks(view_box)
 
-    def show(self, picture: SetPicture) -> None:
+    def show(self, picture: SetPicture, life_unit: str) -> None:
         """Draw a picture; what has not changed since the last one is left alone."""
         was, self._shown = self._shown, picture
         if was is None or was.point_age is not picture.point_age:
-            self.points.show(self._age.to_scale(picture.point_age), self._probability.to_scale(picture.point_fraction))
+            self.points.show(
+                self._age.to_scale(picture.point_age),
+                self._probability.to_scale(picture.point_fraction),
+                counts=picture.point_quantity,
+                tip=partial(failed_tip, picture, life_unit),
+            )
         if was is None or was.running_age is not picture.running_age:
-            self._stand()
+            self.running.stand(
+                self._age.to_scale(picture.running_age),
+                counts=picture.running_quantity,
+                tip=partial(running_tip, picture, life_unit),
+            )
         if was is None or was.failure is not picture.failure:
             self._show_fit(picture)
 
-    def dress(self, style: SeriesStyle, theme: Theme, mark_size: float) -> None:
-        """Take the looks of the set."""
-        self._mark_size = mark_size
+    def dress(self, style: SeriesStyle, theme: Theme, *, mark_size: float, font: QFont) -> None:
+        """Take the looks of the set; its running units stand in a row of their own."""
         self.fit.dress(style, is_dark=theme.is_dark)
-        self.points.dress(style, size=mark_size, background=theme.background)
-        self.running.dress(style, size=mark_size, background=theme.background)
-        self._stand()
+        for marks in (self.points, self.running):
+            marks.dress(style, theme, size=mark_size, font=font)
+        self.running.raise_to((0.5 + self._row) * (mark_size + 3.0) + 2.0)
 
     def remove(self) -> None:
         """Leave the plot for good."""
         for part in (self.fit, self.points, self.running):
             part.remove()
-
-    def _stand(self) -> None:
-        """Put the running units on the lower edge, each set in a row of its own."""
-        if self._shown is not None:
-            height = (0.5 + self._row) * (self._mark_size + 3.0) + 2.0
-            self.running.stand(self._age.to_scale(self._shown.running_age), height=height)
 
     def _show_fit(self, picture: SetPicture) -> None:
         if picture.failure is None:

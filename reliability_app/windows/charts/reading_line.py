@@ -204,7 +204,7 @@ class ReadingLine(QGraphicsObject):
 
     # --- drawing
 
-    def paint(self, painter: QPainter, option: QStyleOptionGraphicsItem, widget: QWidget | None = None) -> None:
+    def paint(self, painter: QPainter, _option: QStyleOptionGraphicsItem, _widget: QWidget | None = None) -> None:
         """Draw line, drop line, bracket and ring inside the view, and the tags on the axes."""
         mark, spot, area = self._mark, self._spot(), self._area()
         if mark is None or spot is None:
@@ -255,15 +255,21 @@ class ReadingLine(QGraphicsObject):
             if text:
                 self._paint_end_text(painter, end, text, inward, mark.along)
 
-    def _paint_end_text(self, painter: QPainter, end: QPointF, text: str, inward: int, along: Along) -> None:
-        """Write the bound beside its end of the bracket, on the outer side, on a piece of ground."""
+    def _end_text_box(self, end: QPointF, text: str, inward: int, along: Along) -> QRectF:
+        """Return the place of a bound's text: outside its end of the bracket, or inside where that would not fit."""
         width, height = self._tag_size(text)
-        if along == "age":
-            x = end.x() - width - 3.0 if inward > 0 else end.x() + 3.0
-            box = QRectF(x, end.y() - 0.5 * height, width, height)
-        else:
+        area = self._area()
+        if along == "value":
             y = end.y() + 3.0 if inward > 0 else end.y() - height - 3.0
-            box = QRectF(end.x() - 0.5 * width, y, width, height)
+            return QRectF(end.x() - 0.5 * width, y, width, height)
+        box = QRectF(end.x() - width - 3.0 if inward > 0 else end.x() + 3.0, end.y() - 0.5 * height, width, height)
+        if area.left() <= box.left() and box.right() <= area.right():
+            return box
+        return box.translated(inward * (width + 3.0), -height)
+
+    def _paint_end_text(self, painter: QPainter, end: QPointF, text: str, inward: int, along: Along) -> None:
+        """Write the bound beside its end of the bracket, on a piece of ground."""
+        box = self._end_text_box(end, text, inward, along)
         ground = QColor(self._ground)
         ground.setAlphaF(0.85)
         painter.setRenderHint(QPainter.RenderHint.Antialiasing, True)

@@ -16,6 +16,8 @@ from reliability_app.windows.charts.reading_line import ReadingMark
 
 Floats = NDArray[np.float64]
 
+_MOST_ROWS_NAMED = 6
+
 
 @dataclass(frozen=True)
 class Place:
@@ -131,14 +133,37 @@ def aged_mark(place: Place, value: float, age: AgeScale, life_unit: str, *, valu
     )
 
 
-def hazard_mark(picture: SetPicture, place: Place, age: AgeScale, life_unit: str) -> ReadingMark | None:
+def hazard_mark(picture: SetPicture | None, place: Place, age: AgeScale, life_unit: str) -> ReadingMark | None:
     """Return the mark of a reading on the hazard rate; a hazard that was asked for brings its own bound."""
-    if picture.hazard is None:
+    if picture is None or picture.hazard is None:
         return None
     reading = picture.reading
     if reading is not None and isinstance(reading.ask, HazardAsk) and reading.ask.age == place.age:
         return _asked_hazard(reading, place, age, life_unit)
     return aged_mark(place, value_at(picture.hazard, place.age), age, life_unit, value_text="")
+
+
+def failed_tip(picture: SetPicture, life_unit: str, at: int) -> str:
+    """Return what is said of a plotting position."""
+    rows = picture.point_rows[at] if at < len(picture.point_rows) else ()
+    count = int(picture.point_quantity[at])
+    many = "" if count == 1 else f"{count} "
+    said = f"{many}failed at {as_given(float(picture.point_age[at]))} {life_unit}".rstrip()
+    place = f"plotted at {number_text(100.0 * float(picture.point_fraction[at]))} %"
+    return f"{picture.name}: {said}, {place}{_rows_text(rows)}"
+
+
+def running_tip(picture: SetPicture, life_unit: str, at: int) -> str:
+    """Return what is said of running units."""
+    count, age = int(picture.running_quantity[at]), as_given(float(picture.running_age[at]))
+    return f"{picture.name}: {count} running at {age} {life_unit}".rstrip()
+
+
+def _rows_text(rows: tuple[int, ...]) -> str:
+    """Return the rows of the grid a mark stands for, counted from 1 as the grid does."""
+    if not rows or len(rows) > _MOST_ROWS_NAMED:
+        return ""
+    return f" (row{'' if len(rows) == 1 else 's'} {', '.join(str(row + 1) for row in rows)})"
 
 
 def _asked_hazard(reading: Reading, place: Place, age: AgeScale, life_unit: str) -> ReadingMark:

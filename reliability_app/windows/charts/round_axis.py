@@ -15,16 +15,16 @@ _TICK_LENGTH = 4
 _TEXT_OFFSET = 3
 _WIDEST_TAG = "99.9 % "  # the tag of a usual reading has its place, so that the axis need not widen for it
 _LEAST_LENGTH = 40.0  # pixels; a shorter axis is not worth a label
-_ROOM_BETWEEN = 1.2  # line heights between the labels of a level axis
 
 
-class RoundAxis(pg.AxisItem):
+class RoundAxis(pg.AxisItem):  # type: ignore[misc]  # pyqtgraph ships no types
     """The common part of the axes: adaptive round ticks, theme, font, and place kept free for the reading's tag.
 
-    `room` is the line heights an upright axis gives each label.
+    `room` is the line heights an upright axis gives each label, `room_between` what a level one leaves between.
     """
 
     room = 1.6
+    room_between = 1.2
 
     def __init__(self, orientation: str) -> None:
         self._font = QFont()
@@ -79,7 +79,7 @@ class RoundAxis(pg.AxisItem):
             self._ticks_for, self._ticks = key, self._fitting(low, high, length)
         return self._ticks
 
-    def tickValues(self, minVal: float, maxVal: float, size: float) -> list[tuple[float, list[float]]]:
+    def tickValues(self, _low: float, _high: float, _size: float) -> list[tuple[float, list[float]]]:
         """Answer pyqtgraph: the labelled ticks on the first level, the minor ones on the second."""
         ticks = self.shown_ticks()
         return [
@@ -87,7 +87,7 @@ class RoundAxis(pg.AxisItem):
             (1.0, [tick.position for tick in ticks if not tick.major]),
         ]
 
-    def tickStrings(self, values: Sequence[float], scale: float, spacing: float) -> list[str]:
+    def tickStrings(self, values: Sequence[float], _scale: float, _spacing: float) -> list[str]:
         """Answer pyqtgraph: the labels, left blank where a tag covers them."""
         labels = {tick.position: tick.label for tick in self.shown_ticks()}
         return ["" if self._is_covered(value, labels[value]) else labels[value] for value in values]
@@ -95,7 +95,7 @@ class RoundAxis(pg.AxisItem):
     def label_size(self, text: str) -> float:
         """Return the length a label takes along the axis, in pixels."""
         metrics = QFontMetricsF(self._font)
-        return metrics.height() if self._is_upright else metrics.horizontalAdvance(text)
+        return float(metrics.height() if self._is_upright else metrics.horizontalAdvance(text))
 
     def _forget(self) -> None:
         """Work the ticks out anew at the next occasion."""
@@ -108,7 +108,7 @@ class RoundAxis(pg.AxisItem):
         return bool(self.orientation in ("left", "right"))
 
     def _pixels_each(self) -> float:
-        low, high = sorted(self.range)
+        low, high = (float(end) for end in sorted(self.range))
         size = self.geometry()
         return float(size.height() if self._is_upright else size.width()) / (high - low)
 
@@ -131,7 +131,7 @@ class RoundAxis(pg.AxisItem):
                 (after - before) * each - 0.5 * (wide_before + wide_after)
                 for (before, wide_before), (after, wide_after) in pairwise(labelled)
             )
-            if min(rooms, default=length) >= _ROOM_BETWEEN * line:
+            if min(rooms, default=length) >= self.room_between * line:
                 break
         return ticks
 

@@ -2,19 +2,25 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable, Sequence
+
 import numpy as np
 import pyqtgraph as pg
 from numpy.typing import NDArray
-from PySide6.QtCore import Qt
-from PySide6.QtGui import QColor, QPainterPath, QPen
+from PySide6.QtCore import QPointF, Qt
+from PySide6.QtGui import QColor, QFont, QPainter, QPainterPath, QPen
 from PySide6.QtWidgets import QGraphicsPathItem
 
-from reliability_app.windows.theme import SeriesStyle
+from reliability_app.windows.theme import SeriesStyle, Theme
 
 Floats = NDArray[np.float64]
+Integers = NDArray[np.int64]
 
 BAND_DEPTH, LINE_DEPTH, STEPS_DEPTH, MARKS_DEPTH = -30.0, -20.0, -10.0, 10.0
 _LINE_WIDTH = 2.0
+_MOST_NUMBERS = 40
+_MOST_WITH_TIPS = 5000  # pyqtgraph looks at every mark when the mouse moves
+_CROWD = 150
 _BAND_SHARE = {False: 0.12, True: 0.16}  # how strongly a band's ground is coloured, on light and on dark
 
 
@@ -71,30 +77,93 @@ class FitLine:
             self._view_box.removeItem(item)
 
 
+class CountedSpots(pg.ScatterPlotItem):  # type: ignore[misc]  # pyqtgraph ships no types
+    """Marks beside which a small number stands where one mark is several units."""
+
+    def __init__(self) -> None:
+        super().__init__(pxMode=True, hoverable=True, tip=None)
+        self._numbers: list[tuple[int, str]] = []
+        self._ink, self._text_font = QColor(), QFont()
+
+    def set_counts(self, counts: Sequence[int]) -> None:
+        """Say how many units each mark is; where very many marks are several units, no number is written."""
+        numbers = [(at, str(count)) for at, count in enumerate(counts) if count > 1]
+        self._numbers = numbers if len(numbers) <= _MOST_NUMBERS else []
+        self.update()
+
+    def dress_numbers(self, ink: str, font: QFont) -> None:
+        """Take colour and font of the numbers."""
+        self._ink, self._text_font = QColor(ink), QFont(font)
+        self.update()
+
+    def paint(self, painter: QPainter, *args: object) -> None:
+        """Draw the marks and the numbers, which keep their size at every zoom."""
+        transform = painter.transform()
+        super().paint(painter, *args)
+        if not self._numbers:
+            return
+        painter.resetTransform()
+        painter.setFont(self._text_font)
+        painter.setPen(self._ink)
+        for at, text in self._numbers:
+            spot = self.data[at]
+            where = transform.map(QPointF(float(spot["x"]), float(spot["y"])))
+            painter.drawText(where + QPointF(0.5 * self.opts["size"] + 1.0, -0.25 * self.opts["size"]), text)
+
+
 class Marks:
     """Marks of units in the colour and shape of their set, filled or open."""
 
     def __init__(self, view_box: pg.ViewBox, *, filled: bool) -> None:
         self._view_box, self._filled = view_box, filled
-        self.item = pg.ScatterPlotItem(pxMode=True)
+        self._count = 0
+        self.item = CountedSpots()
         self.item.setZValue(MARKS_DEPTH)
         view_box.addItem(self.item, ignoreBounds=True)
 
-    def show(self, x: Floats, y: Floats) -> None:
-        """Show a mark at each finite point."""
-        inside = np.isfinite(x) & np.isfinite(y)
-        self.item.setData(x=x[inside], y=y[inside])
+    def show(self, x: Floats, y: Floats, *, counts: Integers, tip: Callable[[int], str]) -> None:
+        """Show a mark at each finite point.
 
-    def dress(self, style: SeriesStyle, *, size: float, background: str) -> None:
-        """Take colour and shape of a set; filled marks get a rim of ground so that neighbours stay apart."""
-        self.item.setSymbol(style.symbol)
-        self.item.setSize(size)
+        Parameters
+        ----------
+        x, y : ndarray, shape (n,)
+            Positions of the axes.
+        counts : ndarray of int, shape (n,)
+            Units that each mark is.
+        tip : callable
+            What to say of the mark with this index while the mouse is over it.
+        """
+        at = np.flatnonzero(np.isfinite(x) & np.isfinite(y))
+        self._count = at.size
+        says_tips = at.size <= _MOST_WITH_TIPS
+        self.item.setData(
+            x=x[at],
+            y=y[at],
+            data=at.tolist(),
+            hoverable=says_tips,
+            tip=(lambda x, y, data: tip(data)) if says_tips else None,  # noqa: ARG005 - pyqtgraph names them
+        )
+        self.item.set_counts(counts[at].tolist() if at.size <= _CROWD else ())
+
+    def dress(
+        self, style: SeriesStyle, theme: Theme, *, size: float, font: QFont, symbol: QPainterPath | None = None
+    ) -> None:
+        """Take the looks of a set; filled marks get a rim of ground so that neighbours stay apart.
+
+        In a crowd the marks are smaller, and without the rim that would wash it out. `symbol` takes the place of
+        the set's own mark.
+        """
+        crowded = self._count > _CROWD
+        self.item.setSymbol(style.symbol if symbol is None else symbol)
+        self.item.setSize(round(0.65 * size) if crowded else size)
+        self.item.dress_numbers(theme.muted, font)
         if self._filled:
-            self.item.setPen(pg.mkPen(background, width=0.75))
+            rim = pg.mkPen(None) if crowded else pg.mkPen(theme.background, width=0.75)
+            self.item.setPen(rim)
             self.item.setBrush(pg.mkBrush(style.colour))
         else:
             self.item.setPen(pg.mkPen(style.colour, width=1.25))
-            self.item.setBrush(pg.mkBrush(background))
+            self.item.setBrush(pg.mkBrush(theme.background))
 
     def remove(self) -> None:
         """Take the marks out of the view for good."""
@@ -110,10 +179,14 @@ class EdgeMarks(Marks):
         view_box.sigYRangeChanged.connect(self._follow)
         view_box.sigResized.connect(self._follow)
 
-    def stand(self, x: Floats, *, height: float) -> None:
-        """Show a mark at each finite x, `height` pixels above the lower edge."""
+    def stand(self, x: Floats, *, counts: Integers, tip: Callable[[int], str]) -> None:
+        """Show a mark at each finite x."""
+        self.show(x, np.zeros_like(x), counts=counts, tip=tip)
+        self._follow()
+
+    def raise_to(self, height: float) -> None:
+        """Stand `height` pixels above the lower edge."""
         self._height = height
-        self.show(x, np.zeros_like(x))
         self._follow()
 
     def _follow(self, *_: object) -> None:

@@ -2,7 +2,17 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import QAbstractItemModel, QEvent, QModelIndex, QObject, QPersistentModelIndex, QRect, Qt, Signal
+from PySide6.QtCore import (
+    QAbstractItemModel,
+    QEvent,
+    QItemSelectionModel,
+    QModelIndex,
+    QObject,
+    QPersistentModelIndex,
+    QRect,
+    Qt,
+    Signal,
+)
 from PySide6.QtGui import QBrush, QKeyEvent, QPainter, QPalette, QPen
 from PySide6.QtWidgets import (
     QCompleter,
@@ -193,12 +203,19 @@ class CellEditor(QStyledItemDelegate):
         completer.setCompletionMode(QCompleter.CompletionMode.InlineCompletion)
         editor.setCompleter(completer)
         completer.activated.connect(lambda text: self._choose(editor, text))
+        # While the list is down Enter comes past `eventFilter`, straight from the list.
+        editor.returnPressed.connect(lambda: self._take_as_typed(editor))
 
     def _choose(self, editor: QLineEdit, text: str) -> None:
         if editor.completer().completionMode() == QCompleter.CompletionMode.InlineCompletion:
             return
         editor.setText(text)
         self._finish(editor)
+
+    def _take_as_typed(self, editor: QLineEdit) -> None:
+        if not editor.completer().popup().currentIndex().isValid():
+            self._finish(editor)
+            self.stepped.emit(Step.DOWN, False)
 
 
 def show_list(editor: QLineEdit) -> None:
@@ -208,6 +225,9 @@ def show_list(editor: QLineEdit) -> None:
         return
     completer.setCompletionMode(QCompleter.CompletionMode.UnfilteredPopupCompletion)
     completer.complete()
+    popup = completer.popup()
+    # Marked as chosen, so that the first arrow key leads to the next word and not to this one.
+    popup.selectionModel().select(popup.currentIndex(), QItemSelectionModel.SelectionFlag.ClearAndSelect)
 
 
 _ARROW_MODIFIERS = (Qt.KeyboardModifier.NoModifier, Qt.KeyboardModifier.KeypadModifier)

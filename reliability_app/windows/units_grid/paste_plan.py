@@ -19,7 +19,8 @@ from reliability_app.windows.units_grid.grid_moves import CellRange
 class PastePlan:
     """What a paste will do: the edit (None where there is nothing to paste), and what to say about it.
 
-    `rows` are the rows it writes, `columns` those it writes cell by cell (none for whole rows).
+    `rows` are the rows it writes, `columns` those it writes cell by cell (none for whole rows). `understood` is there
+    where the paste was taken for a table, which may be read differently: see `plan_again`.
     """
 
     edit: Edit | None
@@ -27,6 +28,7 @@ class PastePlan:
     notes: tuple[str, ...] = ()
     rows: range = range(0)
     columns: tuple[str, ...] = ()
+    understood: Understanding | None = None
 
 
 @dataclass(frozen=True)
@@ -104,6 +106,11 @@ def plan_paste(clip: Clip, place: PastePlace) -> PastePlan:
     return _cell_by_cell(block, place)
 
 
+def plan_again(understood: Understanding, place: PastePlace) -> PastePlan:
+    """Plan the same paste anew, after it was taken back, as the table it is now read as."""
+    return _as_table(understood, place)
+
+
 def _understood(clip: Clip, place: PastePlace) -> Understanding:
     column = place.columns_from_start[0]
     # In an empty table the cursor rests on the first cell, which says nothing about what is pasted.
@@ -134,7 +141,7 @@ def _as_table(understood: Understanding, place: PastePlace) -> PastePlan:
     if understood.life_unit and not takes_unit and understood.life_unit != place.life_unit:
         notes = (*notes, _other_unit(understood.life_unit, place.life_unit))
     rows = range(start, start + len(understood.rows))
-    return PastePlan(edit, understood.sentence, notes, rows)
+    return PastePlan(edit, understood.sentence, notes, rows, understood=understood)
 
 
 def _belongs_elsewhere(understood: Understanding, block: Sequence[Sequence[str]], place: PastePlace) -> bool:

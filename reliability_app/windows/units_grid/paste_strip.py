@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from PySide6.QtCore import Qt, Signal
+from PySide6.QtCore import QPoint, Qt, Signal
 from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QSizePolicy, QToolButton, QVBoxLayout, QWidget
 
 
@@ -15,11 +15,14 @@ class PasteStrip(QFrame):
     -------
     undo_asked()
         The paste is to be taken back.
+    change_asked(QPoint)
+        It is to be understood differently: show what can be chosen, at a place on the screen.
     closed()
         The user has read it and put it away.
     """
 
     undo_asked = Signal()
+    change_asked = Signal(QPoint)
     closed = Signal()
 
     def __init__(self, parent: QWidget | None = None) -> None:
@@ -35,12 +38,14 @@ class PasteStrip(QFrame):
         self._notes_button.toggled.connect(self._notes.setVisible)
         self._undo_button = _button("Undo paste", "Undo paste")
         self._undo_button.clicked.connect(self.undo_asked)
+        self._change_button = _button("Change \N{HORIZONTAL ELLIPSIS}", "Read the paste differently")
+        self._change_button.clicked.connect(self._ask_change)
         close = _button("\N{MULTIPLICATION SIGN}", "Close this line")
         close.clicked.connect(self._close)
         self._lay_out(close)
         self.hide()
 
-    def tell(self, sentence: str, *, notes: Sequence[str], unread: int, can_undo: bool) -> None:
+    def tell(self, sentence: str, *, notes: Sequence[str], unread: int, can_undo: bool, can_change: bool) -> None:
         """Show what a paste was understood to be, with the number of its rows that cannot be read."""
         faults = "" if not unread else f"  <b>! {_rows(unread)} cannot be read.</b>"
         self._sentence.setText(f"{_escaped(sentence)}{faults}")
@@ -50,6 +55,7 @@ class PasteStrip(QFrame):
         self._notes_button.setVisible(count > 0)
         self._notes_button.setChecked(False)
         self._undo_button.setVisible(can_undo)
+        self._change_button.setVisible(can_change)
         self.show()
 
     @property
@@ -57,9 +63,24 @@ class PasteStrip(QFrame):
         """The line as shown."""
         return self._sentence.text()
 
+    @property
+    def notes(self) -> str:
+        """What was odd, as it unfolds."""
+        return self._notes.text()
+
+    @property
+    def shows_notes(self) -> bool:
+        """Whether the oddities are unfolded."""
+        return self._notes.isVisible()
+
     def forbid_undo(self) -> None:
-        """Take the Undo button away: something else was done since."""
+        """Take the buttons away that work on the paste: something else was done since."""
         self._undo_button.setVisible(False)
+        self._change_button.setVisible(False)
+
+    def _ask_change(self) -> None:
+        corner = self._change_button.rect().bottomLeft()
+        self.change_asked.emit(self._change_button.mapToGlobal(corner))
 
     def _close(self) -> None:
         self.hide()
@@ -69,7 +90,7 @@ class PasteStrip(QFrame):
         line = QHBoxLayout()
         line.setContentsMargins(0, 0, 0, 0)
         line.addWidget(self._sentence, 1)
-        for button in (self._notes_button, self._undo_button, close):
+        for button in (self._notes_button, self._change_button, self._undo_button, close):
             line.addWidget(button, 0, Qt.AlignmentFlag.AlignTop)
         column = QVBoxLayout(self)
         column.setContentsMargins(8, 3, 3, 3)

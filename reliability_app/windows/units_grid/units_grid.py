@@ -10,6 +10,7 @@ from PySide6.QtWidgets import QMenu, QVBoxLayout, QWidget
 
 from reliability_app.session.document import Change, Session
 from reliability_app.session.edits import Edit, RemoveColumn, TableEdit
+from reliability_app.session.understanding import Understanding
 from reliability_app.session.unit_table import BUILT_IN_COLUMNS, UnitTable
 from reliability_app.windows.units_grid import block_commands
 from reliability_app.windows.units_grid.counts_line import CountsLine
@@ -18,7 +19,8 @@ from reliability_app.windows.units_grid.grid_clipboard import put_cells, read_cl
 from reliability_app.windows.units_grid.grid_model import GridModel
 from reliability_app.windows.units_grid.grid_moves import CellRange
 from reliability_app.windows.units_grid.grid_view import GridView
-from reliability_app.windows.units_grid.paste_plan import PastePlace, PastePlan, plan_paste
+from reliability_app.windows.units_grid.paste_changes import change_menu
+from reliability_app.windows.units_grid.paste_plan import PastePlace, PastePlan, plan_again, plan_paste
 from reliability_app.windows.units_grid.paste_strip import PasteStrip
 
 
@@ -45,6 +47,8 @@ class UnitsGrid(QWidget):
         self._session = Session()
         self._set_index = 0
         self._paste: Edit | None = None
+        self._plan: PastePlan | None = None
+        self._aimed_at: PastePlace | None = None
         self.model = GridModel(push_edit, self)
         self.view = GridView(self.model, self)
         self.strip = PasteStrip(self)
@@ -108,9 +112,8 @@ class UnitsGrid(QWidget):
     def paste(self) -> None:
         """Paste what the clipboard holds, as one edit."""
         self.view.finish_entry()
-        plan = plan_paste(read_clip(), self._paste_place())
-        self._push(plan.edit)
-        self._tell_paste(plan)
+        place = self._paste_place()
+        self._carry_out_paste(plan_paste(read_clip(), place), place)
 
     def clear(self) -> None:
         """Empty the selected cells."""
@@ -186,8 +189,28 @@ class UnitsGrid(QWidget):
             life_unit=self._session.life_unit,
         )
 
+    def _carry_out_paste(self, plan: PastePlan, place: PastePlace) -> None:
+        self._push(plan.edit)
+        self._tell_paste(plan)
+        self._paste, self._plan, self._aimed_at = plan.edit, plan, place
+
+    def _show_change_menu(self, corner: QPoint) -> None:
+        if self._plan is None or self._plan.understood is None:
+            return
+        menu = change_menu(self._plan.understood, self._read_paste_again, self)
+        menu.aboutToHide.connect(menu.deleteLater)
+        menu.popup(corner)
+
+    def _read_paste_again(self, understood: Understanding) -> None:
+        """Put the paste in the way it is now read in the place of the paste as it was."""
+        paste, place = self._paste, self._aimed_at
+        if paste is None or place is None:
+            return
+        self.undo_paste_asked.emit(paste)
+        if not paste.applied:
+            self._carry_out_paste(plan_again(understood, place), place)
+
     def _tell_paste(self, plan: PastePlan) -> None:
-        self._paste = plan.edit
         unread = sum(self._table.row_is_read(row) is False for row in plan.rows)
         if plan.columns:
             self.view.select_block(self._block(plan))
@@ -196,7 +219,13 @@ class UnitsGrid(QWidget):
         if plan.edit is not None and len(plan.rows) == len(plan.columns) == 1 and not unread:
             self._put_strip_away()
             return
-        self.strip.tell(plan.sentence, notes=plan.notes, unread=unread, can_undo=plan.edit is not None)
+        self.strip.tell(
+            plan.sentence,
+            notes=plan.notes,
+            unread=unread,
+            can_undo=plan.edit is not None,
+            can_change=plan.understood is not None,
+        )
 
     def _block(self, plan: PastePlan) -> CellRange:
         sections = [self.model.columns.index(column) for column in plan.columns]
@@ -241,6 +270,7 @@ class UnitsGrid(QWidget):
         self.view.menu_asked.connect(self._show_cell_menu)
         self.view.column_menu_asked.connect(self._show_column_menu)
         self.strip.closed.connect(self._put_strip_away)
+        self.strip.change_asked.connect(self._show_change_menu)
         self.strip.undo_asked.connect(lambda: self.undo_paste_asked.emit(self._paste))
         self.counts_line.next_unread_asked.connect(self.show_next_unread)
 

@@ -5,7 +5,7 @@ from dataclasses import dataclass
 import pytest
 from PySide6.QtCore import QMimeData, Qt
 from PySide6.QtGui import QGuiApplication
-from PySide6.QtWidgets import QApplication
+from PySide6.QtWidgets import QApplication, QWidget
 from pytestqt.qtbot import QtBot
 
 from reliability_app.session.document import Session
@@ -42,12 +42,15 @@ class Rig:
         return row, self.grid.model.columns[section]
 
     def key(self, key: Qt.Key, modifiers: Qt.KeyboardModifier = NONE) -> None:
-        """Press a key where the focus is: in the grid or in the line being typed."""
-        self.qtbot.keyClick(QApplication.focusWidget(), key, modifiers)
+        """Press a key; it goes where the system would send it: to an open list, or to what has the focus."""
+        self.qtbot.keyClick(self._receiver(), key, modifiers)
 
     def type(self, text: str) -> None:
         for character in text:
-            self.qtbot.keyClick(QApplication.focusWidget(), character)
+            self.qtbot.keyClick(self._receiver(), character)
+
+    def _receiver(self) -> QWidget:
+        return QApplication.activePopupWidget() or QApplication.focusWidget()
 
     def go(self, row: int, column: str) -> None:
         self.grid.view.go_to(row, self.grid.model.columns.index(column))

@@ -142,7 +142,8 @@ def test_a_cell_typed_anew_with_the_same_text_is_no_step(rig):
 
 
 @pytest.mark.parametrize(
-    ("typed", "stored"), [("r", "running"), ("f", "failed"), ("fo", "found failed"), ("survived", "running"), ("1", "failed")]
+    ("typed", "stored"),
+    [("r", "running"), ("f", "failed"), ("fo", "found failed"), ("survived", "running"), ("1", "failed")],
 )
 def test_the_state_is_completed_to_our_own_word_and_synonyms_can_be_typed(rig, typed, stored):
     rig.go(0, "state")
@@ -160,8 +161,8 @@ def test_f2_on_a_state_drops_down_the_three_words(rig):
     assert popup is not None
     model = popup.model()
     assert [model.index(row, 0).data() for row in range(model.rowCount())] == ["failed", "running", "found failed"]
-    rig.qtbot.keyClick(popup, Key.Key_Down)
-    rig.qtbot.keyClick(popup, Key.Key_Return)
+    rig.key(Key.Key_Down)
+    rig.key(Key.Key_Return)
     assert rig.table.text(0, "state") == "running"
     assert rig.grid.view.hasFocus()
 
@@ -218,3 +219,15 @@ def test_a_long_note_is_edited_over_the_cells_beside_it(rig):
     assert line.width() > rig.grid.view.columnWidth(0)
     assert line.mapTo(rig.grid.view.viewport(), QPoint(0, 0)).x() == rig.grid.view.columnViewportPosition(0)
     rig.key(Key.Key_Escape)
+
+
+@pytest.mark.parametrize(("typed", "stored"), [("lost", "lost"), ("survived", "running"), ("ru", "running"), ("", "")])
+def test_a_word_typed_while_the_list_is_down_is_what_counts(rig, typed, stored):
+    rig.fill("P-01|812||failed")
+    rig.go(0, "state")
+    rig.key(Key.Key_F2)
+    rig.key(Key.Key_A, CONTROL)
+    rig.key(Key.Key_Backspace)
+    rig.type(typed)
+    rig.key(Key.Key_Return)
+    assert rig.table.text(0, "state") == stored
