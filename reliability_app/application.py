@@ -14,7 +14,6 @@ from pathlib import Path
 from PySide6.QtCore import QObject, QTimer
 from PySide6.QtWidgets import QApplication, QMessageBox
 
-from reliability_app.windows.crash import install_last_resort
 from reliability_app.windows.main_window import APPLICATION_TITLE, MainWindow
 from reliability_app.windows.settings import WindowSettings
 from reliability_app.windows.theme import apply_scheme
@@ -60,6 +59,7 @@ class Start(QObject):
     def _fill(self) -> None:
         from reliability_app.session.document import Session
         from reliability_app.session.messages import Messages
+        from reliability_app.windows.crash import install_last_resort
 
         window = self._window
         window.fill(Session(), Messages())

@@ -36,7 +36,7 @@ _LEAST_RUNNING = 1e-10  # percent; the last label before 100 % is 99.9999999999
 _MINOR_SHARE = 0.2  # an unlabelled tick needs a fifth of the room of a labelled one
 _FEWEST = 3  # labels below which a scale is refined
 _LOG_TEN = log(10.0)
-_ABOUT_A_DECADE = 1.3 * _LOG_TEN  # up to here 1-2-5 leaves room for more labels
+_FEW_DECADES = 2.05 * _LOG_TEN  # up to here 1-2-5 may leave room for more labels
 _DECADE_STEPS = (1, 2, 3, 5, 10, 20, 50, 100, 200, 500)
 
 
@@ -199,7 +199,7 @@ class AgeScale:
         """Return the ticks between two positions, ascending: at most `most` labelled ages and minor ones.
 
         Linear: multiples of a 1-2-5 step. Log: 1-2-5 in each decade where that has room, else every decade,
-        every second, third, ...; on a decade or less multiples of 1-2-5 steps of the age itself.
+        every second, third, ...; on two decades or less further round ages where they have room.
         """
         _check_range(low, high, most)
         gap, visible = (high - low) / (most - 1), (low, high)
@@ -247,7 +247,7 @@ def _log_ages(visible: tuple[float, float], gap: float, most: int) -> list[Decim
         taken += between
     least = exp(low)
     zoom = Zoom(low, high, gap, exp(high) - least, finest=least * expm1(gap), steps_at_most=10.0)
-    if high - low >= _ABOUT_A_DECADE and zoom.seen(taken, _log_of) >= min(_FEWEST, most):
+    if high - low >= _FEW_DECADES and zoom.seen(taken, _log_of) >= min(_FEWEST, most):
         return taken
 
     def ages(step: Decimal, reach: float) -> list[Decimal]:

@@ -94,8 +94,8 @@ def fullest(usual: Sequence[Decimal], candidates: Candidates, position: Position
     """
     reach = 0.5 * (zoom.high - zoom.low)
     choices = [list(usual)]
-    choices.append(_multiples_with_room(lambda step: candidates(step, reach), position, zoom))
     choices.append(_multiples_with_room(lambda step: candidates(step, reach), position, zoom, given=usual))
+    choices.append(_multiples_with_room(lambda step: candidates(step, reach), position, zoom))
     best = max(choices, key=lambda values: zoom.seen(values, position))
     if zoom.seen(best, position) >= _FEWEST_SEEN:
         return best
@@ -207,4 +207,4 @@ def age_labels(ages: Sequence[Decimal], *, decimals: int | None = None) -> list[
     if not sizes or (max(sizes) <= largest and min(sizes) >= least):
         return plain
     powers = [power_text(age) for age in ages]
-    return powers if max(map(len, powers)) <= max(map(len, plain)) else plain
+    return powers if max(map(len, powers)) < max(map(len, plain)) else plain

@@ -16,7 +16,9 @@ from reliability_app.session.unit_table import ReadUnits
 Floats = NDArray[np.float64]
 Integers = NDArray[np.int64]
 
-_CURVE_POINTS = 160
+_CURVE_POINTS = 140
+# Where age 0 is in view the curves are to reach it, as far as the eye can tell.
+_NEAREST_TO_ZERO, _POINTS_TOWARDS_ZERO = 1e-3, 20
 # Curves run this far beyond the units, so that moving the view a little does not uncover their ends.
 _BEYOND = 30.0
 _LEAST_SHARE, _MOST_SHARE = 1e-4, 1.0 - 1e-6
@@ -89,7 +91,9 @@ def _ages(fitted: Fit) -> Floats:
     ends = np.asarray(fitted.life(np.array([_LEAST_SHARE, _MOST_SHARE])))
     low = max(min(float(ends[0]), first), first / _BEYOND**2)
     high = min(max(float(ends[1]), data.last_observation), data.last_observation * _BEYOND)
-    return np.geomspace(low / 1.5, high * 1.5, _CURVE_POINTS)
+    low, high = low / 1.5, high * 1.5
+    towards_zero = np.geomspace(low * _NEAREST_TO_ZERO, low, _POINTS_TOWARDS_ZERO, endpoint=False)
+    return np.concatenate([towards_zero, np.geomspace(low, high, _CURVE_POINTS)])
 
 
 def _summed(age: Floats, quantity: Floats) -> tuple[Floats, Integers]:

@@ -32,8 +32,8 @@ def install_last_resort(rescue: Callable[[], None], messages: Messages) -> None:
             traceback.print_exception(kind, trouble, trace)
             messages.say(
                 Severity.SERIOUS,
-                f"Something went wrong inside the program ({kind.__name__}: {trouble}). Your work was kept in a recovery "
-                "copy: save it, and start Rigpaper anew.",
+                f"Something went wrong inside the program ({kind.__name__}: {trouble}). Your work was kept in a "
+                "recovery copy: save it, and start Rigpaper anew.",
             )
 
     sys.excepthook = handle

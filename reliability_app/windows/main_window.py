@@ -1,4 +1,4 @@
-"""The main window: its frame is painted first, its contents follow; `_connect` is the one place where signals are wired."""
+"""The main window: its frame is painted first, its contents follow; `_connect` is where all signals are wired."""
 
 from __future__ import annotations
 
@@ -14,7 +14,7 @@ from reliability_app.windows.settings import WindowSettings
 
 if TYPE_CHECKING:  # what costs time to import comes with the contents, after the first paint
     from reliability_app.session.analysis import SetAnalysis
-    from reliability_app.session.document import Change, Session
+    from reliability_app.session.document import Change, LifeAsk, Session
     from reliability_app.session.edits import Edit
     from reliability_app.session.messages import Messages
     from reliability_app.session.recovery import RecoveryCopy
@@ -55,6 +55,7 @@ class MainWindow(QMainWindow):
         self.session, self.messages = session, messages
         self.shown_set = 0
         self.analysis: SetAnalysis | None = None
+        self._dragged_to: LifeAsk | None = None
         self.undo = UndoStack(self)
         self.bridge = SessionBridge(session, messages, self)
         self.analyst = Analyst(self)
@@ -81,11 +82,10 @@ class MainWindow(QMainWindow):
         self.undo.retraced.connect(self._show_place_of)
         self.files.path_changed.connect(self._show_title)
         contents.set_bar.set_chosen.connect(self.show_set)
-        contents.paper.percent_dragged.connect(self._read_while_dragging)
-        contents.paper.percent_chosen.connect(self._choose_percent)
+        contents.grid.undo_paste_asked.connect(self.undo.undo_if_latest)
         for page in contents.pages:
-            page.age_chosen.connect(self._choose_age)
-            page.age_dragged.connect(self._read_age_while_dragging)
+            page.percent_dragged.connect(self._read_while_dragging)
+            page.percent_chosen.connect(self._choose_percent)
 
     # What the session says
 
@@ -103,8 +103,8 @@ class MainWindow(QMainWindow):
             self.contents.set_bar.refresh(self.shown_set)
         if change.kind == "title":
             self._show_title()
+        self.contents.grid.refresh(change)
         if change.set_index in (None, self.shown_set):
-            self.contents.grid.refresh(change)
             self.contents.basis.show_basis(self.shown_set, self.session.sets[self.shown_set].basis)
             self._ask()
 
@@ -125,6 +125,7 @@ class MainWindow(QMainWindow):
         place = edit.change.set_index
         if place is not None and place != self.shown_set and place < len(self.session.sets):
             self.show_set(place)
+        self.contents.grid.reveal(edit)
 
     # Questions and answers
 
@@ -160,30 +161,17 @@ class MainWindow(QMainWindow):
             self.contents.reading.show_analysis(self.analysis)
             self._show_pictures(self.analysis)
 
-    def _read_age_while_dragging(self, age: float) -> None:
-        percent = self._percent_at(age)
-        if percent is not None:
-            self._read_while_dragging(percent)
-
-    def _choose_age(self, age: float) -> None:
-        percent = self._percent_at(age)
-        if percent is not None:
-            self._choose_percent(percent)
-
-    def _percent_at(self, age: float) -> float | None:
-        if self.analysis is None or self.analysis.fit is None or not self.analysis.fit.converged:
-            return None
-        return round_percent(100.0 * float(self.analysis.fit.failure_probability(age)))
-
     def _choose_percent(self, percent: float) -> None:
         from reliability_app.session.document import LifeAsk
         from reliability_app.session.edits import ChangeAsks
 
-        asks = self.session.asks
-        chosen = LifeAsk(percent)
-        others = tuple(ask for ask in asks[1:] if ask != chosen)
-        if asks[0] != chosen:
-            self.push_edit(ChangeAsks(asks, (chosen, *others), merge_key="reading line"))
+        asks, chosen = self.session.asks, LifeAsk(percent)
+        # A place the line was dragged to gives way to the next; readings the user asked for by name stay listed.
+        left_behind = self._dragged_to if asks[:1] == (self._dragged_to,) else None
+        others = tuple(ask for ask in asks if ask not in (chosen, left_behind))
+        self._dragged_to = None if chosen in asks else chosen
+        if asks[:1] != (chosen,):
+            self.push_edit(ChangeAsks(asks, (chosen, *others)))
 
     # The frame
 
@@ -232,11 +220,6 @@ class MainWindow(QMainWindow):
         if path is not None:
             event.acceptProposedAction()
             self.files.open(path)
-
-
-def round_percent(percent: float) -> float:
-    """Return a percent with three significant digits, kept inside 0 to 100."""
-    return min(max(float(f"{percent:.3g}"), 1e-4), 99.9999)
 
 
 def _dropped_file(urls: list[QUrl]) -> Path | None:

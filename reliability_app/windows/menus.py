@@ -14,12 +14,12 @@ from PySide6.QtWidgets import QApplication, QMenu, QMessageBox
 from reliability_app import __version__
 from reliability_app.session.shipped import shipped
 from reliability_app.session.wording import STANDING_CAUTION
-from reliability_app.windows.theme import apply_scheme
+from reliability_app.windows.theme import Scheme, apply_scheme
 
 if TYPE_CHECKING:
     from reliability_app.windows.main_window import MainWindow
 
-SCHEMES = {"system": "As the system", "light": "Light", "dark": "Dark"}
+SCHEMES: dict[Scheme, str] = {"system": "As the system", "light": "Light", "dark": "Dark"}
 
 
 class Menus(QObject):
@@ -100,7 +100,7 @@ class Menus(QObject):
         for path in sorted(shipped("sample_sets").glob("*.json")):
             self._add(self._samples, _title_of(path), "", lambda path=path: self._window.files.open_copy(path))
 
-    def _choose_scheme(self, name: str) -> None:
+    def _choose_scheme(self, name: Scheme) -> None:
         self._window.settings.scheme = name
         application = QGuiApplication.instance()
         if isinstance(application, QApplication):

@@ -7,10 +7,10 @@ from collections.abc import Callable
 from PySide6.QtCore import Signal
 from PySide6.QtWidgets import QComboBox, QHBoxLayout, QInputDialog, QLabel, QToolButton, QWidget
 
+from reliability_app.engine.cautions import Severity
 from reliability_app.session.document import Session, UnitSet
 from reliability_app.session.edits import AddSet, ChangeLifeUnit, Edit, RemoveSet, RenameSet
 from reliability_app.session.messages import Messages
-from reliability_app.engine.cautions import Severity
 
 USUAL_UNITS = ("h", "days", "cycles", "km")
 

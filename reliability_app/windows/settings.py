@@ -6,6 +6,8 @@ from pathlib import Path
 
 from PySide6.QtCore import QByteArray, QSettings
 
+from reliability_app.windows.theme import Scheme
+
 _MOST_RECENT = 10
 
 
@@ -25,12 +27,13 @@ class WindowSettings:
         self._store.setValue(f"layout/{name}", state)
 
     @property
-    def scheme(self) -> str:
+    def scheme(self) -> Scheme:
         """light, dark or system."""
-        return str(self._store.value("scheme", "system", type=str))
+        name = self._store.value("scheme", "system", type=str)
+        return name if name in ("light", "dark") else "system"
 
     @scheme.setter
-    def scheme(self, name: str) -> None:
+    def scheme(self, name: Scheme) -> None:
         self._store.setValue("scheme", name)
 
     @property

@@ -8,6 +8,7 @@ from PySide6.QtCore import QAbstractTableModel, QModelIndex, QPersistentModelInd
 from PySide6.QtGui import QAction, QGuiApplication, QKeySequence
 from PySide6.QtWidgets import QAbstractItemView, QHeaderView, QTableView, QWidget
 
+from reliability_app.engine.cautions import Severity
 from reliability_app.session.document import LifeAsk
 from reliability_app.session.picture import Reading
 from reliability_app.session.plain_output import readings_as_tab_separated
@@ -67,7 +68,7 @@ class ReadingsModel(QAbstractTableModel):
         if column == 0:
             return ask_title(reading.ask, self.life_unit)
         if column == 4:
-            return "!" if reading.cautions else ""
+            return "!" if any(caution.severity >= Severity.CAUTION for caution in reading.cautions) else ""
         value = (reading.estimate, reading.lower, reading.upper)[column - 1]
         return "" if value is None else value_text(reading.ask, value, self.life_unit)
 
@@ -100,6 +101,8 @@ class ReadingsTable(QTableView):
         """Show these readings, keeping the row selected."""
         row = self.currentIndex().row()
         self._model.show_readings(readings, life_unit)
+        self.setColumnHidden(2, all(reading.lower is None for reading in readings))
+        self.setColumnHidden(3, all(reading.upper is None for reading in readings))
         if 0 <= row < len(readings):
             self.selectRow(row)
 

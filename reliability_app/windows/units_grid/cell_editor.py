@@ -213,7 +213,8 @@ class CellEditor(QStyledItemDelegate):
         self._finish(editor)
 
     def _take_as_typed(self, editor: QLineEdit) -> None:
-        if not editor.completer().popup().currentIndex().isValid():
+        words = editor.completer().popup()
+        if words is None or not words.currentIndex().isValid():
             self._finish(editor)
             self.stepped.emit(Step.DOWN, False)
 
@@ -225,9 +226,10 @@ def show_list(editor: QLineEdit) -> None:
         return
     completer.setCompletionMode(QCompleter.CompletionMode.UnfilteredPopupCompletion)
     completer.complete()
-    popup = completer.popup()
-    # Marked as chosen, so that the first arrow key leads to the next word and not to this one.
-    popup.selectionModel().select(popup.currentIndex(), QItemSelectionModel.SelectionFlag.ClearAndSelect)
+    words = completer.popup()
+    if words is not None:
+        # Marked as chosen, so that the first arrow key leads to the next word and not to this one.
+        words.selectionModel().select(words.currentIndex(), QItemSelectionModel.SelectionFlag.ClearAndSelect)
 
 
 _ARROW_MODIFIERS = (Qt.KeyboardModifier.NoModifier, Qt.KeyboardModifier.KeypadModifier)

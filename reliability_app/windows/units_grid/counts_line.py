@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from PySide6.QtCore import Qt, Signal
-from PySide6.QtWidgets import QHBoxLayout, QLabel, QSizePolicy, QToolButton, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QHBoxLayout, QLabel, QToolButton, QVBoxLayout, QWidget
 
 from reliability_app.session.unit_table import Counts
+from reliability_app.windows.units_grid.wrapped_label import wrapped_label
 
 
 class CountsLine(QWidget):
@@ -24,10 +25,7 @@ class CountsLine(QWidget):
         self._unread = 0
         self._counts = QLabel()
         self._counts.setTextInteractionFlags(Qt.TextInteractionFlag.TextSelectableByMouse)
-        self._reason = QLabel()
-        self._reason.setWordWrap(True)
-        self._reason.setTextInteractionFlags(Qt.TextInteractionFlag.TextSelectableByMouse)
-        self._reason.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Minimum)
+        self._reason = wrapped_label()
         self._button = QToolButton()
         self._button.setText("Show unread")
         self._button.setAccessibleName("Show the next unread row")

@@ -90,6 +90,11 @@ class GridView(QTableView):
         self.setWordWrap(False)
         self.setCornerButtonEnabled(True)
         self._set_up_headers()
+        # Headings ask their selection model whether a whole column is selected, and that asks the table for every cell:
+        # 2 s with 100,000 rows selected. They show no selection, so they are given a model that holds none.
+        nothing_selected = QItemSelectionModel(model, self)
+        self.horizontalHeader().setSelectionModel(nothing_selected)
+        self.verticalHeader().setSelectionModel(nothing_selected)
         self.horizontalHeader().customContextMenuRequested.connect(self._ask_column_menu)
         self.verticalHeader().customContextMenuRequested.connect(self._ask_row_menu)
         self._mix_colours()
@@ -308,7 +313,8 @@ class GridView(QTableView):
         self._mixing = True
         palette = QGuiApplication.palette()
         base, text = palette.color(QPalette.ColorRole.Base), palette.color(QPalette.ColorRole.Text)
-        own = QPalette(palette)
+        # Only these two are its own: for all others the view still follows the program's palette.
+        own = QPalette()
         own.setColor(QPalette.ColorRole.Highlight, mixed(base, palette.color(QPalette.ColorRole.Highlight), 0.3))
         own.setColor(QPalette.ColorRole.HighlightedText, text)
         self.setPalette(own)

@@ -5,7 +5,9 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from PySide6.QtCore import QPoint, Qt, Signal
-from PySide6.QtWidgets import QFrame, QHBoxLayout, QLabel, QSizePolicy, QToolButton, QVBoxLayout, QWidget
+from PySide6.QtWidgets import QFrame, QHBoxLayout, QToolButton, QVBoxLayout, QWidget
+
+from reliability_app.windows.units_grid.wrapped_label import wrapped_label
 
 
 class PasteStrip(QFrame):
@@ -30,8 +32,8 @@ class PasteStrip(QFrame):
         self.setFrameShape(QFrame.Shape.StyledPanel)
         self.setAutoFillBackground(True)
         self.setAccessibleName("What was pasted")
-        self._sentence = _label()
-        self._notes = _label()
+        self._sentence = wrapped_label(Qt.TextFormat.RichText)
+        self._notes = wrapped_label(Qt.TextFormat.RichText)
         self._notes.setVisible(False)
         self._notes_button = _button("", "Show or hide what was odd about the paste")
         self._notes_button.setCheckable(True)
@@ -87,25 +89,19 @@ class PasteStrip(QFrame):
         self.closed.emit()
 
     def _lay_out(self, close: QToolButton) -> None:
-        line = QHBoxLayout()
-        line.setContentsMargins(0, 0, 0, 0)
+        line, buttons = QHBoxLayout(), QHBoxLayout()
         line.addWidget(self._sentence, 1)
-        for button in (self._notes_button, self._change_button, self._undo_button, close):
-            line.addWidget(button, 0, Qt.AlignmentFlag.AlignTop)
+        line.addWidget(close, 0, Qt.AlignmentFlag.AlignTop)
+        # Below the sentence and not beside it: the page of the grid is narrow, and large fonts would leave it no room.
+        for button in (self._notes_button, self._change_button, self._undo_button):
+            buttons.addWidget(button)
+        buttons.addStretch(1)
         column = QVBoxLayout(self)
         column.setContentsMargins(8, 3, 3, 3)
-        column.setSpacing(2)
+        column.setSpacing(0)
         column.addLayout(line)
         column.addWidget(self._notes)
-
-
-def _label() -> QLabel:
-    label = QLabel()
-    label.setWordWrap(True)
-    label.setTextFormat(Qt.TextFormat.RichText)
-    label.setTextInteractionFlags(Qt.TextInteractionFlag.TextSelectableByMouse)
-    label.setSizePolicy(QSizePolicy.Policy.Ignored, QSizePolicy.Policy.Minimum)
-    return label
+        column.addLayout(buttons)
 
 
 def _button(text: str, name: str) -> QToolButton:

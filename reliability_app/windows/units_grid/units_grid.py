@@ -24,6 +24,10 @@ from reliability_app.windows.units_grid.paste_plan import PastePlace, PastePlan,
 from reliability_app.windows.units_grid.paste_strip import PasteStrip
 
 
+# What the grid shows; a reading that is dragged must not repaint it all the time.
+_SHOWN = ("units", "life_unit", "everything")
+
+
 class UnitsGrid(QWidget):
     """The units of one set as a spreadsheet.
 
@@ -76,9 +80,13 @@ class UnitsGrid(QWidget):
         unit_set = self._session.sets[min(self._set_index, len(self._session.sets) - 1)]
         if unit_set.table is not self.model.table:
             self.show_set(self._session, self._session.sets.index(unit_set))
-        elif change.kind != "units" or change.set_index == self._set_index:
+        elif change.kind in _SHOWN and change.set_index in (None, self._set_index):
             self.model.refresh(life_unit=self._session.life_unit)
             self._tell_counts()
+
+    def finish_entry(self) -> None:
+        """Take over what is being typed: called before saving, closing and whatever else looks at the session."""
+        self.view.finish_entry()
 
     def reveal(self, edit: Edit) -> None:
         """Show and select the place of an edit that was just undone or redone, if it is in this set."""

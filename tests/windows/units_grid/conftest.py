@@ -72,7 +72,7 @@ class Rig:
         from reliability_app.session.edits import BlockEdit
 
         cells = [row.split("|") for row in rows]
-        columns = ("unit", "life", "until", "state", "quantity", "entered", "cause", "note")[: len(cells[0])]
+        columns = ("unit", "life", "until", "state", "quantity", "entered", "cause", "note")[: max(map(len, cells))]
         BlockEdit(0, 0, columns, cells).apply(self.session)
 
 

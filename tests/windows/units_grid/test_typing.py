@@ -4,6 +4,7 @@ import pytest
 from PySide6.QtCore import QPoint, Qt
 from PySide6.QtWidgets import QApplication, QLineEdit
 
+from reliability_app.session.edits import BlockEdit
 from tests.windows.units_grid.conftest import CONTROL, SHIFT
 
 Key = Qt.Key
@@ -231,3 +232,23 @@ def test_a_word_typed_while_the_list_is_down_is_what_counts(rig, typed, stored):
     rig.type(typed)
     rig.key(Key.Key_Return)
     assert rig.table.text(0, "state") == stored
+
+
+def test_an_entry_under_way_is_taken_over_on_request(rig):
+    rig.go(0, "life")
+    rig.type("812")
+    assert rig.texts == []
+    rig.grid.finish_entry()
+    assert rig.texts == [{"life": "812"}]
+    rig.grid.finish_entry()
+    assert rig.undo.count() == 1
+
+
+def test_a_change_elsewhere_leaves_an_entry_under_way_alone(rig):
+    rig.fill("a|1||failed")
+    rig.go(0, "life")
+    rig.type("77")
+    rig.undo.push_edit(rig.session, BlockEdit(0, 0, ("life",), [["5"]]))
+    rig.type("7")
+    rig.key(Key.Key_Return)
+    assert rig.table.text(0, "life") == "777"

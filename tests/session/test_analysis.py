@@ -1,0 +1,155 @@
+"""An analysis answers for its set with readings, cautions and a picture, whatever state the units are in."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+
+import numpy as np
+import pytest
+
+from reliability_app.session.analysis import Question, SetAnalysis, analyse
+from reliability_app.session.document import Basis, HazardAsk, LifeAsk, ReliabilityAsk, Session, UnitSet
+from reliability_app.session.unit_table import UnitTable
+
+# NIST/SEMATECH e-Handbook of Statistical Methods, sec. 8.4.1.3: ten failures, ten units running at 500 h.
+NIST_FAILURES = (54, 187, 216, 240, 244, 335, 361, 373, 375, 386)
+NIST_ROWS = [
+    *({"life": str(life), "state": "failed"} for life in NIST_FAILURES),
+    {"life": "500", "state": "running", "quantity": "10"},
+]
+
+
+def analysed(rows: list[dict[str, str]], **basis: object) -> SetAnalysis:
+    asks = (LifeAsk(10), LifeAsk(1), ReliabilityAsk(300), HazardAsk(300), LifeAsk(90))
+    table = UnitTable.from_rows(rows)
+    session = Session(sets=[UnitSet("A", table, Basis(**basis))], asks=asks)  # type: ignore[arg-type]
+    return analyse(Question.about(session, 0))
+
+
+def codes(analysis: SetAnalysis) -> set[str]:
+    return {caution.code for caution in analysis.cautions}
+
+
+def test_readings_of_the_nist_example_come_with_their_bounds() -> None:
+    analysis = analysed(NIST_ROWS, family="weibull", side="two")
+    life, _, reliability, hazard, _ = analysis.readings
+    # Estimate and limits recomputed from the data of the Handbook by an independent likelihood (tests/reference).
+    assert (life.estimate, life.lower, life.upper) == pytest.approx((164.0224, 59.8546, 271.9495), rel=1e-6)
+    # R(300) and h(300) follow from the Handbook's shape 1.7208 and scale 606.53 by the Weibull formulas.
+    assert reliability.estimate == pytest.approx(np.exp(-((300 / 606.52756) ** 1.720797)), rel=1e-6)
+    assert hazard.estimate == pytest.approx(1.720797 / 606.52756 * (300 / 606.52756) ** 0.720797, rel=1e-6)
+    assert reliability.lower < reliability.estimate < reliability.upper
+    assert hazard.lower < hazard.estimate < hazard.upper
+
+
+def test_a_lower_bound_of_lives_goes_with_an_upper_bound_of_the_hazard() -> None:
+    life, _, reliability, hazard, _ = analysed(NIST_ROWS, side="lower").readings
+    assert life.lower is not None
+    assert life.upper is None
+    assert reliability.lower is not None
+    assert reliability.upper is None
+    assert hazard.lower is None
+    assert hazard.upper is not None
+
+
+def test_the_band_meets_the_bound_of_the_reading() -> None:
+    analysis = analysed(NIST_ROWS, family="weibull", side="two")
+    failure, life = analysis.picture.failure, analysis.readings[0]
+    assert failure is not None
+    # Where the bound of the life at 10 % stands, the band of the failure probability passes through 10 %.
+    assert np.interp(life.lower, failure.x, failure.upper) == pytest.approx(0.10, rel=2e-3)
+    assert np.interp(life.upper, failure.x, failure.lower) == pytest.approx(0.10, rel=2e-3)
+    assert np.interp(life.estimate, failure.x, failure.y) == pytest.approx(0.10, rel=2e-3)
+
+
+def test_bands_mirror_each_other_and_hold_the_estimate() -> None:
+    picture = analysed(NIST_ROWS, side="two").picture
+    assert np.allclose(picture.failure.upper + picture.survival.lower, 1.0, atol=1e-12)
+    for curve in (picture.failure, picture.survival, picture.hazard):
+        assert (curve.lower <= curve.y * (1 + 1e-9)).all()
+        assert (curve.upper >= curve.y * (1 - 1e-9)).all()
+
+
+@pytest.mark.parametrize(
+    ("rows", "code"),
+    [
+        ([{"life": "100", "state": "running"}] * 3, "no-failure"),
+        ([{"life": "100", "state": "failed"}], "one-failure-not-outlived"),
+        ([{"life": "100", "state": "failed"}, {"life": "40", "state": "running"}], "one-failure-not-outlived"),
+        ([{"life": "100", "state": "failed", "quantity": "4"}], "failures-at-one-age"),
+        ([{"life": "100", "state": "failed"}, {"life": "200", "state": "running"}], "one-failure"),
+        ([{"life": str(life), "state": "failed"} for life in (90, 120, 150)], "very-few-failures"),
+        ([{"life": str(life), "state": "failed"} for life in (90, 120, 150, 170, 180)], "few-failures"),
+    ],
+)
+def test_every_thin_set_of_units_is_named(rows: list[dict[str, str]], code: str) -> None:
+    assert code in codes(analysed(rows))
+
+
+def test_no_number_is_given_where_no_estimate_exists() -> None:
+    analysis = analysed([{"life": "100", "state": "running"}] * 3)
+    assert all(reading.estimate is None for reading in analysis.readings)
+    assert analysis.main is None
+    assert analysis.picture.failure is None
+    assert analysis.picture.running_quantity.tolist() == [3]
+
+
+def test_extrapolation_to_either_side_is_said_beside_the_number() -> None:
+    _, b1, _, _, b90 = analysed(NIST_ROWS, family="weibull").readings
+    assert [caution.code for caution in b1.cautions if caution.code.endswith("failure")] == ["below-first-failure"]
+    assert "54.0 h" in b1.cautions[0].text
+    assert b90.cautions[0].code == "beyond-last-observation"
+
+
+def test_wald_bound_in_a_small_sample_is_cautioned() -> None:
+    reading = analysed(NIST_ROWS, bound="wald").readings[0]
+    assert "wald-small-sample" in {caution.code for caution in reading.cautions}
+
+
+def test_unread_rows_are_left_out_and_said() -> None:
+    whole = analysed(NIST_ROWS)
+    analysis = analysed([*NIST_ROWS, {"life": "n/a", "state": "failed"}])
+    assert "rows-unread" in codes(analysis)
+    assert analysis.readings[0].estimate == whole.readings[0].estimate
+
+
+def test_the_standing_caution_closes_every_list() -> None:
+    for rows in (NIST_ROWS, [], [{"life": "1", "state": "running"}]):
+        assert analysed(rows).cautions[-1].code == "responsible-engineer"
+
+
+def test_an_exact_bound_that_does_not_exist_is_refused_beside_the_estimate() -> None:
+    reading = analysed(NIST_ROWS, bound="exact").readings[0]
+    assert reading.estimate is not None
+    assert reading.lower is None
+    assert reading.cautions[0].code == "bound-unavailable"
+
+
+@pytest.mark.parametrize(("field", "name"), [("family", "pearson"), ("bound", "calibrated"), ("fit", "by eye")])
+def test_a_basis_this_version_cannot_carry_out_is_named(field: str, name: str) -> None:
+    analysis = analysed(NIST_ROWS, **{field: name})
+    assert analysis.fit is None
+    assert any(name in caution.text for caution in analysis.cautions)
+
+
+def test_points_know_the_rows_they_stand_for() -> None:
+    rows = [*NIST_ROWS, {"life": "187", "state": "failed", "quantity": "2"}]
+    picture = analysed(rows).picture
+    place = picture.point_age.tolist().index(187.0)
+    assert picture.point_rows[place] == (1, 11)
+    assert picture.point_quantity[place] == 3
+    assert picture.running_age.tolist() == [500.0]
+
+
+def test_moving_the_main_reading_gives_what_a_fresh_analysis_gives() -> None:
+    analysis = analysed(NIST_ROWS)
+    moved = analysis.with_main_ask(LifeAsk(25)).readings[0]
+    fresh = analyse(replace(analysis.question, asks=(LifeAsk(25),))).readings[0]
+    assert (moved.estimate, moved.lower) == (fresh.estimate, fresh.lower)
+
+
+def test_found_failed_units_are_fitted_and_the_missing_points_are_said() -> None:
+    rows = [*NIST_ROWS, {"life": "100", "until": "200", "state": "found failed"}]
+    analysis = analysed(rows)
+    assert analysis.main is not None
+    assert "points-not-drawn" in codes(analysis)
