@@ -56,12 +56,12 @@ class Estimate:
     @property
     def is_concave(self) -> bool:
         """True where the log-likelihood is concave in (a, b): no unit entered late, or there is only a."""
-        return self.b_is_fixed or not self.sample.entered.y.shape[1]
+        return self.b_is_fixed or not self.sample.entered.size
 
     @property
     def log_likelihood(self) -> float:
         """Log-likelihood of the lives themselves."""
-        failures = float(self.sample.failed.weight.sum())
+        failures = float(self.sample.failed.total[0])
         jacobian = failures * np.log(self.sample.spread) + self.sample.sum_log_life[0]
         return float(self.terms.value[0] - jacobian)
 

@@ -66,7 +66,7 @@ def fit_batch(sample: Sample, chosen: Family) -> Maximum:
     fixed = chosen.fixed_sigma is not None
     a, b = _starts(sample, chosen)
     single = sample.failed.y.shape[0] == 1
-    size = sample.failed.y.shape[1] + sample.running.y.shape[1]
+    size = sample.failed.size + sample.running.size
     if single and size > _THIN_ABOVE:
         first = _climb(sample.thinned(_THIN_TO), chosen, a, b)
         if first.converged.all():
@@ -87,9 +87,8 @@ def _climb(sample: Sample, chosen: Family, a: Array, b: Array) -> Maximum:
 
 def _starts(sample: Sample, chosen: Family) -> tuple[Array, Array]:
     """Start where half of the share failed lies at the mean of the failures, with their own spread."""
-    failures = sample.failed.weight.sum(axis=1) + sample.left.weight.sum(axis=1)
-    failures = failures + sample.between.weight.sum(axis=1)
-    share = failures / (failures + sample.running.weight.sum(axis=1))
+    failures = sample.failed.total + sample.left.total + sample.between.weight.sum(axis=1)
+    share = failures / (failures + sample.running.total)
     a = chosen.standard.quantile(np.clip(0.5 * share, 1e-12, 0.5))
     sigma = chosen.fixed_sigma
     b = np.full_like(a, 1.0 if sigma is None else sample.spread / sigma)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -107,20 +108,20 @@ class LifeData:
             array.flags.writeable = False
         return cls(lower, upper, counts, starts)
 
-    @property
+    @cached_property
     def is_failed(self) -> Mask:
         """Which records are failures at a known age."""
         return np.equal(self.lower, self.upper)
 
-    @property
+    @cached_property
     def is_running(self) -> Mask:
         """Which records are right-censored."""
         return np.isinf(self.upper)
 
-    @property
+    @cached_property
     def is_found_failed(self) -> Mask:
         """Which records are only known to have failed between two ages."""
-        return (self.lower < self.upper) & np.isfinite(self.upper)
+        return ~(self.is_failed | self.is_running)
 
     @property
     def failed_count(self) -> int:

@@ -36,13 +36,6 @@ class Terms:
     d_ab: Array
     d_bb: Array
 
-    def __add__(self, other: Terms) -> Terms:
-        return Terms(*(mine + theirs for mine, theirs in zip(self.columns(), other.columns(), strict=True)))
-
-    def scaled(self, factor: float) -> Terms:
-        """Return the terms multiplied by `factor`."""
-        return Terms(*(factor * column for column in self.columns()))
-
     def columns(self) -> tuple[Array, Array, Array, Array, Array, Array]:
         """Return value, d_a, d_b, d_aa, d_ab, d_bb."""
         return self.value, self.d_a, self.d_b, self.d_aa, self.d_ab, self.d_bb
@@ -58,61 +51,59 @@ def log_likelihood(sample: Sample, standard: StandardDistribution, a: Array, b: 
     A batch of B samples is evaluated at B points, sample by sample; one sample at any number of points.
     Values outside the parameter space come out as -inf or NaN, never as an exception.
     """
+    sums = np.zeros((6, a.size))
     with np.errstate(over="ignore", invalid="ignore", divide="ignore", under="ignore"):
-        terms = _exact(sample.failed, a, b, standard.log_density)
-        failures = sample.failed.weight.sum(axis=1)
-        zero = np.zeros_like(a)
-        terms += Terms(failures * np.log(b) + zero, zero, failures / b + zero, zero, zero, -failures / (b * b) + zero)
+        failures = sample.failed.total
+        sums[0] = failures * np.log(b)
+        sums[2] = failures / b
+        sums[5] = -sums[2] / b
         for part, function, sign in (
+            (sample.failed, standard.log_density, 1.0),
             (sample.running, standard.log_survival, 1.0),
             (sample.left, standard.log_cdf, 1.0),
             (sample.entered, standard.log_survival, -1.0),
         ):
-            if part.y.shape[1]:
-                terms += _exact(part, a, b, function).scaled(sign)
-        if sample.between.middle.shape[1]:
-            terms += _interval(sample.between, a, b, standard)
-    return terms
-
-
-def _exact(part: Part, a: Array, b: Array, function: Callable[[Array], Derivatives]) -> Terms:
-    sums = [np.zeros_like(a) for _ in range(6)]
-    for block in part.blocks(a.size):
-        z = block.y * b[:, None]
-        z += a[:, None]
-        value, first, second = function(z)
-        weighted_y = block.weight * block.y
-        pieces = (
-            _total(value, block.weight),
-            _total(first, block.weight),
-            _total(first, weighted_y),
-            _total(second, block.weight),
-            _total(second, weighted_y),
-            _total(second, weighted_y * block.y),
-        )
-        for total, piece in zip(sums, pieces, strict=True):
-            total += piece
+            if part.size:
+                _add_part(sums, part, function, sign, a=a[:, None], b=b[:, None])
+        if sample.between.size:
+            _add_intervals(sums, sample.between, standard, a=a[:, None], b=b[:, None])
     return Terms(*sums)
 
 
+def _add_part(
+    sums: Array, part: Part, function: Callable[[Array], Derivatives], sign: float, *, a: Array, b: Array
+) -> None:
+    for y, weight, weight_y, weight_yy in part.blocks(a.size):
+        z = y * b
+        z += a
+        value, first, second = function(z)
+        total, slope = _total(value, weight), _total(first, weight_y)
+        # Where the functions are one and the same (the Weibull's survival) so are their sums.
+        level = total if first is value else _total(first, weight)
+        bend = level if second is first else _total(second, weight)
+        across = slope if second is first else _total(second, weight_y)
+        for row, piece in enumerate((total, level, slope, bend, across, _total(second, weight_yy))):
+            sums[row] += piece if sign > 0 else -piece
+
+
 def _total(values: Array, weights: Array) -> Array:
-    """Sum values times weights along n, where one row of weights may serve all rows of values.
-
-    Not by a matrix product: its threads wait for each other whenever another program is busy.
-    """
-    total = np.einsum("ij,j->i", values, weights[0]) if len(weights) == 1 else np.einsum("ij,ij->i", values, weights)
-    return np.asarray(total)
+    """Sum values times weights along n, where one row of weights may serve all rows of values."""
+    if len(weights) == 1:
+        return np.asarray(values @ weights[0])
+    return np.asarray(np.einsum("ij,ij->i", values, weights))
 
 
-def _interval(part: IntervalPart, a: Array, b: Array, standard: StandardDistribution) -> Terms:
+def _add_intervals(sums: Array, part: IntervalPart, standard: StandardDistribution, *, a: Array, b: Array) -> None:
     middle, half, weight = part.middle, part.half, part.weight
-    gap = log_interval(standard, a[:, None] + b[:, None] * middle, b[:, None] * half)
-    across = middle * half * gap.d_middle_half
-    return Terms(
-        _total(gap.value, weight),
-        _total(gap.d_middle, weight),
-        _total(middle * gap.d_middle + half * gap.d_half, weight),
-        _total(gap.d_middle_middle, weight),
-        _total(middle * gap.d_middle_middle + half * gap.d_middle_half, weight),
-        _total(middle * middle * gap.d_middle_middle + 2.0 * across + half * half * gap.d_half_half, weight),
+    gap = log_interval(standard, a + b * middle, b * half)
+    along, across = middle * gap.d_middle_middle, half * gap.d_middle_half
+    pieces = (
+        gap.value,
+        gap.d_middle,
+        middle * gap.d_middle + half * gap.d_half,
+        gap.d_middle_middle,
+        along + across,
+        middle * (along + 2.0 * across) + half * half * gap.d_half_half,
     )
+    for row, piece in enumerate(pieces):
+        sums[row] += _total(piece, weight)

@@ -93,14 +93,13 @@ def newton_step(terms: Terms, *, b_is_fixed: bool) -> tuple[Array, Array]:
         curvature = np.where(terms.d_aa < 0, -terms.d_aa, np.abs(terms.d_aa) + 1.0)
         return terms.d_a / curvature, np.zeros_like(terms.d_a)
     p, q, r = -terms.d_aa, -terms.d_ab, -terms.d_bb
-    middle, half = 0.5 * (p + r), np.hypot(0.5 * (p - r), q)
-    smallest, largest = middle - half, middle + half
     determinant = p * r - q * q
-    # Where the smaller eigenvalue is lost in rounding the determinant still knows its sign.
-    ridge = np.where(determinant > 0, 0.0, np.abs(smallest) + 1e-3 * np.maximum(np.abs(largest), 1e-300))
-    ridge = np.where((determinant > 0) & (p > 0), 0.0, ridge)
-    p, r = p + ridge, r + ridge
-    determinant = p * r - q * q
+    bent = ~((determinant > 0) & (p > 0))
+    if bent.any():
+        middle, half = 0.5 * (p + r), np.hypot(0.5 * (p - r), q)
+        ridge = np.abs(middle - half) + 1e-3 * np.maximum(np.abs(middle + half), 1e-300)
+        p, r = np.where(bent, p + ridge, p), np.where(bent, r + ridge, r)
+        determinant = p * r - q * q
     return (r * terms.d_a - q * terms.d_b) / determinant, (p * terms.d_b - q * terms.d_a) / determinant
 
 

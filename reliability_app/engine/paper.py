@@ -36,6 +36,8 @@ _LEAST_RUNNING = 1e-10  # percent; the last label before 100 % is 99.9999999999
 _MINOR_SHARE = 0.2  # an unlabelled tick needs a fifth of the room of a labelled one
 _FEWEST = 3  # labels below which a scale is refined
 _LOG_TEN = log(10.0)
+_FIRST_FIGURES = frozenset(Decimal(tenths) / 10 for tenths in (10, 12, 15, 20, 25, 30, 35, 40, 45, 50, 60, 70, 80, 90))
+_MANY = 100  # more labels than any chart has
 _FEW_DECADES = 2.05 * _LOG_TEN  # up to here 1-2-5 may leave room for more labels
 _DECADE_STEPS = (1, 2, 3, 5, 10, 20, 50, 100, 200, 500)
 
@@ -246,14 +248,23 @@ def _log_ages(visible: tuple[float, float], gap: float, most: int) -> list[Decim
     if every == 1 and room.accept_all([_log_of(age) for age in between]):
         taken += between
     least = exp(low)
-    zoom = Zoom(low, high, gap, exp(high) - least, finest=least * expm1(gap), steps_at_most=10.0)
+    zoom = Zoom(low, high, gap, exp(high) - least, finest=least * expm1(gap), first_figures=_FIRST_FIGURES)
     if high - low >= _FEW_DECADES and zoom.seen(taken, _log_of) >= min(_FEWEST, most):
         return taken
 
     def ages(step: Decimal, reach: float) -> list[Decimal]:
-        return [age for age in multiples(step, exp(low - reach), exp(high + reach)) if age > 0]
+        return _multiples_on_log(step, exp(low - reach), exp(high + reach))
 
     return fullest(taken, ages, _log_of, zoom)
+
+
+def _multiples_on_log(step: Decimal, low: float, high: float) -> list[Decimal]:
+    """Return the multiples of `step` in a range of ages; of very many, those that begin with a round figure."""
+    if (high - low) / float(step) <= _MANY:
+        return [age for age in multiples(step, low, high) if age > 0]
+    exponents = range(floor(log10(low)), floor(log10(high)) + 1)
+    ages = [figure.scaleb(exponent) for exponent in exponents for figure in _FIRST_FIGURES]
+    return sorted(age for age in ages if low <= age <= high and age % step == 0)
 
 
 def _check_range(low: float, high: float, most: int) -> None:

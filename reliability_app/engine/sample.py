@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 from numpy.typing import NDArray
@@ -16,7 +17,7 @@ Index = NDArray[np.intp] | Mask
 # Above this many records it is looked up by a small draw whether summing coincidences can pay.
 _ALWAYS_SUM_BELOW = 20_000
 _DRAW = 2_000
-_BLOCK = 32_768
+_BLOCK, _SHORTEST_BLOCK = 8_192, 64
 
 
 @dataclass(frozen=True, eq=False)
@@ -26,11 +27,35 @@ class Part:
     y: Array
     weight: Array
 
-    def blocks(self, points: int) -> Iterator[Part]:
-        """Split along n so that `points` rows of one block stay in the processor's cache."""
-        size = max(256, _BLOCK // max(1, points))
-        for start in range(0, self.y.shape[1], size):
-            yield Part(self.y[:, start : start + size], self.weight[:, start : start + size])
+    @property
+    def size(self) -> int:
+        """Records a row."""
+        return int(self.y.shape[1])
+
+    @cached_property
+    def total(self) -> Array:
+        """Units, shape (rows,)."""
+        return np.asarray(self.weight.sum(axis=1))
+
+    @cached_property
+    def _weighted(self) -> tuple[Array, Array]:
+        weight_y = self.weight * self.y
+        return weight_y, weight_y * self.y
+
+    def blocks(self, points: int) -> Iterator[tuple[Array, Array, Array, Array]]:
+        """Give y, weight, weight times y and weight times y squared in stretches along n.
+
+        `points` rows of one stretch stay in the processor's cache, and a sum over it is too short to be shared out
+        among threads, which would wait for each other whenever another program is busy.
+        """
+        weight_y, weight_yy = self._weighted
+        size = max(_SHORTEST_BLOCK, _BLOCK // points)
+        if size >= self.size:
+            yield self.y, self.weight, weight_y, weight_yy
+            return
+        for start in range(0, self.size, size):
+            stretch = slice(start, start + size)
+            yield self.y[:, stretch], self.weight[:, stretch], weight_y[:, stretch], weight_yy[:, stretch]
 
     def rows(self, index: Index) -> Part:
         """Return the chosen rows; a part that serves the whole batch stays whole."""
@@ -45,11 +70,21 @@ class IntervalPart:
     half: Array
     weight: Array
 
+    @property
+    def size(self) -> int:
+        """Records a row."""
+        return int(self.middle.shape[1])
+
     def rows(self, index: Index) -> IntervalPart:
         """Return the chosen rows; a part that serves the whole batch stays whole."""
         if self.middle.shape[0] == 1:
             return self
         return IntervalPart(self.middle[index], self.half[index], self.weight[index])
+
+
+_NOTHING = np.empty((1, 0))
+_NO_PART = Part(_NOTHING, _NOTHING)
+_NO_INTERVALS = IntervalPart(_NOTHING, _NOTHING, _NOTHING)
 
 
 @dataclass(frozen=True, eq=False)
@@ -102,26 +137,22 @@ class Sample:
 
 def sample_of(data: LifeData) -> Sample:
     """Return the one sample of `data`, coincident records summed once, centred on the failures."""
-    failed, running = data.is_failed, data.is_running
-    left = data.is_found_failed & (data.lower == 0)
-    between = data.is_found_failed & (data.lower > 0)
-    log_failed = np.log(data.lower[failed])
+    failed, running, found = data.is_failed, data.is_running, data.is_found_failed
+    weight, log_failed = data.quantity, np.log(data.lower[failed])
     shift, spread = _centre(log_failed, data)
 
-    def standard(age: Array) -> Array:
-        return (np.log(age) - shift) / spread
+    def part(age: Array, chosen: Mask) -> Part:
+        return _summed((np.log(age[chosen]) - shift) / spread, weight[chosen]) if chosen.any() else _NO_PART
 
-    weights = data.quantity
-    late = data.entered > 0
     return Sample(
-        failed=_summed((log_failed - shift) / spread, weights[failed]),
-        running=_summed(standard(data.lower[running]), weights[running]),
-        between=_between(data, between, shift, spread),
-        left=_summed(standard(data.upper[left]), weights[left]),
-        entered=_summed(standard(data.entered[late]), weights[late]),
+        failed=_summed((log_failed - shift) / spread, weight[failed]),
+        running=part(data.lower, running),
+        between=_between(data, found & (data.lower > 0), shift, spread) if found.any() else _NO_INTERVALS,
+        left=part(data.upper, found & (data.lower == 0)) if found.any() else _NO_PART,
+        entered=part(data.entered, data.entered > 0),
         shift=shift,
         spread=spread,
-        sum_log_life=np.array([float(weights[failed] @ log_failed)]),
+        sum_log_life=np.array([float(weight[failed] @ log_failed)]),
     )
 
 
@@ -154,5 +185,5 @@ def _summed(y: Array, weight: Array) -> Part:
 
 
 def _thin(part: Part, most: int) -> Part:
-    step = max(1, part.y.shape[1] // most)
+    step = max(1, part.size // most)
     return part if step == 1 else Part(part.y[:, ::step], part.weight[:, ::step] * step)

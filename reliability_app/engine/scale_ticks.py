@@ -6,7 +6,6 @@ from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass, replace
 from decimal import Decimal
 from itertools import islice, pairwise
-from math import inf
 
 from reliability_app.engine.round_numbers import (
     Room,
@@ -58,9 +57,9 @@ class Zoom:
     start, finest : float
         The largest and the smallest step worth trying: the span of the values, and that of the gap where
         values lie closest.
-    steps_at_most : float
-        Where steps are mixed, the most steps from zero that a value may be: on a log scale 1500 is a round number
-        among the hundreds and thousands, 1700 is not.
+    first_figures : frozenset of Decimal or None
+        Where steps are mixed, the figures a value may begin with: on a log scale 1500 and 700 are round beside each
+        other, 1700 is not. None allows all.
     """
 
     low: float
@@ -68,11 +67,15 @@ class Zoom:
     gap: float
     start: float
     finest: float
-    steps_at_most: float = inf
+    first_figures: frozenset[Decimal] | None = None
 
     def seen(self, values: Sequence[Decimal], position: Position) -> int:
         """Count the values inside the visible range."""
         return sum(self.low <= position(value) <= self.high for value in values)
+
+    def allows(self, value: Decimal) -> bool:
+        """Tell whether a value is round enough to stand between others."""
+        return self.first_figures is None or value.scaleb(-value.adjusted()) in self.first_figures
 
 
 def fullest(usual: Sequence[Decimal], candidates: Candidates, position: Position, zoom: Zoom) -> list[Decimal]:
@@ -99,7 +102,7 @@ def fullest(usual: Sequence[Decimal], candidates: Candidates, position: Position
     best = max(choices, key=lambda values: zoom.seen(values, position))
     if zoom.seen(best, position) >= _FEWEST_SEEN:
         return best
-    closer = replace(zoom, finest=zoom.finest / 50.0)
+    closer = replace(zoom, finest=zoom.finest / 50.0, first_figures=None)
     inside = _multiples_with_room(lambda step: candidates(step, 0.0), position, closer)
     return max(best, inside, key=lambda values: zoom.seen(values, position))
 
@@ -118,14 +121,15 @@ def _multiples_with_room(
         if float(step) < 0.5 * zoom.finest:  # half: 1-2-5 steps do not all hold each other's multiples
             break
         values = candidates(step)
+        if not values:
+            continue
         distances = [right - left for left, right in pairwise(sorted(map(position, values)))]
         if not distances or min(distances) >= zoom.gap:
             even = values
             continue
         taken += [value for value in even or () if room.accept(position(value))]
         even = None
-        near = [value for value in values if float(value) <= zoom.steps_at_most * float(step)]
-        taken += [value for value in near if room.accept(position(value))]
+        taken += [value for value in values if zoom.allows(value) and room.accept(position(value))]
     return taken + [value for value in even or () if room.accept(position(value))]
 
 

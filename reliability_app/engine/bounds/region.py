@@ -70,7 +70,7 @@ def _rays(estimate: Estimate, count: int) -> Array:
 
 def _ray_count(estimate: Estimate) -> int:
     sample = estimate.sample
-    records = sample.failed.y.shape[1] + sample.running.y.shape[1] + sample.between.middle.shape[1] + 1
+    records = sample.failed.size + sample.running.size + sample.between.size + 1
     return int(np.clip(_EVALUATIONS_FOR_RAYS // records, _FEWEST_RAYS, _MOST_RAYS)) // 8 * 8
 
 

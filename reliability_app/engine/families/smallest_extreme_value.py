@@ -11,6 +11,7 @@ from reliability_app.engine.families.base import Array, Derivatives, StandardDis
 _SERIES = (1 / 12, -1 / 720, 1 / 30240, -1 / 1209600, 1 / 47900160, -691 / 1307674368000)
 _SERIES_BELOW = 0.5
 _FIRST_ORDER_BELOW = 1e-8
+_SUBTRACTION_LOSES_BELOW = 1e-2
 
 
 class SmallestExtremeValue(StandardDistribution):
@@ -19,7 +20,11 @@ class SmallestExtremeValue(StandardDistribution):
     def log_density(self, z: Array) -> Derivatives:
         """Return ln f(z) = z - exp z."""
         x = np.exp(z)
-        return Derivatives(z - x, -np.expm1(z), -x)
+        slope = 1.0 - x
+        near = np.abs(z) < _SUBTRACTION_LOSES_BELOW
+        if near.any():
+            slope[near] = -np.expm1(z[near])
+        return Derivatives(z - x, slope, -x)
 
     def log_survival(self, z: Array) -> Derivatives:
         """Return ln S(z) = -exp z."""

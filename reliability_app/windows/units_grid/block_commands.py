@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Sequence
 
 from reliability_app.session.edits import Block, BlockEdit, BlocksEdit, DeleteRows, Edit, InsertRows, SortRows
 from reliability_app.session.unit_table import UnitTable
@@ -91,9 +91,6 @@ def tiled(cells: Sequence[Sequence[str]], ranges: Sequence[CellRange]) -> Sequen
     if down % height or right % width:
         return cells
     return [list(row) * (right // width) for row in cells] * (down // height)
-
-
-PushEdit = Callable[[Edit], None]
 
 
 def _area(part: CellRange, table: UnitTable) -> int:

@@ -23,7 +23,6 @@ from reliability_app.windows.units_grid.paste_changes import change_menu
 from reliability_app.windows.units_grid.paste_plan import PastePlace, PastePlan, plan_again, plan_paste
 from reliability_app.windows.units_grid.paste_strip import PasteStrip
 
-
 # What the grid shows; a reading that is dragged must not repaint it all the time.
 _SHOWN = ("units", "life_unit", "everything")
 

@@ -121,6 +121,16 @@ def test_the_button_goes_to_the_next_unread_row(rig):
 def test_qt_is_told_of_every_change_in_order(rig):
     model: QAbstractItemModel = rig.grid.model
     tester = QAbstractItemModelTester(model, QAbstractItemModelTester.FailureReportingMode.Warning)
+    told = {"rows": 1, "columns": 8}
+
+    def tell(what: str, count: int) -> None:
+        told[what] += count
+
+    model.rowsInserted.connect(lambda _, first, last: tell("rows", last - first + 1))
+    model.rowsRemoved.connect(lambda _, first, last: tell("rows", first - last - 1))
+    model.columnsInserted.connect(lambda _, first, last: tell("columns", last - first + 1))
+    model.columnsRemoved.connect(lambda _, first, last: tell("columns", first - last - 1))
+    model.modelReset.connect(lambda: told.update(rows=model.rowCount(), columns=model.columnCount()))
     counts = []
     for edit in (
         PasteRows(0, [{"life": "5", "Lot": "A"}, {"life": "6", "state": "failed", "Rig": "1"}], ("Lot", "Rig")),
@@ -133,6 +143,7 @@ def test_qt_is_told_of_every_change_in_order(rig):
     ):
         rig.undo.push_edit(rig.session, edit)
         counts.append((model.rowCount(), model.columnCount()))
+        assert (told["rows"], told["columns"]) == counts[-1]
     assert counts == [(3, 10), (7, 10), (10, 10), (10, 10), (8, 10), (8, 9), (8, 8)]
     while rig.undo.canUndo():
         rig.undo.undo()
