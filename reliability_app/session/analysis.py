@@ -99,9 +99,7 @@ def analyse(question: Question) -> SetAnalysis:
             cautions.append(Caution("basis-cannot-be-carried-out", Severity.SERIOUS, str(trouble)))
     readings: tuple[Reading, ...] = ()
     if fitted is not None:
-        readings = tuple(
-            take_reading(fitted, ask, question.basis, question.life_unit) for ask in question.asks
-        )
+        readings = tuple(take_reading(fitted, ask, question.basis, question.life_unit) for ask in question.asks)
     points, steps = _marks(data, question.units, cautions)
     reading = readings[0] if readings and readings[0].estimate is not None else None
     picture = _picture(question, points, steps, curves, reading)

@@ -7,7 +7,7 @@ from collections.abc import Callable, Collection, Mapping, Sequence
 from dataclasses import dataclass
 from itertools import pairwise
 
-from reliability_app.session.headings import INTERVAL_END, INTERVAL_START, read_heading
+from reliability_app.session.headings import INTERVAL_END, INTERVAL_START, Heading, read_heading
 from reliability_app.session.numbers import looks_numeric
 from reliability_app.session.row_reading import BUILT_IN_COLUMNS, HEADINGS, read_life_entry
 from reliability_app.session.states import STATES, is_yes, read_answer, read_state
@@ -16,6 +16,8 @@ _SAMPLE = 400
 _HEADING_LINES = 10
 # A life list typed in one line, as textbooks print them; shorter ones may be one row of a table.
 _SHORTEST_LIST = 5
+# Headings of lives up to this rank ("Life", "Time to failure") are believed even above cells that are no numbers.
+_BEYOND_DOUBT = 10
 _MISSING = re.compile(r"|[-\u2013\u2014?.]+|n/?a|nan|none|null|#n/?a", re.IGNORECASE)
 
 
@@ -49,37 +51,52 @@ def _number_with_unit(cell: str) -> bool:
 def find_heading_row(rows: Sequence[Sequence[str]]) -> int | None:
     """Return the place of the row of headings among the first rows, None if there is none.
 
-    A row of headings holds no number and either a known heading, or text above columns of numbers; a known state
-    above other states is not a heading. Title lines may stand above it.
+    A row of headings holds no number and either a known heading, or text above columns of numbers; what recurs below
+    it, and a state above other states, is no heading. Title lines may stand above it.
     """
     for place, row in enumerate(rows[:_HEADING_LINES]):
-        known = [cell for cell in row if read_heading(cell)]
-        if len(known) >= 2 and _may_be_headings(rows, place):
+        if _known_headings(rows, place) >= 2:
             return place
-        if sum(map(looks_numeric, row)) >= 1 and sum(map(bool, row)) > 1:
+        if sum(map(bool, row)) > 1 and any(map(looks_numeric, row)):
             break
-    if not rows or not _may_be_headings(rows, 0):
-        return None
-    if any(read_heading(cell) for cell in rows[0]):
+    if rows and (_known_headings(rows, 0) or _text_above_numbers(rows)):
         return 0
-    return 0 if _text_above_numbers(rows) else None
+    return None
 
 
-def _may_be_headings(rows: Sequence[Sequence[str]], place: int) -> bool:
-    below = rows[place + 1 : place + 1 + _SAMPLE]
+def _known_headings(rows: Sequence[Sequence[str]], place: int) -> int:
+    """Return how many known headings a row holds; 0 for a row that cannot be one of headings."""
+    known = 0
     for column, cell in enumerate(rows[place]):
-        if is_life_like(cell):
-            return False
-        if read_state(cell) is not None:
-            under = [row[column] for row in below if column < len(row) and row[column]]
-            if not under or any(read_state(text) is not None and not text.isdigit() for text in under):
-                return False
-    return any(rows[place])
+        under = _under(rows, place, column)
+        if is_life_like(cell) or _is_state_among_states(cell, under):
+            return 0
+        known += read_heading(cell) is not None and cell not in under and not _are_both_answers(cell, under)
+    return known
+
+
+def _under(rows: Sequence[Sequence[str]], place: int, column: int) -> list[str]:
+    return [row[column] for row in rows[place + 1 : place + _SAMPLE] if column < len(row) and row[column]]
+
+
+def _is_state_among_states(cell: str, under: Sequence[str]) -> bool:
+    """Return whether a word for a state stands for one: as a heading ("Failed") it has answers below it, not words."""
+    if read_state(cell) is None:
+        return False
+    return not under or any(read_state(text) is not None and not text.isdigit() for text in under)
+
+
+def _are_both_answers(cell: str, under: Sequence[str]) -> bool:
+    """Return whether "No" is an answer above other answers, and no heading for numbers."""
+    return read_answer(cell, STATES[0]) is not None and any(read_answer(text, STATES[0]) for text in under)
 
 
 def _text_above_numbers(rows: Sequence[Sequence[str]]) -> bool:
+    """Return whether the first row holds no number, but stands above a column of numbers."""
+    if any(is_life_like(cell) or _is_state_among_states(cell, _under(rows, 0, at)) for at, cell in enumerate(rows[0])):
+        return False
     for column, cell in enumerate(rows[0]):
-        under = [row[column] for row in rows[1:_SAMPLE] if column < len(row) and row[column]]
+        under = _under(rows, 0, column)
         if under and not is_missing(cell) and sum(map(is_life_like, under)) >= 0.8 * len(under):
             return True
     return False
@@ -117,8 +134,8 @@ def _take_headings(
     found = []
     for place, text in enumerate(headings):
         if text.casefold() in extras:
-            keys[place] = extras[text.casefold()]
-        elif (heading := read_heading(text)) and _suits(heading.key, held[place]):
+            keys[place] = extras.pop(text.casefold())
+        elif (heading := read_heading(text)) and _suits(heading, held[place]):
             found.append((heading.rank, place, heading.key))
     named = {key for _, _, key in found}
     is_interval = {INTERVAL_START, INTERVAL_END} <= named and not named & {"life", "until"}
@@ -130,9 +147,11 @@ def _take_headings(
     return is_interval
 
 
-def _suits(key: str, cells: Sequence[str]) -> bool:
-    """Return whether cells can be what a heading says: a column of numbers must hold some, unless it is empty."""
-    if key not in ("life", "until", "quantity", "entered", INTERVAL_START, INTERVAL_END):
+def _suits(heading: Heading, cells: Sequence[str]) -> bool:
+    """Return whether cells can be what a heading says: under "Time" or "Start", say, there may be dates."""
+    if heading.key not in ("life", "until", "quantity", "entered", INTERVAL_START, INTERVAL_END):
+        return True
+    if heading.key == "life" and heading.rank < _BEYOND_DOUBT:
         return True
     known = [cell for cell in cells if not is_missing(cell)]
     return not known or sum(map(is_life_like, known)) * 3 >= len(known)

@@ -10,7 +10,7 @@ from typing import Literal
 from reliability_app.session.unit_table import UnitTable
 
 Side = Literal["lower", "upper", "two"]
-ChangeKind = Literal["units", "basis", "asks", "sets", "title", "life_unit", "everything"]
+ChangeKind = Literal["units", "basis", "asks", "sets", "title", "notes", "life_unit", "everything"]
 
 
 def _nothing_kept() -> Mapping[str, object]:

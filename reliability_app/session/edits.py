@@ -27,6 +27,7 @@ __all__ = [
     "ChangeAsks",
     "ChangeBasis",
     "ChangeLifeUnit",
+    "ChangeNotes",
     "ChangeTitle",
     "DeleteRows",
     "Edit",
@@ -122,6 +123,28 @@ class ChangeTitle(Edit):
 
     def _undo(self, session: Session) -> None:
         session.title = self.old
+
+
+@dataclass(eq=False)
+class ChangeNotes(Edit):
+    """Change the session's notes."""
+
+    old: str
+    new: str
+
+    @property
+    def label(self) -> str:  # noqa: D102 - said by Edit
+        return "change of notes"
+
+    @property
+    def change(self) -> Change:  # noqa: D102 - said by Edit
+        return Change("notes")
+
+    def _do(self, session: Session) -> None:
+        session.notes = self.new
+
+    def _undo(self, session: Session) -> None:
+        session.notes = self.old
 
 
 @dataclass(eq=False)

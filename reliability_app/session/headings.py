@@ -25,8 +25,8 @@ vita|durata|tempo al guasto|tempo di funzionamento|tempo|eta|stop|exit
     "until": """
 until|found failed at|found at|failed before|failed by|found failed by|bis|jusqu a|hasta|fino a
 """,
-    INTERVAL_START: "lower|lower bound|lower limit|from|left|time1|last seen running|last inspection|von|de|desde|da",
-    INTERVAL_END: "upper|upper bound|upper limit|to|right|time2|first seen failed|a",
+    INTERVAL_START: "lower|lower bound|lower limit|from|left|time1|last seen running|last inspection|von|desde",
+    INTERVAL_END: "upper|upper bound|upper limit|to|right|time2|first seen failed",
     "state": """
 state|status|state f s|f s|f or s|event|result|outcome|condition|fate|censored|censoring|cens|censor|censor code
 failed|failure|failure indicator|event indicator|delta|suspended|suspension|running|still running|survived

@@ -12,11 +12,12 @@ from reliability_app.session.html_table import has_full_values, read_html_table,
 from reliability_app.session.interpretation import interpret
 from reliability_app.session.numbers import DecimalMark
 from reliability_app.session.row_reading import NUMBER_COLUMNS
-from reliability_app.session.separators import split_text
+from reliability_app.session.separators import MOST_COLUMNS, narrowed, split_text
 from reliability_app.session.understanding import Choices, SourceTable, Understanding
 from reliability_app.session.unit_table import UnitTable
 
 AS_DISPLAYED = "Numbers were taken as the spreadsheet displays them; digits it does not show are missing."
+TOO_WIDE = f"There are more than {MOST_COLUMNS} columns: the last one holds all the rest."
 LIST_OF_LIVES = "The text is one line of lives: each was taken as a unit of its own."
 
 # Rows looked at to tell whether the first ones are headings.
@@ -49,6 +50,8 @@ def understand(
     rows = [row for row in rows if any(map(str.strip, row))]
     if is_list_of_lives(rows):
         rows, notes = [[cell] for row in rows for cell in row if cell], (*notes, LIST_OF_LIVES)
+    if max(map(len, rows), default=0) > MOST_COLUMNS:
+        rows, notes = narrowed(rows), (*notes, TOO_WIDE)
     columns = tuple([cell.strip() for cell in column] for column in zip_longest(*rows, fillvalue=""))
     extras = existing.extra_columns if existing is not None else ()
     return interpret(SourceTable(columns, _heading_row(rows), notes, extras, at_column), Choices())
@@ -100,6 +103,7 @@ def plain_block(text: str, html: str | None = None, *, columns: Sequence[str] = 
         rows = [[text.strip()]]
     if len(rows) > 1 and _heading_row([row for row in rows if any(map(str.strip, row))]) is not None:
         return None
+    rows = narrowed(rows)
     by_column = [[cell.strip() for cell in column] for column in zip_longest(*rows, fillvalue="")]
     keys = [columns[place] if place < len(columns) else "" for place in range(len(by_column))]
     texts = {str(p): cells for p, (key, cells) in enumerate(zip(keys, by_column, strict=True)) if key in NUMBER_COLUMNS}

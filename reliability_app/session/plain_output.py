@@ -32,9 +32,7 @@ def as_text(analyses: Sequence[SetAnalysis], life_unit: str) -> str:
     for analysis in analyses:
         question = analysis.question
         lines = [f"{question.name}: {all_counts_text(question.counts)}"]
-        lines += [
-            f"  {reading_sentence(reading, life_unit)}" for reading in analysis.readings if _is_given(reading)
-        ]
+        lines += [f"  {reading_sentence(reading, life_unit)}" for reading in analysis.readings if _is_given(reading)]
         lines.append(f"  ({basis_text(question.basis, question.counts)})")
         lines += [f"  ! {caution.text}" for caution in cautions_of(analysis)]
         paragraphs.append("\n".join(lines))

@@ -49,8 +49,7 @@ def split_text(text: str) -> SplitText:
     if separator in ("  ", " "):
         return SplitText(_split_at_spaces(lines, separator), separator, ())
     rows, notes = _split_at(lines, separator or "\t")
-    rows, more = _narrowed(rows, separator or "\t")
-    return SplitText(rows, separator, notes + more)
+    return SplitText(rows, separator, notes)
 
 
 def _find_separator(lines: Sequence[str]) -> str:
@@ -204,10 +203,9 @@ def _with_states_joined(row: list[str]) -> list[str]:
     return row
 
 
-def _narrowed(rows: list[list[str]], separator: str) -> tuple[list[list[str]], tuple[str, ...]]:
-    """Join what lies beyond the last column that is kept apart, so that one odd line cannot make a huge table."""
+def narrowed(rows: list[list[str]]) -> list[list[str]]:
+    """Join what lies beyond MOST_COLUMNS into the last of them, so that one odd line cannot make a huge table."""
     if max(map(len, rows), default=0) <= MOST_COLUMNS:
-        return rows, ()
+        return rows
     last = MOST_COLUMNS - 1
-    narrow = [row if len(row) <= last else [*row[:last], separator.join(row[last:])] for row in rows]
-    return narrow, (f"There are more than {MOST_COLUMNS} columns: the last one holds all the rest.",)
+    return [row if len(row) <= last else [*row[:last], " ".join(row[last:])] for row in rows]

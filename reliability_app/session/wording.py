@@ -108,8 +108,7 @@ def bound_clause(reading: Reading, life_unit: str) -> str:
     """Return the bound as a clause: With 95 % confidence at least 860 h."""
     confidence = f"With {as_given(100 * reading.basis.confidence)} % confidence"
     lower, upper = (
-        None if end is None else value_text(reading.ask, end, life_unit)
-        for end in (reading.lower, reading.upper)
+        None if end is None else value_text(reading.ask, end, life_unit) for end in (reading.lower, reading.upper)
     )
     if lower is not None and upper is not None:
         return f"{confidence} between {lower} and {upper}"
@@ -142,6 +141,4 @@ def all_counts_text(counts: Counts) -> str:
 def unread_caution(rows: int) -> Caution:
     """Return the caution that some rows are not part of the analysis."""
     what = "1 row is unread and left out" if rows == 1 else f"{rows} rows are unread and left out"
-    return Caution(
-        "rows-unread", Severity.CAUTION, f"{what}: see the marked cells of the units for the reasons."
-    )
+    return Caution("rows-unread", Severity.CAUTION, f"{what}: see the marked cells of the units for the reasons.")

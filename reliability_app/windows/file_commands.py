@@ -99,6 +99,8 @@ class FileCommands(QObject):
             self._messages.say(Severity.SERIOUS, str(trouble))
             return False
         self._take_over(opened.session, None)
+        if opened.session.notes:
+            self._messages.say(Severity.NOTE, opened.session.notes)
         return True
 
     def add_sets_by_dialog(self) -> None:

@@ -104,6 +104,8 @@ class MainWindow(QMainWindow):
         if change.kind == "title":
             self._show_title()
         self.contents.grid.refresh(change)
+        if change.kind in ("title", "notes"):
+            return
         if change.set_index in (None, self.shown_set):
             self.contents.basis.show_basis(self.shown_set, self.session.sets[self.shown_set].basis)
             self._ask()
@@ -126,6 +128,15 @@ class MainWindow(QMainWindow):
         if place is not None and place != self.shown_set and place < len(self.session.sets):
             self.show_set(place)
         self.contents.grid.reveal(edit)
+
+    def edit_notes(self) -> None:
+        """Show title and notes for editing."""
+        from reliability_app.windows.notes_dialog import NotesDialog
+
+        dialog = NotesDialog(self.session, self)
+        if dialog.exec():
+            for edit in dialog.edits():
+                self.push_edit(edit)
 
     # Questions and answers
 

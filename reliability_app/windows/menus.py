@@ -8,7 +8,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QObject
-from PySide6.QtGui import QAction, QActionGroup, QGuiApplication, QKeySequence
+from PySide6.QtGui import QAction, QActionGroup, QGuiApplication, QIcon, QKeySequence
 from PySide6.QtWidgets import QApplication, QMenu, QMessageBox
 
 from reliability_app import __version__
@@ -38,30 +38,33 @@ class Menus(QObject):
 
     def _build_file(self, menu: QMenu) -> None:
         files = self._window.files
-        self._add(menu, "&New session", "Ctrl+N", files.new)
-        self._add(menu, "&Open …", "Ctrl+O", files.open_by_dialog)
+        self._add(menu, "&New session", "Ctrl+N", files.new, icon="new")
+        self._add(menu, "&Open …", "Ctrl+O", files.open_by_dialog, icon="open")
         self._recent = menu.addMenu("Open &recent")
         self._recent.aboutToShow.connect(self._list_recent)
         self._samples = menu.addMenu("Sa&mple sets")
         self._list_samples()
         menu.addSeparator()
-        self._add(menu, "&Save", "Ctrl+S", files.save)
+        self._add(menu, "&Save", "Ctrl+S", files.save, icon="save")
         self._add(menu, "Save &as …", "Ctrl+Shift+S", files.save_as)
+        self._add(menu, "&Title and notes …", "Ctrl+I", self._window.edit_notes)
         menu.addSeparator()
         self._add(menu, "&Quit", "Ctrl+Q", self._window.close)
 
     def _build_edit(self, menu: QMenu) -> None:
-        menu.addActions(list(self._window.undo.make_actions(self._window)))
+        for action, icon in zip(self._window.undo.make_actions(self._window), ("undo", "redo"), strict=True):
+            action.setIcon(shipped_icon(icon))
+            menu.addAction(action)
         menu.addSeparator()
         menu.addActions(self._window.contents.grid.actions_for_menu())
         menu.addSeparator()
         reading = self._window.contents.reading
-        self._add(menu, "Copy the &reading with its cautions", "Ctrl+Shift+C", reading.copy_statement)
+        self._add(menu, "Copy the &reading with its cautions", "Ctrl+Shift+C", reading.copy_statement, icon="copy")
         self._add(menu, "Copy all readings as a &table", "Ctrl+Alt+C", reading.table.copy_all)
 
     def _build_sets(self, menu: QMenu) -> None:
         bar = self._window.contents.set_bar
-        self._add(menu, "&Add a set", "Ctrl+Shift+N", bar.add_set)
+        self._add(menu, "&Add a set", "Ctrl+Shift+N", bar.add_set, icon="add_set")
         self._add(menu, "Add sets from a &file …", "Ctrl+Shift+O", self._window.files.add_sets_by_dialog)
         self._add(menu, "&Rename the set …", "F6", bar.rename_set)
         self._add(menu, "Re&move the set", "", bar.remove_set)
@@ -81,8 +84,10 @@ class Menus(QObject):
     def _build_help(self, menu: QMenu) -> None:
         self._add(menu, "&About Rigpaper", "", self._tell_about)
 
-    def _add(self, menu: QMenu, text: str, keys: str, act: Callable[[], object]) -> QAction:
+    def _add(self, menu: QMenu, text: str, keys: str, act: Callable[[], object], *, icon: str = "") -> QAction:
         action = QAction(text, self._window)
+        if icon:
+            action.setIcon(shipped_icon(icon))
         if keys:
             action.setShortcut(QKeySequence(keys))
         action.triggered.connect(lambda _=False: act())
@@ -113,6 +118,11 @@ class Menus(QObject):
             f"<p><b>Rigpaper {__version__}</b></p><p>Life-data analysis for test rigs and field returns.</p>"
             f"<p>{STANDING_CAUTION.text}</p>",
         )
+
+
+def shipped_icon(name: str) -> QIcon:
+    """Return one of the program's own icons: theme icons are missing on a bare system."""
+    return QIcon(str(shipped("resources") / "icons" / f"{name}.svg"))
 
 
 def _title_of(path: Path) -> str:

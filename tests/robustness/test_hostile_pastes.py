@@ -25,7 +25,7 @@ CELL = st.one_of(
     st.sampled_from(["Life (h)", "State", "Unit", "Qty", "Failed?", "lower", "upper", "Temp", "Life", "=1+1", "###"]),
 )
 NUMBER_LIKE = st.from_regex(r"[<>]?-?[0-9.,' ]{0,9}[0-9]([eE]-?[0-9])?[+]?(-[0-9]{1,4})?", fullmatch=True)
-COMMON = settings(max_examples=150, deadline=None)
+COMMON = settings(max_examples=100, deadline=None)
 
 
 def everything_in(text: str) -> str:

@@ -176,7 +176,7 @@ def test_table_without_states_is_read_as_failed_and_says_so() -> None:
 
 
 def test_textbook_list_with_plus_signs_is_understood() -> None:
-    for text in ("812\n900\n1500+", "812 900 1000 1100 1500+"):
+    for text in ("812\n900\n1500+", "812 900 1000 1100 1500+", "812\t" * 999 + "1500+"):
         understood = understand(text)
         assert understood.rows[-1] == {"life": "1500", "state": "running"}
         assert understood.rows[0] == {"life": "812", "state": "failed"}
@@ -230,9 +230,18 @@ def test_title_lines_above_the_headings_are_kept_as_rows() -> None:
     assert "The line above the headings is kept as a row, though it is no unit." in understood.notes
 
 
+def test_very_wide_table_is_kept_with_its_last_columns_joined() -> None:
+    understood = understand("Life\t" + "\t".join(f"c{n}" for n in range(300)) + "\n812" + "\tx" * 300)
+    assert len(understood.columns) == 200
+    assert understood.headings[-1].endswith("c299")
+    assert "There are more than 200 columns: the last one holds all the rest." in understood.notes
+
+
 def test_first_row_of_units_is_not_taken_for_headings() -> None:
     assert len(understand("P-1\t812\tfailed\nP-2\t900\trunning").rows) == 2
     assert len(understand("failed\t812\nrunning\t900").rows) == 2
+    assert len(understand("no\nyes\nno").rows) == 3
+    assert len(understand("life\nlife\nlife").rows) == 3
     assert len(understand("n/a\tfailed\n900\trunning\n950\tfailed").rows) == 3
     assert understand("P-1\tn/a\tfailed\nP-2\t900\trunning\nP-3\t950\tfailed").rows[0]["life"] == "n/a"
 
@@ -261,6 +270,18 @@ def test_headings_that_name_a_column_of_the_table_mean_that_column() -> None:
     understood = understand("Life\tState\ttemp\tLoad\n812\tF\t150\t3", existing=existing)
     assert understood.columns == ("life", "state", "Temp", "Load")
     assert understand("A\t812\tF\tnew seal", existing=existing).columns == ("unit", "life", "state", "Column 4")
+
+
+def test_heading_without_doubt_is_believed_above_any_cells_and_a_vague_one_above_numbers_only() -> None:
+    assert understand("Life\tState\tTemp\nabc\tF\t150\ndef\tS\t170").columns == ("life", "state", "Temp")
+    vague = understand("Time\tState\tHours run\n12:30\tF\t812\n13:10\tS\t900")
+    assert vague.columns == ("Time", "state", "life")
+
+
+def test_two_columns_of_one_name_do_not_become_one() -> None:
+    existing = UnitTable.from_rows([], ["Temp"])
+    understood = understand("Life\tState\tTemp\ttemp\n812\tF\t150\t7", existing=existing)
+    assert understood.rows == [{"life": "812", "state": "failed", "Temp": "150", "temp (2)": "7"}]
 
 
 def test_equal_headings_give_columns_of_their_own() -> None:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from itertools import pairwise
+from math import ceil
 
 import pyqtgraph as pg
 from PySide6.QtGui import QFont, QFontMetricsF
@@ -122,18 +123,19 @@ class RoundAxis(pg.AxisItem):  # type: ignore[misc]  # pyqtgraph ships no types
 
     def _fitting_level(self, low: float, high: float, length: float, line: float) -> list[Tick]:
         """Return the most labels that keep apart side by side, whatever their widths are."""
-        ticks: list[Tick] = []
-        for most in range(max(2, int(length / (2.0 * line))), 1, -1):
+        most, each = max(2, int(length / (2.5 * line))), length / (high - low)
+        while True:
             ticks = self.ticks_between(low, high, most)
             labelled = [(tick.position, self.label_size(tick.label)) for tick in ticks if tick.major]
-            each = length / (high - low)
-            rooms = (
-                (after - before) * each - 0.5 * (wide_before + wide_after)
-                for (before, wide_before), (after, wide_after) in pairwise(labelled)
-            )
-            if min(rooms, default=length) >= self.room_between * line:
-                break
-        return ticks
+            # How much of the room it needs each pair of neighbours has.
+            shares = [
+                (after - before) * each / (0.5 * (size_before + size_after) + self.room_between * line)
+                for (before, size_before), (after, size_after) in pairwise(labelled)
+            ]
+            tightest = min(shares, default=1.0)
+            if tightest >= 1.0 or most == 2:
+                return ticks
+            most = max(2, min(most - 1, ceil(most * tightest)))
 
     def _is_covered(self, position: float, label: str) -> bool:
         half = 0.5 * self.label_size(label) / self._pixels_each()

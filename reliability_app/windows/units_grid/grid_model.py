@@ -101,7 +101,7 @@ class GridModel(QAbstractTableModel):
         """
         self._life_unit = life_unit
         self._adopt_columns(self._table.columns)
-        self._rows = self._table.row_count + 1
+        self._adopt_row_count(self._table.row_count + 1)
         self.dataChanged.emit(self.index(0, 0), self.index(self._rows - 1, len(self._columns) - 1))
         self.headerDataChanged.emit(_HORIZONTAL, 0, len(self._columns) - 1)
         self.headerDataChanged.emit(Qt.Orientation.Vertical, 0, self._rows - 1)
