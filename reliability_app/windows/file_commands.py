@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from pathlib import Path
 
 from PySide6.QtCore import QObject, QTimer, Signal
@@ -30,7 +31,10 @@ Answer = QMessageBox.StandardButton
 
 
 class FileCommands(QObject):
-    """Knows which file the session belongs to, and moves sessions between files and the window."""
+    """Knows which file the session belongs to, and moves sessions between files and the window.
+
+    `finish_entry` is called first by whatever needs the session as the user sees it: it takes a half-typed cell in.
+    """
 
     path_changed = Signal()
 
@@ -41,11 +45,13 @@ class FileCommands(QObject):
         messages: Messages,
         settings: WindowSettings,
         window: QWidget,
+        finish_entry: Callable[[], None],
         recovery: RecoveryCopy | None = None,
     ) -> None:
         super().__init__(window)
         self._session, self._undo, self._messages = session, undo, messages
         self._settings, self._window = settings, window
+        self._finish_entry = finish_entry
         self._recovery = recovery or RecoveryCopy()
         self._lock: FileLock | None = None
         self._recovery_told = False
@@ -139,10 +145,12 @@ class FileCommands(QObject):
 
     def save(self) -> bool:
         """Save to the session's file, or ask for one."""
+        self._finish_entry()
         return self.save_as() if self.path is None else self._save_to(self.path)
 
     def save_as(self) -> bool:
         """Ask for a file and save there."""
+        self._finish_entry()
         suggested = Path(self._folder()) / f"{self._session.title or 'session'}{SUFFIX}"
         start = str(self.path or suggested)
         name, _ = QFileDialog.getSaveFileName(self._window, "Save session as", start, SESSION_FILTER)
@@ -153,6 +161,7 @@ class FileCommands(QObject):
 
     def may_drop_session(self) -> bool:
         """Ask whether unsaved work is to be saved; True when it is safe or may be dropped."""
+        self._finish_entry()
         if self._undo.isClean():
             return True
         answer = QMessageBox.question(

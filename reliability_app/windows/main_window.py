@@ -59,8 +59,10 @@ class MainWindow(QMainWindow):
         self.undo = UndoStack(self)
         self.bridge = SessionBridge(session, messages, self)
         self.analyst = Analyst(self)
-        self.files = FileCommands(session, self.undo, messages, self.settings, self, recovery)
         self.contents = Contents(session, self.push_edit, messages)
+        self.files = FileCommands(
+            session, self.undo, messages, self.settings, self, self.contents.grid.finish_entry, recovery
+        )
         self.menus = Menus(self)
         self.setCentralWidget(self.contents)
         self._filled = True

@@ -216,3 +216,13 @@ def test_the_session_saved_is_the_session_shown(desk: Desk, tmp_path: Path) -> N
     saved = load(file)
     assert saved.sets[0].table.counts() == desk.window.session.sets[0].table.counts()
     assert saved.sets[0].basis == desk.window.session.sets[0].basis
+
+
+def test_a_half_typed_cell_is_saved_too(desk: Desk, tmp_path: Path) -> None:
+    desk.paste(TABBED)
+    desk.go(0, "life")
+    desk.type("77")
+    file = tmp_path / "rig.json"
+    Dialogs.choose_file(file)
+    desk.key(Qt.Key.Key_S, CONTROL)
+    assert load(file).sets[0].table.text(0, "life") == "77"

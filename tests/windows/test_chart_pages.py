@@ -54,11 +54,13 @@ class TestAxes:
             for axis in (page._age_axis, page._upright):
                 assert len(labels(axis)) >= 2, view_range(page)
         page.reset_view()
-        for _ in range(8):
-            page.view.zoom(1.0 / 1.6)
-            page.grab()
-            for axis in (page._age_axis, page._upright):
-                assert len(labels(axis)) >= 2, view_range(page)
+        for kind_of_age in ("log", "linear"):
+            page.set_age_scale(kind_of_age)
+            for _ in range(24):
+                page.view.zoom(1.0 / 1.6)
+                page.grab()
+                for axis in (page._age_axis, page._upright):
+                    assert len(labels(axis)) >= 2, view_range(page)
 
     def test_age_labels_keep_apart(self, shown):
         page = shown(PaperPage, picture(PUMPS))

@@ -14,7 +14,7 @@ from reliability_app.engine.paper import AgeScale, AgeScaleKind
 from reliability_app.session.picture import SetPicture
 from reliability_app.session.wording import reading_sentence
 from reliability_app.windows.charts.age_axis import AgeAxis
-from reliability_app.windows.charts.chart_ranges import Range
+from reliability_app.windows.charts.chart_ranges import Range, limits_around
 from reliability_app.windows.charts.chart_view import ChartView
 from reliability_app.windows.charts.grid_lines import GridLines
 from reliability_app.windows.charts.legend import Corner, Legend, LegendEntry
@@ -128,6 +128,10 @@ class ChartPage(QWidget):
     def _nothing_to_show(self) -> str:
         """Return the one line that an empty page says; empty where there is something to draw."""
         return NO_UNITS if all(picture.is_empty for picture in self._pictures) else ""
+
+    def _limits(self, whole: Range) -> Range:
+        """Return what the view never leaves: beyond, numbers overflow and there is nothing to see."""
+        return limits_around(whole, self._scale)
 
     def _prepare(self) -> None:
         """Make scales ready for the pictures about to be drawn."""
@@ -326,9 +330,7 @@ class ChartPage(QWidget):
         (left, right), (low, high) = self.view.plotItem.vb.viewRange()
         if is_new or not Range(left, right, low, high).holds(mark):
             whole = self._whole_range(mark)
-            self.view.plotItem.vb.setRange(
-                xRange=(whole.left, whole.right), yRange=(whole.low, whole.high), padding=0.0
-            )
+            self.view.look_at(whole, self._limits(whole))
 
     # --- moving the reading
 

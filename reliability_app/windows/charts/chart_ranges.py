@@ -21,6 +21,8 @@ _LEAST_WIDTH = {"log": 0.9, "linear": 0.0}
 _FIT_BEYOND = 0.45  # the fit may widen the ages of the units by this share of their width on either side
 _BOUND_BEYOND = 1.2  # and a bound by this share; a bound further off runs out of the picture
 _PADDING = 0.05
+_AWAY = 1000.0
+_LOG_LIMITS = (-60.0, 80.0)  # ln age
 
 
 @dataclass(frozen=True)
@@ -105,6 +107,13 @@ def curve_range(pictures: Sequence[SetPicture], mark: ReadingMark | None, scale:
     if scale.kind == "linear":
         return Range(0.0, right, 0.0, high).padded(left=0.0, right=_PADDING, low=0.0, high=0.04)
     return Range(left, right, 0.0, high).padded(left=_PADDING, right=_PADDING, low=0.0, high=0.04)
+
+
+def limits_around(whole: Range, scale: AgeScale) -> Range:
+    """Return the limits of view: every thinkable age on a log axis, else a thousand times the whole picture."""
+    width, height = _AWAY * (whole.right - whole.left), _AWAY * (whole.high - whole.low)
+    left, right = _LOG_LIMITS if scale.kind == "log" else (whole.left - width, whole.right + width)
+    return Range(left, right, whole.low - height, whole.high + height)
 
 
 def hazard_top(pictures: Sequence[SetPicture], mark: ReadingMark | None, within: tuple[float, float]) -> float:

@@ -6,10 +6,12 @@ import pyqtgraph as pg
 from PySide6.QtCore import QPoint, QRect, Qt, Signal
 from PySide6.QtGui import QContextMenuEvent, QFocusEvent, QImage, QKeyEvent, QPainter, QPaintEvent, QPalette, QPen
 
+from reliability_app.windows.charts.chart_ranges import Range
 from reliability_app.windows.charts.round_axis import RoundAxis
 
 _PAN = 0.1  # share of the view that an arrow key moves
 _ZOOM = 1.25
+_SMALLEST = 1e-5  # share of the whole picture below which nothing is left to see
 _PICTURE_SCALE = 2.0  # pixels of a copied picture for each on the screen: slides and prints enlarge
 _MARGINS = (6, 10, 16, 6)
 
@@ -71,6 +73,19 @@ class ChartView(pg.PlotWidget):  # type: ignore[misc]  # pyqtgraph ships no type
         self.render(painter, QRect(QPoint(0, 0), size), self.viewport().rect())
         painter.end()
         return image
+
+    def look_at(self, part: Range, limits: Range) -> None:
+        """Show a part, from which one can move and zoom within the limits."""
+        box = self.plotItem.vb
+        box.setLimits(
+            xMin=limits.left,
+            xMax=limits.right,
+            yMin=limits.low,
+            yMax=limits.high,
+            minXRange=_SMALLEST * (part.right - part.left),
+            minYRange=_SMALLEST * (part.high - part.low),
+        )
+        box.setRange(xRange=(part.left, part.right), yRange=(part.low, part.high), padding=0.0)
 
     def pan(self, across: float, along: float) -> None:
         """Move the view by shares of its size."""

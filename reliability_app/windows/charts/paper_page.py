@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from functools import partial
 
 import numpy as np
@@ -61,6 +62,10 @@ class PaperPage(ChartPage):
 
     def _whole_range(self, mark: ReadingMark | None) -> Range:
         return paper_range(self._pictures, mark, self._probability, self._scale)
+
+    def _limits(self, whole: Range) -> Range:
+        low, high = self._probability.limits
+        return replace(super()._limits(whole), low=low, high=high)
 
     def _percent_at(self, position: float) -> float:
         vb = self.view.plotItem.vb
