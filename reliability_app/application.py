@@ -1,7 +1,7 @@
 """The composition root: start order, the last-resort handler, and the window on a session.
 
-Start order: application object, colours, the frame of the window painted; then the numerical and chart libraries in a
-thread, so that the frame stays alive; then the contents; then the file named on the command line, or unsaved work found.
+Start order: application object, colours, the frame of the window painted; then the numerical and chart libraries in
+a thread, so that the frame stays alive; then the contents; then the file named on the command line, or unsaved work.
 """
 
 from __future__ import annotations

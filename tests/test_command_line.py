@@ -95,7 +95,9 @@ def test_units_without_a_failure_give_status_one_and_the_reason(
 
 def test_a_table_is_read_like_a_paste(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
     table = tmp_path / "rig.csv"
-    table.write_text('Serial;Hours;Result\nP1;"812,5";ok\nP2;1.401,40;broken\nP3;n/a;broken\nP4;600,1;failed\n', "utf-8")
+    table.write_text(
+        'Serial;Hours;Result\nP1;"812,5";ok\nP2;1.401,40;broken\nP3;n/a;broken\nP4;600,1;failed\n', "utf-8"
+    )
     status, answer = read_json(capsys, str(table))
     (found,) = answer["sets"]
     assert status == 0

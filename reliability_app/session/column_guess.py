@@ -7,10 +7,10 @@ from collections.abc import Callable, Collection, Mapping, Sequence
 from dataclasses import dataclass
 from itertools import pairwise
 
-from reliability_app.session.headings import INTERVAL_END, INTERVAL_START, Heading, read_heading
+from reliability_app.session.headings import INTERVAL_END, INTERVAL_START, Heading, read_heading, split_unit
 from reliability_app.session.numbers import looks_numeric
 from reliability_app.session.row_reading import BUILT_IN_COLUMNS, HEADINGS, read_life_entry
-from reliability_app.session.states import STATES, is_yes, read_answer, read_state
+from reliability_app.session.states import FOUND_FAILED, STATES, is_yes, read_answer, read_state
 
 _SAMPLE = 400
 _HEADING_LINES = 10
@@ -40,12 +40,10 @@ def is_missing(cell: str) -> bool:
 
 def is_life_like(cell: str) -> bool:
     """Return whether a cell is a number or an entry like "1500+", "200-400" or "812 h"."""
-    return looks_numeric(cell) or read_life_entry(cell) is not None or _number_with_unit(cell)
-
-
-def _number_with_unit(cell: str) -> bool:
-    number, _, word = cell.rpartition(" ")
-    return word.isalpha() and looks_numeric(number)
+    if looks_numeric(cell) or read_life_entry(cell) is not None:
+        return True
+    part = split_unit(cell)
+    return part is not None and part.unit is not None
 
 
 def find_heading_row(rows: Sequence[Sequence[str]]) -> int | None:
@@ -122,7 +120,8 @@ def guess_columns(
     keys: list[str | None] = [None] * len(columns)
     is_interval = _take_headings(keys, held, headings, known_extras)
     _take_contents(keys, held, headings)
-    _name_the_rest(keys, held, headings, known_extras)
+    rest = [place for place, key in enumerate(keys) if key is None and (held[place] or headings[place])]
+    _name(keys, rest, headings, known_extras)
     return Columns(tuple(keys), is_interval)
 
 
@@ -189,22 +188,21 @@ def _may_be_names(keys: Sequence[str | None], held: Sequence[Sequence[str]], pla
     return _counts_up(cells) or sum(map(is_life_like, cells)) * 2 < len(cells)
 
 
-def _name_the_rest(
-    keys: list[str | None], held: Sequence[Sequence[str]], headings: Sequence[str], known_extras: Collection[str]
+def _name(
+    keys: list[str | None], places: Sequence[int], headings: Sequence[str], known_extras: Collection[str]
 ) -> None:
-    """Make every further column that holds text, or has a heading, one of the user's own, under a name not taken."""
-    taken = {name.casefold() for name in (*BUILT_IN_COLUMNS, *HEADINGS.values(), *known_extras)}
-    for place, cells in enumerate(held):
-        if keys[place] is not None or not (cells or headings[place]):
-            continue
-        name = headings[place] or f"Column {place + 1}"
-        if name not in known_extras or name in keys:
-            name = free_name(name, taken)
+    """Make the columns at `places` the user's own: ones the table has already, or new ones under names not taken."""
+    existing = {name.casefold(): name for name in known_extras}
+    taken = {name.casefold() for name in (*BUILT_IN_COLUMNS, *HEADINGS.values(), *known_extras, *filter(None, keys))}
+    for place in places:
+        wanted = headings[place] or f"Column {place + 1}"
+        known = existing.get(wanted.casefold())
+        name = known if known is not None and known not in keys else _free_name(wanted, taken)
         keys[place] = name
         taken.add(name.casefold())
 
 
-def free_name(wanted: str, taken: Collection[str]) -> str:
+def _free_name(wanted: str, taken: Collection[str]) -> str:
     """Return `wanted`, with a number behind it if it is among `taken` (given in casefolded form)."""
     wanted = " ".join(wanted.split())
     name, count = wanted, 2
@@ -218,11 +216,14 @@ def _own_layout(columns: Sequence[Sequence[str]]) -> tuple[str | None, ...] | No
     if not 4 <= len(columns) <= len(BUILT_IN_COLUMNS):
         return None
     layout = dict(zip(BUILT_IN_COLUMNS, columns, strict=False))
-    numeric = [cell for key in ("life", "until") for cell in layout[key] if cell]
-    states = [cell for cell in layout["state"] if cell]
-    rest = [cell for key in ("quantity", "entered") for cell in layout.get(key, ()) if cell]
-    fits = numeric and states and set(states) <= set(STATES) and all(map(looks_numeric, (*numeric, *rest)))
-    return BUILT_IN_COLUMNS[: len(columns)] if fits else None
+    numbers = [cell for key in ("life", "until", "quantity", "entered") for cell in layout.get(key, ()) if cell]
+    states = {cell for cell in layout["state"] if cell}
+    if not (any(layout["life"]) and states and states <= set(STATES) and all(map(looks_numeric, numbers))):
+        return None
+    ends_fit = all(
+        not end or state == FOUND_FAILED for end, state in zip(layout["until"], layout["state"], strict=True)
+    )
+    return BUILT_IN_COLUMNS[: len(columns)] if ends_fit else None
 
 
 def _are_states(cells: Sequence[str]) -> bool:
@@ -237,7 +238,7 @@ def _has_two_kinds(words: Sequence[str]) -> bool:
 
 
 def _are_indicators(cells: Sequence[str]) -> bool:
-    return set(cells) in ({"0", "1"}, {"1", "2"}, {"0.0", "1.0"})
+    return set(cells) in ({"0", "1"}, {"0.0", "1.0"})
 
 
 def _are_lives(cells: Sequence[str]) -> bool:
@@ -264,29 +265,30 @@ def _unlike_lives(cells: Sequence[str]) -> tuple[bool, float]:
 
 def is_list_of_lives(rows: Sequence[Sequence[str]]) -> bool:
     """Return whether the text is one line of lives ("812 900 1100 1500+ 1500+"): units beside, not columns."""
-    cells = [cell for row in rows for cell in row if cell]
+    cells = [text for row in rows for cell in row if (text := cell.strip())]
     return len(rows) == 1 and len(cells) >= _SHORTEST_LIST and all(map(is_life_like, cells))
 
 
-def renamed(columns: Columns, choices: Mapping[int, str | None], headings: Sequence[str]) -> Columns:
-    """Return `columns` with other meanings chosen by hand.
+def renamed(
+    columns: Columns,
+    choices: Mapping[int, str | None],
+    headings: Sequence[str],
+    known_extras: Collection[str] = (),
+) -> Columns:
+    """Return `columns` with other meanings chosen by hand; headings and known extras as in `guess_columns`.
 
     Parameters
     ----------
     choices : mapping of int to str or None
-        Per source column a key of the unit table; None or an unknown word makes it a column of the user's own. A column
-        that had the chosen key before becomes one of the user's own.
+        Per source column a key of the unit table; None or an unknown word makes it a column of the user's own. A
+        column that had the chosen key before becomes one of the user's own.
     """
     keys = list(columns.keys)
     for place, choice in choices.items():
         if choice in BUILT_IN_COLUMNS and choice in keys:
             keys[keys.index(choice)] = None
         keys[place] = choice if choice in BUILT_IN_COLUMNS else None
-    taken = {name.casefold() for name in (*BUILT_IN_COLUMNS, *HEADINGS.values())}
-    taken |= {key.casefold() for key in keys if key}
-    for place, key in enumerate(keys):
-        if key is None and (place in choices or columns.keys[place] is not None):
-            keys[place] = free_name(headings[place] or f"Column {place + 1}", taken)
-            taken.add(str(keys[place]).casefold())
+    rest = [p for p, key in enumerate(keys) if key is None and (p in choices or columns.keys[p] is not None)]
+    _name(keys, rest, headings, known_extras)
     same_ends = all(columns.keys[p] == keys[p] for p, key in enumerate(keys) if key in ("life", "until"))
     return Columns(tuple(keys), columns.is_interval and same_ends)

@@ -8,8 +8,9 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 from reliability_app.session.column_guess import is_missing
-from reliability_app.session.headings import question, read_life_unit
+from reliability_app.session.headings import question, split_unit
 from reliability_app.session.numbers import (
+    LOOKALIKES,
     DecimalMark,
     UnreadableNumber,
     decide_mark,
@@ -24,7 +25,6 @@ from reliability_app.session.row_reading import HEADINGS, NUMBER_COLUMNS, read_l
 from reliability_app.session.states import FAILED, FOUND_FAILED, RUNNING, is_yes, read_answer, read_state
 
 _RANGE_DASH = re.compile(r"(?<=[0-9]) *(?:[-\u2013\u2014\u2026;]|\.\.+|to|bis) *(?=[0-9])", re.IGNORECASE)
-_UNIT_BEHIND = re.compile(r"(.*[0-9])\s*([A-Za-z]+)\.?(\s*\+?)")
 _SUMMARY_ROWS = frozenset({"total", "sum", "mean", "average", "median", "summe", "mittelwert", "moyenne", "media"})
 
 
@@ -91,20 +91,20 @@ def mark_notes(key: str, before: Sequence[str], after: Sequence[str], mark: Deci
     if doubtful:
         whole, fraction = doubtful.replace(",", ""), doubtful.replace(",", ".")
         return [f"{heading}: {quoted(doubtful)} may mean {whole} or {fraction}; choose how commas are to be read."]
-    if changed and "," in changed[0]:
-        return [f"{heading} has commas between thousands: {quoted(changed[0])} was read as {changed[1]}."]
+    for sign, name in ((",", "commas"), ("'", "apostrophes"), (" ", "spaces")):
+        if changed and sign in changed[0].translate(LOOKALIKES).strip(" <>=+"):
+            return [f"{heading} has {name} between thousands: {quoted(changed[0])} was read as {changed[1]}."]
     return []
 
 
 def without_units(cells: Sequence[str]) -> tuple[list[str], str | None]:
     """Take the unit off lives like "812 h", if all cells that have one name the same; return the cells and the unit."""
-    matches = [_UNIT_BEHIND.fullmatch(cell) if cell[-1:].isalpha() or cell[-1:] in ".+" else None for cell in cells]
-    units = {read_life_unit(match[2]) for match in matches if match}
+    parts = [split_unit(cell) if cell[-1:].isalpha() or cell[-1:] in ".+" else None for cell in cells]
+    units = {part.unit for part in parts if part}
     unit = units.pop() if len(units) == 1 else None
     if unit is None:
         return list(cells), None
-    bare = [match[1] + match[3].strip() if match else cell for cell, match in zip(cells, matches, strict=True)]
-    return bare, unit
+    return [part.number if part else cell for cell, part in zip(cells, parts, strict=True)], unit
 
 
 def read_state_column(cells: Sequence[str], heading: str, yes_means: str | None) -> StateColumn:

@@ -6,6 +6,7 @@ import re
 from dataclasses import dataclass
 from functools import lru_cache
 
+from reliability_app.session.numbers import looks_numeric
 from reliability_app.session.states import FAILED, RUNNING, plain_words, read_state
 
 # Further keys, used only while columns are sorted out: the two ends of an interval in which a unit failed.
@@ -90,6 +91,7 @@ _TO_FAILURE = re.compile(
     r"|bis (?:zum )?(?:ausfall|bruch)|jusqu a (?:la )?(?:defaillance|rupture)"
     r"|hasta (?:el |la )?(?:fallo|falla|rotura)|fino al? (?:guasto|rottura))"
 )
+_NUMBER_WITH_UNIT = re.compile(r"([0-9][0-9.,']*)\s*([A-Za-z]+)\.?(\s*\+?)")
 _QUESTION = re.compile(r"(?:is|has|was|did|did it|had|still)\b|\b(?:y n|yes no|indicator|flag|code|1 0|0 1)$")
 _CODE = re.compile(r"\b([01]|yes|no|y|n|true|false)\s*(?:=|:|means|is)\s*(\w+)", re.IGNORECASE)
 
@@ -132,6 +134,23 @@ def read_life_unit(text: str) -> str | None:
     last = words.split(" ")[-1]
     factor = re.fullmatch(r"(?:[0-9^ ]+|k|thousand|million|x|10\u00b3)*", words[: -len(last)].strip())
     return " ".join(text.split()) if factor and last in _UNIT_OF and words != last else None
+
+
+@dataclass(frozen=True)
+class NumberWithUnit:
+    """A cell like "812 hrs": its number, the unit as written, and the unit meant (None: not one of age)."""
+
+    number: str
+    written: str
+    unit: str | None
+
+
+def split_unit(text: str) -> NumberWithUnit | None:
+    """Return the parts of a number with letters behind it; None for any other text."""
+    match = _NUMBER_WITH_UNIT.fullmatch(text)
+    if match is None or not looks_numeric(match[1]):
+        return None
+    return NumberWithUnit(match[1] + match[3].strip(), match[2], read_life_unit(match[2]))
 
 
 def question(heading: str) -> str | None:

@@ -63,7 +63,7 @@ def _columns_of(source: SourceTable, body: Sequence[Sequence[str]], chosen: Mapp
     if key and len(body) == 1 and not any(source.headings) and _may_stand_in(key, body[0]):
         columns = Columns((key,))
     places = {place: choice for place, choice in chosen.items() if 0 <= place < len(columns.keys)}
-    return renamed(columns, places, source.headings) if places else columns
+    return renamed(columns, places, source.headings, source.existing_extras) if places else columns
 
 
 def _may_stand_in(key: str, cells: Sequence[str]) -> bool:

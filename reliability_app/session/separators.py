@@ -6,11 +6,11 @@ import csv
 import io
 import re
 from collections import Counter
-from collections.abc import Callable, Iterable, Sequence
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from functools import lru_cache
 
-from reliability_app.session.headings import read_heading, read_life_unit
+from reliability_app.session.headings import read_heading, split_unit
 from reliability_app.session.numbers import looks_numeric
 from reliability_app.session.row_reading import read_life_entry
 from reliability_app.session.states import read_state
@@ -20,7 +20,10 @@ _SAMPLE = 60
 _LONGEST_SENSE = 80
 _SPACES = re.compile(r' *(?:"([^"]*)"|([^ ]+)) *')
 # Written as a first line by some spreadsheets to say what separates the cells.
-_DECLARED = re.compile(r'"?sep=(.)"?', re.IGNORECASE)
+_DECLARED = re.compile(r'"?sep=([,;|]?)"?', re.IGNORECASE)
+_WIDE_GAP = re.compile(" {2,}")
+# A number with more groups of digits than this, like "812,900,950,700", is rather a list of lives.
+_MOST_GROUPS = 3
 
 
 @dataclass(frozen=True)
@@ -33,7 +36,7 @@ class SplitText:
 
 
 def split_text(text: str) -> SplitText:
-    """Split text into rows and cells; never raises, and every sign of the text but separators is in some cell.
+    """Split text into rows and cells; never raises, and all text but separators and quotes is in some cell.
 
     Separators tried are tab, semicolon, vertical bar, comma, two spaces or more, and a single space. A tab decides
     alone; among the others the one wins that gives lines of one width whose cells mean most. Text in which none
@@ -45,7 +48,7 @@ def split_text(text: str) -> SplitText:
     declared = _DECLARED.fullmatch(lines[0].strip()) if lines else None
     if declared:
         lines.pop(0)
-    separator = declared[1] if declared else _find_separator(lines)
+    separator = (declared[1] or "\t") if declared else _find_separator(lines)
     if separator in ("  ", " "):
         return SplitText(_split_at_spaces(lines, separator), separator, ())
     rows, notes = _split_at(lines, separator or "\t")
@@ -81,7 +84,7 @@ def _single_column_of_numbers(sample: Sequence[str]) -> str:
         return "\n"
     body = sample if looks_numeric(sample[0]) or not re.search("[,; ]", sample[0].strip()) else []
     numbers = [line.strip() for line in body if looks_numeric(line)]
-    if not numbers or len(numbers) < len(body) - 1:
+    if not numbers or len(numbers) < len(body) - 1 or any(number.count(",") >= _MOST_GROUPS for number in numbers):
         return ""
     for separator in (",", " "):
         pairs = [number.split(separator) for number in numbers]
@@ -95,12 +98,10 @@ def _single_column_of_numbers(sample: Sequence[str]) -> str:
 
 def _are_numbers_with_one_unit(sample: Sequence[str]) -> bool:
     """Return whether lines are single lives with their unit ("812 h"), and not a life and a state ("812 s")."""
-    parts = [line.strip().removesuffix("+").rsplit(" ", 1) for line in sample]
-    units = {part[1].strip() for part in parts if len(part) == 2}
-    if len(units) != 1 or not all(looks_numeric(part[0]) for part in parts):
-        return False
-    unit = units.pop()
-    return read_life_unit(unit) is not None and read_state(unit) is None
+    parts = [split_unit(line.strip()) for line in sample if not looks_numeric(line)]
+    units = {part.unit for part in parts if part}
+    words = {part.written for part in parts if part}
+    return None not in parts and len(units) == 1 and None not in units and not any(map(read_state, words))
 
 
 def _split_sample(sample: Sequence[str], separator: str) -> list[list[str]] | None:
@@ -183,14 +184,14 @@ def _split_line(line: str, separator: str) -> list[str]:
 
 def _split_at_spaces(lines: Sequence[str], separator: str) -> list[list[str]]:
     """Split at runs of spaces; what a line has beyond the usual number of cells belongs to its last cell."""
-    split: Callable[[str], list[str]]
-    if separator == "  ":
-        split = re.compile(" {2,}").split
-    else:
-        split = lambda line: ["".join(found) for found in _SPACES.findall(line)]  # noqa: E731 - two small ways
+    split = _WIDE_GAP.split if separator == "  " else _words
     rows = [_with_states_joined(split(line.strip(" "))) for line in lines]
     usual = _usual_width(rows)
     return [row if len(row) <= usual else [*row[: usual - 1], " ".join(row[usual - 1 :])] for row in rows]
+
+
+def _words(line: str) -> list[str]:
+    return ["".join(found) for found in _SPACES.findall(line)]
 
 
 def _with_states_joined(row: list[str]) -> list[str]:

@@ -36,7 +36,7 @@ class Contents(QSplitter):
         self.survival = SurvivalPage()
         self.tabs = QTabWidget()
         self.tabs.setAccessibleName("Pages")
-        for page, title in ((self.paper, "&Paper"), (self.hazard, "&Hazard"), (self.survival, "&Survival")):
+        for page, title in ((self.paper, "&Paper"), (self.hazard, "Ha&zard"), (self.survival, "Surviva&l")):
             self.tabs.addTab(page, title)
         self.reading = ReadingPanel(push_edit)
         self.right = QSplitter(Qt.Orientation.Vertical)

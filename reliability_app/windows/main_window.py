@@ -2,14 +2,14 @@
 
 from __future__ import annotations
 
+from functools import partial
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from PySide6.QtCore import QEvent, Qt, QUrl, Signal
+from PySide6.QtCore import Qt, QUrl, Signal
 from PySide6.QtGui import QCloseEvent, QDragEnterEvent, QDropEvent, QIcon
 from PySide6.QtWidgets import QLabel, QMainWindow, QWidget
 
-from reliability_app.session.shipped import shipped
 from reliability_app.windows.settings import WindowSettings
 
 if TYPE_CHECKING:  # what costs time to import comes with the contents, after the first paint
@@ -34,7 +34,6 @@ class MainWindow(QMainWindow):
         super().__init__(parent)
         self.settings = settings
         self.setWindowTitle(APPLICATION_TITLE)
-        self.setWindowIcon(QIcon(str(shipped("resources") / "rigpaper.svg")))
         self.setAcceptDrops(True)
         if not self.restoreGeometry(settings.layout("window")):
             self.resize(1240, 780)
@@ -45,6 +44,7 @@ class MainWindow(QMainWindow):
 
     def fill(self, session: Session, messages: Messages, *, recovery: RecoveryCopy | None = None) -> None:
         """Build the contents and wire them; the heavy libraries are imported here."""
+        from reliability_app.session.shipped import shipped
         from reliability_app.windows.background import Analyst
         from reliability_app.windows.contents import Contents
         from reliability_app.windows.file_commands import FileCommands
@@ -52,6 +52,7 @@ class MainWindow(QMainWindow):
         from reliability_app.windows.session_bridge import SessionBridge
         from reliability_app.windows.undo import UndoStack
 
+        self.setWindowIcon(QIcon(str(shipped("resources") / "rigpaper.svg")))
         self.session, self.messages = session, messages
         self.shown_set = 0
         self.analysis: SetAnalysis | None = None
@@ -88,6 +89,7 @@ class MainWindow(QMainWindow):
         for page in contents.pages:
             page.percent_dragged.connect(self._read_while_dragging)
             page.percent_chosen.connect(self._choose_percent)
+            page.age_scale_changed.connect(partial(self.settings.keep_age_scale, page.name))
 
     # What the session says
 
@@ -196,20 +198,15 @@ class MainWindow(QMainWindow):
         self.contents.restoreState(self.settings.layout("spread"))
         self.contents.right.restoreState(self.settings.layout("right"))
 
+        for page in self.contents.pages:
+            kept = self.settings.age_scale(page.name)
+            if kept is not None:
+                page.set_age_scale(kept)
+
     def _keep_layout(self) -> None:
         self.settings.keep_layout("window", self.saveGeometry())
         self.settings.keep_layout("spread", self.contents.saveState())
         self.settings.keep_layout("right", self.contents.right.saveState())
-
-    def changeEvent(self, event: QEvent) -> None:
-        """Recolour the pages when the palette changes."""
-        super().changeEvent(event)
-        # The event also comes from inside __init__, before there is anything to recolour.
-        if event.type() == QEvent.Type.PaletteChange and getattr(self, "_filled", False):
-            from reliability_app.windows.theme import theme_of
-
-            for page in self.contents.pages:
-                page.retheme(theme_of(self.palette()))
 
     def closeEvent(self, event: QCloseEvent) -> None:
         """Close unless the user wants to keep unsaved work open."""

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import json
 from collections.abc import Callable
+from functools import partial
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -72,11 +73,11 @@ class Menus(QObject):
     def _build_view(self, menu: QMenu) -> None:
         tabs = self._window.contents.tabs
         for place in range(tabs.count()):
-            self._add(menu, tabs.tabText(place), f"Ctrl+{place + 1}", lambda place=place: tabs.setCurrentIndex(place))
+            self._add(menu, tabs.tabText(place), f"Ctrl+{place + 1}", partial(tabs.setCurrentIndex, place))
         menu.addSeparator()
         group = QActionGroup(menu)
         for name, title in SCHEMES.items():
-            action = self._add(menu, title, "", lambda name=name: self._choose_scheme(name))
+            action = self._add(menu, title, "", partial(self._choose_scheme, name))
             action.setCheckable(True)
             action.setChecked(self._window.settings.scheme == name)
             group.addAction(action)
@@ -97,13 +98,13 @@ class Menus(QObject):
     def _list_recent(self) -> None:
         self._recent.clear()
         for path in self._window.settings.recent:
-            self._add(self._recent, str(path), "", lambda path=path: self._window.files.open(path))
+            self._add(self._recent, str(path), "", partial(self._window.files.open, path))
         if self._recent.isEmpty():
             self._recent.addAction("None yet").setEnabled(False)
 
     def _list_samples(self) -> None:
         for path in sorted(shipped("sample_sets").glob("*.json")):
-            self._add(self._samples, _title_of(path), "", lambda path=path: self._window.files.open_copy(path))
+            self._add(self._samples, _title_of(path), "", partial(self._window.files.open_copy, path))
 
     def _choose_scheme(self, name: Scheme) -> None:
         self._window.settings.scheme = name

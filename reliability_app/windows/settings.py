@@ -3,10 +3,14 @@
 from __future__ import annotations
 
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QByteArray, QSettings
 
 from reliability_app.windows.theme import Scheme
+
+if TYPE_CHECKING:  # the engine is not to be imported before the first paint
+    from reliability_app.engine.paper import AgeScaleKind
 
 _MOST_RECENT = 10
 
@@ -25,6 +29,15 @@ class WindowSettings:
     def keep_layout(self, name: str, state: QByteArray) -> None:
         """Store a geometry or splitter state."""
         self._store.setValue(f"layout/{name}", state)
+
+    def age_scale(self, page: str) -> AgeScaleKind | None:
+        """Return the age axis last chosen on a page, None where none was."""
+        kind = self._store.value(f"age_scale/{page}", "", type=str)
+        return kind if kind in ("log", "linear") else None
+
+    def keep_age_scale(self, page: str, kind: str) -> None:
+        """Store the age axis chosen on a page."""
+        self._store.setValue(f"age_scale/{page}", kind)
 
     @property
     def scheme(self) -> Scheme:

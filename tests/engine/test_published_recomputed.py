@@ -23,10 +23,7 @@ CASES: dict[tuple[str, str], tuple[Units, str]] = {
     ("ball-bearings-weibull", "weibull"): (examples.ball_bearings(), "weibull"),
     ("ball-bearings-weibull", "lognormal"): (examples.ball_bearings(), "lognormal"),
     ("bearing-cage-weibull-B10-LR", "weibull"): (examples.bearing_cages(), "weibull"),
-    **{
-        ("device-G-competing-modes", mode): (examples.device_g(mode), "weibull")
-        for mode in ("S", "W", "pooled")
-    },
+    **{("device-G-competing-modes", mode): (examples.device_g(mode), "weibull") for mode in ("S", "W", "pooled")},
     **{
         ("device-A-arrhenius-lognormal", degrees): (examples.device_a(degrees), "lognormal")
         for degrees in ("40", "60", "80")

@@ -59,9 +59,7 @@ def test_benard_positions_of_the_nist_handbook() -> None:
     item = published("nist-8.2.2.1-plot-positions")
     columns = item["data"]
     life, running = columns["times"], columns["n"] - len(columns["times"])
-    data = right_censored_units(
-        [*life, 500], [*([1] * len(life)), 0], [*([1] * len(life)), running]
-    ).life_data()
+    data = right_censored_units([*life, 500], [*([1] * len(life)), 0], [*([1] * len(life)), running]).life_data()
     points = plotting_positions(data, method="benard")
     assert list(points.age) == life
     assert points.adjusted_rank == pytest.approx(columns["i"], rel=1e-12)

@@ -45,7 +45,9 @@ class Desk:
         self.qtbot.waitUntil(lambda: not self.window.analyst.is_busy, timeout=ANSWER_WITHIN_MS)
 
     def key(self, key: Qt.Key, modifiers: Qt.KeyboardModifier = Qt.KeyboardModifier.NoModifier) -> None:
-        self.qtbot.keyClick(QApplication.activePopupWidget() or QApplication.focusWidget() or self.window, key, modifiers)
+        self.qtbot.keyClick(
+            QApplication.activePopupWidget() or QApplication.focusWidget() or self.window, key, modifiers
+        )
 
     def type(self, text: str) -> None:
         for character in text:

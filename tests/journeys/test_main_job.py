@@ -1,4 +1,4 @@
-"""The main job through the real window: paste, read B10, drag, change the family, save, come back, add failures, undo."""
+"""The main job through the real window: paste, read B10, drag, change family, save, come back, add failures, undo."""
 
 from __future__ import annotations
 
@@ -8,6 +8,7 @@ import pytest
 from PySide6.QtCore import QPoint, Qt
 from PySide6.QtGui import QGuiApplication
 from PySide6.QtWidgets import QMessageBox
+from pytestqt.qtbot import QtBot
 
 from reliability_app.session.json_file import load
 from tests.journeys.conftest import CONTROL, Desk, Dialogs, new_window
@@ -31,10 +32,10 @@ def office_html(rows: list[tuple[str, str, str]]) -> str:
         for unit, value, state in rows
     )
     head = '<tr><td align="left">Unit</td><td align="left">Life (h)</td><td align="left">State</td></tr>'
-    return f'<html><body><table cellspacing="0" border="0"><colgroup width="85"></colgroup>{head}{cells}</table></body></html>'
+    return f'<html><body><table cellspacing="0" border="0"><colgroup width="85"></colgroup>{head}{cells}</table></html>'
 
 
-def test_from_paste_to_answer_and_back_again(desk: Desk, qtbot, tmp_path: Path) -> None:  # noqa: ANN001, PLR0915
+def test_from_paste_to_answer_and_back_again(desk: Desk, qtbot: QtBot, tmp_path: Path) -> None:
     desk.paste(TABBED)
     assert desk.counts == "10 failed, 10 running, 0 unread"
     assert desk.sentence.startswith("B10 life 158 h. With 95 % confidence at least")
@@ -192,7 +193,7 @@ def test_a_foreign_file_is_refused_and_the_session_stays(desk: Desk, tmp_path: P
     assert "other.json cannot be opened" in desk.message
 
 
-def test_unsaved_work_is_kept_beside_and_comes_back(desk: Desk, qtbot) -> None:  # noqa: ANN001
+def test_unsaved_work_is_kept_beside_and_comes_back(desk: Desk, qtbot: QtBot) -> None:
     from reliability_app.session.recovery import found_copies
 
     desk.paste(TABBED)

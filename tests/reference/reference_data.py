@@ -28,9 +28,7 @@ class Units:
 
     def life_data(self) -> LifeData:
         """The same units as the engine takes them."""
-        return LifeData.from_intervals(
-            self.lower, self.upper, quantity=self.quantity.astype(int), entered=self.entered
-        )
+        return LifeData.from_intervals(self.lower, self.upper, quantity=self.quantity.astype(int), entered=self.entered)
 
 
 @cache
@@ -52,9 +50,7 @@ def units_of(name: str) -> Units:
     """The units of a computed set."""
     columns = reference_set(name)["units"]
     if "life" in columns:
-        return right_censored_units(
-            columns["life"], columns["failed"], columns.get("quantity"), columns.get("entered")
-        )
+        return right_censored_units(columns["life"], columns["failed"], columns.get("quantity"), columns.get("entered"))
     lower = [0.0 if value is None else value for value in columns["lower"]]
     upper = [np.inf if value is None else value for value in columns["upper"]]
     return interval_units(lower, upper, columns.get("quantity"), columns.get("entered"))

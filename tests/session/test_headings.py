@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import pytest
 
-from reliability_app.session.headings import question, read_heading, read_life_unit
+from reliability_app.session.headings import NumberWithUnit, question, read_heading, read_life_unit, split_unit
 
 
 @pytest.mark.parametrize(
@@ -98,3 +98,12 @@ def test_heading_tells_what_a_yes_means(text: str, yes_means: str | None) -> Non
 )
 def test_units_of_age_are_known(text: str, unit: str | None) -> None:
     assert read_life_unit(text) == unit
+
+
+def test_number_with_its_unit_is_split() -> None:
+    assert split_unit("812 hrs") == NumberWithUnit("812", "hrs", "h")
+    assert split_unit("1.5h+") == NumberWithUnit("1.5+", "h", "h")
+    assert split_unit("5 bearings") == NumberWithUnit("5", "bearings", None)
+    assert split_unit("812") is None
+    assert split_unit("abc") is None
+    assert split_unit("left h") is None

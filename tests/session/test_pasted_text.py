@@ -53,6 +53,15 @@ def test_whole_numbers_beside_life_and_state_count_units_only_if_they_look_like_
     assert understand("812\tfailed\t150\n900\trunning\t170").columns == ("life", "state", "Column 3")
 
 
+def test_small_whole_numbers_without_a_heading_are_no_states_unless_they_are_0_and_1() -> None:
+    assert understand("812\t2\n900\t1").columns == ("life", "Column 2")
+    assert understand("812\t1\n900\t0").columns == ("life", "state")
+
+
+def test_foreign_columns_are_not_taken_for_our_own_grid() -> None:
+    assert understand("A\t150\t812\tfailed\nB\t150\t900\trunning").columns == ("unit", "Column 2", "life", "state")
+
+
 def test_cells_copied_from_our_own_grid_keep_their_columns() -> None:
     text = "P-1\t812\t\tfailed\t\t\tseal\tnoisy\nP-2\t200\t400\tfound failed\t2\t\t\t"
     understood = understand(text)
@@ -87,6 +96,7 @@ def test_decimal_mark_is_decided_from_the_whole_column(lives: list[str], stored:
 def test_reading_of_commas_is_said() -> None:
     assert "Life is written with decimal commas: '53,2' was read as 53.2." in understand("53,2\n61,8\n70").notes
     assert "Life has commas between thousands: '1,234' was read as 1234." in understand('Life\n"1,234"\n812.5').notes
+    assert "Life has spaces between thousands: '5 812' was read as 5812." in understand("5 812\n7 900\n950").notes
 
 
 def test_column_in_doubt_follows_the_other_columns_of_its_table() -> None:
@@ -176,7 +186,7 @@ def test_table_without_states_is_read_as_failed_and_says_so() -> None:
 
 
 def test_textbook_list_with_plus_signs_is_understood() -> None:
-    for text in ("812\n900\n1500+", "812 900 1000 1100 1500+", "812\t" * 999 + "1500+"):
+    for text in ("812\n900\n1500+", "812, 900, 950, 700, 1500+", "812 900 1000 1100 1500+", "812\t" * 999 + "1500+"):
         understood = understand(text)
         assert understood.rows[-1] == {"life": "1500", "state": "running"}
         assert understood.rows[0] == {"life": "812", "state": "failed"}
@@ -262,6 +272,9 @@ def test_meaning_of_columns_can_be_changed_and_changes_add_up() -> None:
     settled = reread(changed, mark=DecimalMark.POINT)
     assert column(settled, "life") == ["1234", "2345"]
     assert column(settled, "Column 2") == ["812", "900"]
+    existing = UnitTable.from_rows([], ["PUMP"])
+    headed = understand("Pump\tLife\tState\nA\t812\tF", existing=existing)
+    assert reread(reread(headed, columns={0: "unit"}), columns={0: None}).columns[0] == "PUMP"
     assert reread(settled, columns={0: None}).columns == ("Column 1", "Column 2", "state", "life")
 
 

@@ -53,7 +53,9 @@ def test_a_reliability_shows_what_is_missing_to_one(share: float, text: str) -> 
     assert share_text(share) == text
 
 
-@pytest.mark.parametrize(("value", "text"), [(10.0, "10"), (0.1, "0.1"), (99.9, "99.9"), (15000.0, f"15{THOUSANDS}000")])
+@pytest.mark.parametrize(
+    ("value", "text"), [(10.0, "10"), (0.1, "0.1"), (99.9, "99.9"), (15000.0, f"15{THOUSANDS}000")]
+)
 def test_what_the_user_gave_keeps_its_digits(value: float, text: str) -> None:
     assert as_given(value) == text
 

@@ -32,7 +32,7 @@ class BasisPanel(QGroupBox):
         layout = QFormLayout(self)
         layout.setFieldGrowthPolicy(QFormLayout.FieldGrowthPolicy.AllNonFixedFieldsGrow)
         for label, field in (
-            ("&Family", self.family),
+            ("Fa&mily", self.family),
             ("&Bound", self.bound),
             ("&Confidence", self.confidence),
             ("Si&de", self.side),
