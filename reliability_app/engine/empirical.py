@@ -54,7 +54,8 @@ class PlottingPositions:
     fraction : ndarray
         Failure probability at which the point is drawn.
     adjusted_rank : ndarray
-        Johnson's adjusted rank of the last failure at that point.
+        Johnson's adjusted rank of the last failure at that point; NaN where units entered late, for which ranks are
+        not defined.
     """
 
     age: Array
@@ -125,6 +126,9 @@ def plotting_positions(data: LifeData, *, method: str = "kaplan_meier_midpoint")
     steps = kaplan_meier(data)
     before = np.concatenate([[1.0], steps.survival[:-1]])
     # The product over the units of one age telescopes, so that their number does not matter.
+    if data.entered.any():
+        unknown = np.full_like(steps.age, np.nan)
+        return PlottingPositions(steps.age, 1.0 - 0.5 * (before + steps.survival), unknown)
     remaining = _total_from(data.lower, data.quantity, steps.age)
     kept = np.cumprod((remaining - steps.failures + 1.0) / (remaining + 1.0)).astype(np.float64)
     rank = (data.unit_count + 1) * (1.0 - kept)
@@ -138,6 +142,8 @@ def adjusted_ranks(data: LifeData) -> tuple[Array, Array]:
     running units of the same age and units of a quantity one after the other (Johnson 1964, from memory).
     """
     failed = data.is_failed
+    if data.entered.any():
+        raise BoundUnavailable("Ranks are not defined where units came under observation late: use the mid-points.")
     if data.failed_count > _MOST_RANKED:
         raise BoundUnavailable(
             f"Ranks are given unit by unit, for {_MOST_RANKED} failures at the most: use the Kaplan-Meier mid-points."

@@ -45,7 +45,9 @@ _TEXTS = {
         "look earlier, or record ages at failure."
     ),
     Outcome.NOT_CONVERGED: (
-        "The fit did not converge, so no number is given: check the lives for typing errors, or try another family."
+        "The fit did not converge, so no number is given. The units may not determine a location and a spread together "
+        "(early failures found late, or units watched only late in life), or a life may be mistyped: check the table, "
+        "or try another family."
     ),
 }
 

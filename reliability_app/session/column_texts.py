@@ -10,7 +10,6 @@ from dataclasses import dataclass
 from reliability_app.session.column_guess import is_missing
 from reliability_app.session.headings import question, split_unit
 from reliability_app.session.numbers import (
-    LOOKALIKES,
     DecimalMark,
     UnreadableNumber,
     decide_mark,
@@ -25,6 +24,11 @@ from reliability_app.session.row_reading import HEADINGS, NUMBER_COLUMNS, read_l
 from reliability_app.session.states import FAILED, FOUND_FAILED, RUNNING, is_yes, read_answer, read_state
 
 _RANGE_DASH = re.compile(r"(?<=[0-9]) *(?:[-\u2013\u2014\u2026;]|\.\.+|to|bis) *(?=[0-9])", re.IGNORECASE)
+_IN_DOUBT = re.compile(r"[1-9][0-9]{0,2},[0-9]{3}").fullmatch
+_ANY_MARK = re.compile("[,.]")
+_THOUSANDS_COMMA = re.compile("[0-9],[0-9]{3}")
+_THOUSANDS_SPACE = re.compile("[0-9][ \u00a0\u202f\u2009\u2007][0-9]{3}")
+_THOUSANDS_APOSTROPHE = re.compile("[0-9]['\u2019][0-9]{3}")
 _SUMMARY_ROWS = frozenset({"total", "sum", "mean", "average", "median", "summe", "mittelwert", "moyenne", "media"})
 
 
@@ -82,18 +86,21 @@ def _plain_cell(cell: str, mark: DecimalMark) -> str:
 def mark_notes(key: str, before: Sequence[str], after: Sequence[str], mark: DecimalMark) -> list[str]:
     """Say how the numbers of a column were read where that is not plain to see."""
     heading = HEADINGS.get(key, key)
-    if before == after and mark is not DecimalMark.AMBIGUOUS:
-        return []
-    changed = next(((old, new) for old, new in zip(before, after, strict=True) if old != new), None)
-    if mark is DecimalMark.COMMA and changed:
-        return [f"{heading} is written with decimal commas: {quoted(changed[0])} was read as {changed[1]}."]
-    doubtful = next((cell for cell in after if re.fullmatch(r"[1-9]\d{0,2},\d{3}", cell)), None)
-    if doubtful:
+    if mark is DecimalMark.AMBIGUOUS and (doubtful := next(filter(_IN_DOUBT, after), None)):
         whole, fraction = doubtful.replace(",", ""), doubtful.replace(",", ".")
         return [f"{heading}: {quoted(doubtful)} may mean {whole} or {fraction}; choose how commas are to be read."]
-    for sign, name in ((",", "commas"), ("'", "apostrophes"), (" ", "spaces")):
-        if changed and sign in changed[0].translate(LOOKALIKES).strip(" <>=+"):
-            return [f"{heading} has {name} between thousands: {quoted(changed[0])} was read as {changed[1]}."]
+    if before == after:
+        return []
+    ways = [(_THOUSANDS_COMMA, "has commas between thousands")]
+    if mark is DecimalMark.COMMA:
+        ways = [(_ANY_MARK, "is written with decimal commas")]
+    elif mark is DecimalMark.AMBIGUOUS:
+        ways = [(_ANY_MARK, "holds decimal commas and decimal points")]
+    ways += [(_THOUSANDS_SPACE, "has spaces between thousands"), (_THOUSANDS_APOSTROPHE, "has apostrophes in numbers")]
+    for sign, says in ways:
+        for old, new in zip(before, after, strict=True):
+            if old != new and sign.search(old):
+                return [f"{heading} {says}: {quoted(old)} was read as {new}."]
     return []
 
 
@@ -133,7 +140,7 @@ def read_state_column(cells: Sequence[str], heading: str, yes_means: str | None)
     given = [word for word in counted if word]
     if yes and "" in counted and given and all(map(is_yes, given)):
         words[""] = FAILED if yes == RUNNING else RUNNING
-        notes.append(f"Rows without a mark under {quoted(heading)} were read as {words['']}.")
+        notes.append(f"Rows without a mark in the state column were read as {words['']}.")
     unknown = [word for word in given if word not in words]
     if unknown:
         notes.append(_unknown_states(unknown))
@@ -165,17 +172,18 @@ def read_intervals(texts: dict[str, list[str]]) -> None:
     Equal ends: failed at that age. No upper end, or an infinite one: running. No lower end: found failed at the first
     look. This is the form in which interval data are commonly published.
     """
-    texts["state"] = states = [""] * len(texts["life"])
-    for row, (lower, upper) in enumerate(zip(texts["life"], texts["until"], strict=True)):
+    lowers, uppers = texts["life"], texts["until"]
+    texts["life"], texts["until"] = lives, ends = list(lowers), list(uppers)
+    texts["state"] = states = [""] * len(lowers)
+    for row, (lower, upper) in enumerate(zip(lowers, uppers, strict=True)):
         endless = is_missing(upper) or upper.casefold().lstrip("+") in ("inf", "infinity", "\u221e")
         if lower and endless and looks_numeric(lower):
-            texts["until"][row], states[row] = "", RUNNING
+            ends[row], states[row] = "", RUNNING
         elif looks_numeric(upper) and (is_missing(lower) or looks_numeric(lower)):
             if lower and not is_missing(lower) and _equal(lower, upper):
-                texts["until"][row], states[row] = "", FAILED
+                ends[row], states[row] = "", FAILED
             else:
-                texts["life"][row] = "0" if is_missing(lower) else lower
-                states[row] = FOUND_FAILED
+                lives[row], states[row] = "0" if is_missing(lower) else lower, FOUND_FAILED
 
 
 def _equal(lower: str, upper: str) -> bool:

@@ -25,7 +25,7 @@ _PLAIN = re.compile(r"-?(?:0|[1-9][0-9]*)(?:\.[0-9]+)?(?:[eE][+-]?[0-9]+)?")
 is_plain = _PLAIN.fullmatch
 _is_plain_or_empty = re.compile(f"(?:{_PLAIN.pattern})?").fullmatch
 
-LOOKALIKES = str.maketrans(
+_LOOKALIKES = str.maketrans(
     {
         "\u2212": "-",  # minus sign
         "\u2013": "-",  # en dash
@@ -117,7 +117,7 @@ def decide_mark(cells: Sequence[str]) -> DecimalMark:
 def _marked_lines(cells: Iterable[str]) -> str:
     """Return the cells with a comma or point in them, one a line, with look-alike signs replaced."""
     marked = (cell.replace("\n", "\0") for cell in cells if "," in cell or "." in cell)
-    return "\n".join(marked).translate(LOOKALIKES)
+    return "\n".join(marked).translate(_LOOKALIKES)
 
 
 def plain_number(text: str, mark: DecimalMark | None = None) -> str:
@@ -153,7 +153,7 @@ def looks_numeric(text: str) -> bool:
     """Return whether `text` is a number, be it plain, with a decimal comma, or in doubt like "1,234"."""
     if is_plain(text):
         return True
-    clean = text.strip().translate(LOOKALIKES)
+    clean = text.strip().translate(_LOOKALIKES)
     matches = (pattern.fullmatch(clean) for pattern in _NUMBER.values())
     return any(match and (match["whole"] or match["fraction"]) for match in matches)
 
@@ -166,7 +166,7 @@ def quoted(text: str, most: int = 40) -> str:
 
 def _unravel(text: str, mark: DecimalMark | None) -> str:
     """Take separators and look-alike signs out of a number that is not written plainly."""
-    clean = text.strip().translate(LOOKALIKES).strip()
+    clean = text.strip().translate(_LOOKALIKES).strip()
     match = _NUMBER[_mark_of(clean, mark, typed=text)].fullmatch(clean)
     if match is None or not (match["whole"] or match["fraction"]):
         raise UnreadableNumber(_why_not(text, clean, mark))

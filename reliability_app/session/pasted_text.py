@@ -49,7 +49,7 @@ def understand(
     rows, notes = _rows_of(text, html)
     rows = [row for row in rows if any(map(str.strip, row))]
     if is_list_of_lives(rows):
-        rows, notes = [[cell] for row in rows for cell in row if cell], (*notes, LIST_OF_LIVES)
+        rows, notes = [[cell] for row in rows for cell in row if cell.strip()], (*notes, LIST_OF_LIVES)
     if max(map(len, rows), default=0) > MOST_COLUMNS:
         rows, notes = narrowed(rows), (*notes, TOO_WIDE)
     columns = tuple([cell.strip() for cell in column] for column in zip_longest(*rows, fillvalue=""))
@@ -99,7 +99,7 @@ def plain_block(text: str, html: str | None = None, *, columns: Sequence[str] = 
     rows, _ = _rows_of(text, html)
     if not rows:
         return None
-    if len(text.strip("\r\n").splitlines()) == 1 and "\t" not in text:
+    if len(rows) == 1 and len(rows[0]) > 1 and "\t" not in text:
         rows = [[text.strip()]]
     if len(rows) > 1 and _heading_row([row for row in rows if any(map(str.strip, row))]) is not None:
         return None

@@ -71,7 +71,7 @@ class Understanding:
     headings : tuple of str
         Per column of the source its heading, "" without one.
     mark : DecimalMark
-        The decimal mark of the lives; AMBIGUOUS if it should be asked for.
+        The decimal mark of the lives; AMBIGUOUS if each number had to speak for itself.
     source, choices
         What `pasted_text.reread` works from.
     """
@@ -112,7 +112,8 @@ def describe(count: int, columns: Columns, headings: Sequence[str], states: str 
     extras = [key for key in where if key not in _ORDER]
     if extras:
         parts.append(_kept_columns(extras))
-    return f"{count} {'row' if count == 1 else 'rows'}; {', '.join(parts)}."
+    rows = "1 row" if count == 1 else f"{count:,} rows".replace(",", " ")
+    return f"{rows}; {', '.join(parts)}."
 
 
 def _place(key: str, place: int, headings: Sequence[str]) -> str:

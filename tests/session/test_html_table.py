@@ -37,6 +37,7 @@ def test_other_spelling_of_values_and_decimal_commas_are_read_too() -> None:
 
 
 def test_bare_block_has_full_precision_too() -> None:
+    assert plain_block("812.3", '<table><tr><td sdval="812.34567">812.3</td></tr></table>') == [["812.34567"]]
     assert plain_block("53,2\tF\n1.401,40\tS", XNUM, columns=["life", "state"]) == [["53.21987", "F"], ["1401.4", "S"]]
 
 

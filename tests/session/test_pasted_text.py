@@ -96,6 +96,10 @@ def test_decimal_mark_is_decided_from_the_whole_column(lives: list[str], stored:
 def test_reading_of_commas_is_said() -> None:
     assert "Life is written with decimal commas: '53,2' was read as 53.2." in understand("53,2\n61,8\n70").notes
     assert "Life has commas between thousands: '1,234' was read as 1234." in understand('Life\n"1,234"\n812.5').notes
+    mixed = understand("Life\n53,2\n53.2")
+    assert "Life holds decimal commas and decimal points: '53,2' was read as 53.2." in mixed.notes
+    spread = understand("Life\n200 - 400\n1500 +\n1'234")
+    assert "Life has apostrophes in numbers: '1'234' was read as 1234." in spread.notes
     assert "Life has spaces between thousands: '5 812' was read as 5812." in understand("5 812\n7 900\n950").notes
 
 
@@ -159,7 +163,7 @@ def test_convention_that_nothing_in_the_table_proves_is_said_and_can_be_turned()
     understood = understand("time,status\n306,2\n1010,1")
     assert any("2 was read as failed and 1 as running" in note for note in understood.notes)
     marked = understand("Stunden\tdefekt\n100\tx\n200\t")
-    assert "Rows without a mark under 'defekt' were read as running." in marked.notes
+    assert "Rows without a mark in the state column were read as running." in marked.notes
 
 
 def test_yes_without_a_question_stays_as_typed_until_it_is_answered() -> None:

@@ -113,5 +113,9 @@ def _signed_root(estimate: Estimate, line: Points, value: float) -> float:
         values = np.where(np.isfinite(values), values, -np.inf)
         at = int(np.argmax(values))
         best = max(best, float(values[at]))
-        low, high = grid[max(at - 1, 0)], grid[min(at + 1, _GRID - 1)]
+        step = grid[1] - grid[0]
+        # At an end of the first grid the next one looks beyond it.
+        low, high = grid[at] - step, grid[at] + step
+        if at in (0, _GRID - 1):
+            low, high = grid[at] - _GRID * step, grid[at] + _GRID * step
     return float(np.sqrt(2.0 * max(float(estimate.terms.value[0]) - best, 0.0)))
