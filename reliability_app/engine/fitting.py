@@ -82,17 +82,22 @@ def _climb(sample: Sample, chosen: Family, a: Array, b: Array) -> Maximum:
         part = sample if rows.size == batch else sample.rows(rows)
         return log_likelihood(part, chosen.standard, at_a, at_b)
 
-    return maximise(evaluate, a, b, b_is_fixed=chosen.fixed_sigma is not None)
+    fixed = chosen.fixed_sigma is not None
+    return maximise(evaluate, a, b, failures=_failures(sample) + np.zeros(batch), b_is_fixed=fixed)
 
 
 def _starts(sample: Sample, chosen: Family) -> tuple[Array, Array]:
     """Start where half of the share failed lies at the mean of the failures, with their own spread."""
-    failures = sample.failed.total + sample.left.total + sample.between.weight.sum(axis=1)
+    failures = _failures(sample)
     share = failures / (failures + sample.running.total)
     a = chosen.standard.quantile(np.clip(0.5 * share, 1e-12, 0.5))
     sigma = chosen.fixed_sigma
     b = np.full_like(a, 1.0 if sigma is None else sample.spread / sigma)
     return a, b
+
+
+def _failures(sample: Sample) -> Array:
+    return np.asarray(sample.failed.total + sample.left.total + sample.between.weight.sum(axis=1))
 
 
 def _with_fixed_sigma(top: Maximum) -> Maximum:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -15,7 +15,8 @@ Mask = NDArray[np.bool_]
 Evaluate = Callable[[NDArray[np.intp], Array, Array], Terms]
 
 MOST_STEPS = 100
-# Half the Newton decrement is the log-likelihood still to be gained; the last step squares it once more.
+# Half the Newton decrement is the log-likelihood still to be gained. Per failure, because the curvature found at this
+# distance from the maximum is off by some square root of it.
 DECREMENT_REACHED = 1e-14
 _MOST_HALVINGS = 60
 _NEVER_NEARER_TO_ZERO = 0.1
@@ -48,7 +49,7 @@ class Maximum:
     steps: NDArray[np.intp]
 
 
-def maximise(evaluate: Evaluate, a: Array, b: Array, *, b_is_fixed: bool = False) -> Maximum:
+def maximise(evaluate: Evaluate, a: Array, b: Array, *, failures: Array, b_is_fixed: bool = False) -> Maximum:
     """Climb from the starts (a, b) to the maxima of a batch of log-likelihoods.
 
     Parameters
@@ -57,6 +58,8 @@ def maximise(evaluate: Evaluate, a: Array, b: Array, *, b_is_fixed: bool = False
         evaluate(rows, a, b) returns the terms of the samples `rows` at the points (a, b).
     a, b : ndarray, shape (batch,)
         Starts with a finite log-likelihood; b > 0.
+    failures : ndarray, shape (batch,)
+        Failed units of each sample.
     b_is_fixed : bool
         Keep b as it is (a family with a fixed sigma).
     """
@@ -65,12 +68,13 @@ def maximise(evaluate: Evaluate, a: Array, b: Array, *, b_is_fixed: bool = False
     columns = [column.copy() for column in evaluate(every, a, b).columns()]
     steps = np.zeros(a.size, dtype=np.intp)
     decrement = np.full(a.size, np.inf)
+    enough = DECREMENT_REACHED * np.maximum(1.0, failures)
     active = every
     for _ in range(MOST_STEPS):
         terms = Terms(*(column[active] for column in columns))
         step_a, step_b = newton_step(terms, b_is_fixed=b_is_fixed)
         decrement[active] = step_a * terms.d_a + step_b * terms.d_b
-        moving = decrement[active] > DECREMENT_REACHED
+        moving = decrement[active] > enough[active]
         active, step_a, step_b = active[moving], step_a[moving], step_b[moving]
         if not active.size:
             break
@@ -79,11 +83,12 @@ def maximise(evaluate: Evaluate, a: Array, b: Array, *, b_is_fixed: bool = False
         active = active[moved]
     final = Terms(*columns)
     last_a, last_b = newton_step(final, b_is_fixed=b_is_fixed)
-    near = decrement <= DECREMENT_REACHED
-    # The last step is too short to change the terms by more than rounding, but costs nothing.
+    near = decrement <= enough
+    # The last step costs no evaluation: what it gains is half the decrement, to some 1e-15 of itself.
     a, b = np.where(near, a + last_a, a), np.where(near, b + last_b, b)
+    final = replace(final, value=final.value + np.where(near, 0.5 * decrement, 0.0))
     norm = np.hypot(final.d_a, 0.0 if b_is_fixed else final.d_b)
-    reached = np.isfinite(final.value) & (decrement <= DECREMENT_REACHED * np.maximum(1.0, np.abs(final.value)))
+    reached = np.isfinite(final.value) & (decrement <= np.maximum(enough, DECREMENT_REACHED * np.abs(final.value)))
     return Maximum(a, b, final, reached & _is_peak(final, b_is_fixed=b_is_fixed), decrement, norm, steps)
 
 
