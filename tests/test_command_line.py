@@ -55,9 +55,7 @@ def test_sentences_for_people(capsys: pytest.CaptureFixture[str]) -> None:
     ("words", "said"),
     [
         (["--family", "nonesuch"], "lognormal, weibull, exponential"),
-        (["--bound", "calibrated"], "calibrated"),
-        (["--bound", "automatic"], "automatic"),
-        (["--bound", "nonesuch"], "likelihood, wald, exact"),
+        (["--bound", "nonesuch"], "automatic, calibrated, likelihood, wald, exact"),
         (["--side", "left"], "lower, upper, two"),
         (["--confidence", "95"], "0.95"),
         (["--percent", "0"], "between 0 and 100"),

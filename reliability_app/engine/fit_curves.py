@@ -6,11 +6,11 @@ import numpy as np
 from numpy.typing import NDArray
 
 from reliability_app.engine.bounds import check_bound
-from reliability_app.engine.bounds.kinds import OPPOSITE_SIDE, Interval, tail_of
+from reliability_app.engine.bounds.kinds import OPPOSITE_SIDE, tail_of
 from reliability_app.engine.curves import Curve
 from reliability_app.engine.empirical import SurvivalSteps
 from reliability_app.engine.errors import BoundUnavailable
-from reliability_app.engine.fit_result import Fit
+from reliability_app.engine.fit_result import Fit, reading_ends
 from reliability_app.engine.life_measures import Measure
 
 Array = NDArray[np.float64]
@@ -19,25 +19,27 @@ Array = NDArray[np.float64]
 def probability_curves(fit: Fit, ages: Array, *, confidence: float, side: str, kind: str) -> tuple[Curve, Curve]:
     """Return the failure probability and the reliability over age; `side` is that of the failure probability."""
     standard, z = fit.family.standard, fit.score(ages)
-    interval = _interval(fit, fit.score_measure(ages), kind=kind, side=side, confidence=confidence)
-    if interval is None:
-        return Curve(ages, standard.cdf(z)), Curve(ages, standard.survival(z))
-    lower, upper = fit.reading_ends(interval, standard.cdf, ages, side, falling=False)
-    mirrored = fit.reading_ends(interval, standard.survival, ages, OPPOSITE_SIDE[side], falling=True)
+    band = _band_of(fit, fit.score_measure(ages), kind=kind, side=side, confidence=confidence)
+    failure = reading_ends(lambda sign: standard.cdf(band[sign]), ages, side, lowest=-1.0) if band else (None, None)
+    survival = (
+        reading_ends(lambda sign: standard.survival(band[sign]), ages, OPPOSITE_SIDE[side], lowest=1.0)
+        if band
+        else (None, None)
+    )
     return (
-        Curve(ages, standard.cdf(z), _band(lower), _band(upper)),
-        Curve(ages, standard.survival(z), _band(mirrored[0]), _band(mirrored[1])),
+        Curve(ages, standard.cdf(z), *(_finite(values) for values in failure)),
+        Curve(ages, standard.survival(z), *(_finite(values) for values in survival)),
     )
 
 
 def hazard_curve(fit: Fit, ages: Array, *, confidence: float, side: str, kind: str) -> Curve:
     """Return the hazard rate over age; `side` is that of the hazard."""
-    values = np.asarray(fit.hazard(ages))
-    interval = _interval(fit, fit.hazard_measure(ages), kind=kind, side=side, confidence=confidence)
-    if interval is None:
+    values, to_hazard = np.asarray(fit.hazard(ages)), fit.hazard_of(ages)
+    band = _band_of(fit, fit.hazard_measure(ages), kind=kind, side=side, confidence=confidence)
+    if not band:
         return Curve(ages, values)
-    lower, upper = fit.reading_ends(interval, fit.hazard_of(ages), ages, side, falling=False)
-    return Curve(ages, values, _band(lower), _band(upper))
+    ends = reading_ends(lambda sign: to_hazard(band[sign]), ages, side, lowest=-1.0)
+    return Curve(ages, values, *(_finite(end) for end in ends))
 
 
 def step_curve(steps: SurvivalSteps, end: float) -> Curve:
@@ -50,14 +52,16 @@ def _corners(values: Array, start: float) -> Array:
     return np.repeat(np.concatenate([[start], values]), 2)
 
 
-def _interval(fit: Fit, measure: Measure, *, kind: str, side: str, confidence: float) -> Interval | None:
-    """Return the band of a measure, or None where this kind of bound does not exist for it."""
+def _band_of(fit: Fit, measure: Measure, *, kind: str, side: str, confidence: float) -> dict[float, Array]:
+    """Return the ends of a band that the side calls for by their sign; none where this kind does not exist for it."""
     check_bound(kind, side, confidence)
+    signs = {"lower": (-1.0,), "upper": (1.0,), "two": (-1.0, 1.0)}[side]
+    tail = tail_of(side, confidence)
     try:
-        return fit.bounder.band(measure, kind, tail_of(side, confidence))
+        return {sign: fit.bounder.band_end(measure, kind, tail, sign) for sign in signs}
     except BoundUnavailable:
-        return None
+        return {}
 
 
-def _band(values: float | Array | None) -> Array | None:
+def _finite(values: float | Array | None) -> Array | None:
     return None if values is None else np.where(np.isfinite(values), values, np.nan)

@@ -9,8 +9,8 @@ from functools import cached_property
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from reliability_app.engine.bounds import Bounder, check_bound
-from reliability_app.engine.bounds.kinds import Interval, tail_of
+from reliability_app.engine.bounds import Bounder, Proceed, check_bound
+from reliability_app.engine.bounds.kinds import tail_of
 from reliability_app.engine.cautions import Caution
 from reliability_app.engine.errors import DataError, NoEstimate, UnknownName
 from reliability_app.engine.estimate import Estimate
@@ -37,7 +37,8 @@ class Fit:
 
     Ages are in the unit of the data. A question takes a number or an array and answers in kind. Bounds come as
     (lower, upper) with None on an open side; `confidence` is that of the statement made: 0.95 with side="lower" is a
-    one-sided 95 % bound, with side="two" each tail holds 2.5 %. Kinds: "likelihood", "wald", "exact".
+    one-sided 95 % bound, with side="two" each tail holds 2.5 %. Kinds: "automatic",
+    "calibrated", "likelihood", "wald", "exact".
 
     Every question raises NoEstimate where `outcome` is not ESTIMATED; the properties are None there.
 
@@ -47,12 +48,15 @@ class Fit:
     family : Family
     outcome : Outcome
     estimate : Estimate or None
+    proceed : callable or None
+        Called between pieces of slow work (a calibration); what it raises ends the work.
     """
 
     data: LifeData
     family: Family
     outcome: Outcome
     estimate: Estimate | None
+    proceed: Proceed | None = None
 
     @property
     def converged(self) -> bool:
@@ -172,6 +176,10 @@ class Fit:
         start = standard.log_survival(self.score(given)).value
         return _like(age, np.exp(standard.log_survival(self.score(ages)).value - start))
 
+    def bound_used(self, kind: str, *, of_hazard: bool = False) -> str:
+        """Return the kind of bound that `kind` stands for here: "automatic" chooses by the data."""
+        return self.bounder.resolved(kind, of_hazard=of_hazard)
+
     def parameter_bounds(
         self, name: str, *, confidence: float = 0.95, side: str = "lower", kind: str = "likelihood"
     ) -> Ends:
@@ -192,7 +200,7 @@ class Fit:
     @cached_property
     def bounder(self) -> Bounder:
         """The bounds of this fit's estimate, which keep what they have once computed."""
-        return Bounder(self._found(), self.data)
+        return Bounder(self._found(), self.data, self.proceed)
 
     def _ends(
         self,
@@ -205,24 +213,10 @@ class Fit:
     ) -> Ends:
         kind, side, confidence = bound
         check_bound(kind, side, confidence)
-        low, high = self.bounder.interval(measure, kind, tail_of(side, confidence))
-        return self.reading_ends((low, high), to_reading, asked, side, falling=falling)
-
-    @staticmethod
-    def reading_ends(
-        interval: Interval,
-        to_reading: Callable[[Array], Array],
-        asked: ArrayLike,
-        side: str,
-        *,
-        falling: bool,
-    ) -> Ends:
-        """Turn the interval of a measure into (lower, upper) of the reading that rises or falls with it."""
-        low, high = interval[::-1] if falling else interval
-        with np.errstate(over="ignore", under="ignore"):
-            lower = None if side == "upper" else _like(asked, to_reading(low))
-            upper = None if side == "lower" else _like(asked, to_reading(high))
-        return lower, upper
+        tail, lowest = tail_of(side, confidence), 1.0 if falling else -1.0
+        return reading_ends(
+            lambda sign: to_reading(self.bounder.end(measure, kind, tail, sign)), asked, side, lowest=lowest
+        )
 
     def _found(self) -> Estimate:
         if self.estimate is None:
@@ -263,6 +257,14 @@ class Fit:
         ages = np.atleast_1d(np.asarray(age, dtype=np.float64))
         spread = self._found().sample.spread
         return lambda log_hazard: np.exp(log_hazard) / (spread * ages)
+
+
+def reading_ends(end: Callable[[float], Array], asked: ArrayLike, side: str, *, lowest: float) -> Ends:
+    """Return (lower, upper) of a reading from the ends that are needed; `lowest` is the sign of its lower end."""
+    with np.errstate(over="ignore", under="ignore"):
+        lower = None if side == "upper" else _like(asked, end(lowest))
+        upper = None if side == "lower" else _like(asked, end(-lowest))
+    return lower, upper
 
 
 def _point(found: Estimate) -> tuple[Array, Array]:

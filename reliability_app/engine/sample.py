@@ -83,8 +83,8 @@ class IntervalPart:
 
 
 _NOTHING = np.empty((1, 0))
-_NO_PART = Part(_NOTHING, _NOTHING)
-_NO_INTERVALS = IntervalPart(_NOTHING, _NOTHING, _NOTHING)
+NO_PART = Part(_NOTHING, _NOTHING)
+NO_INTERVALS = IntervalPart(_NOTHING, _NOTHING, _NOTHING)
 
 
 @dataclass(frozen=True, eq=False)
@@ -142,13 +142,13 @@ def sample_of(data: LifeData) -> Sample:
     shift, spread = _centre(log_failed, data)
 
     def part(age: Array, chosen: Mask) -> Part:
-        return _summed((np.log(age[chosen]) - shift) / spread, weight[chosen]) if chosen.any() else _NO_PART
+        return _summed((np.log(age[chosen]) - shift) / spread, weight[chosen]) if chosen.any() else NO_PART
 
     return Sample(
         failed=_summed((log_failed - shift) / spread, weight[failed]),
         running=part(data.lower, running),
-        between=_between(data, found & (data.lower > 0), shift, spread) if found.any() else _NO_INTERVALS,
-        left=part(data.upper, found & (data.lower == 0)) if found.any() else _NO_PART,
+        between=_between(data, found & (data.lower > 0), shift, spread) if found.any() else NO_INTERVALS,
+        left=part(data.upper, found & (data.lower == 0)) if found.any() else NO_PART,
         entered=part(data.entered, data.entered > 0),
         shift=shift,
         spread=spread,

@@ -5,12 +5,13 @@ from __future__ import annotations
 from dataclasses import dataclass, replace
 
 from reliability_app.engine import Curve, Fit, LifeData, fit
-from reliability_app.engine.bounds import check_bound
+from reliability_app.engine.bounds import Proceed, check_bound
 from reliability_app.engine.cautions import Caution, Severity, worst_first
 from reliability_app.engine.errors import BoundUnavailable, RigpaperError
-from reliability_app.session.document import Ask, Basis, Session
+from reliability_app.session.document import Ask, Basis, LifeAsk, Session
 from reliability_app.session.drawing_up import NO_POINTS, Curves, Points, draw_curves, draw_points, draw_steps
 from reliability_app.session.picture import Reading, SetPicture
+from reliability_app.session.quick_reading import STAND_IN, is_slow, read_off_band
 from reliability_app.session.taking_readings import take_reading
 from reliability_app.session.unit_table import Counts, ReadUnits
 from reliability_app.session.wording import STANDING_CAUTION, unread_caution
@@ -49,7 +50,7 @@ class Question:
 
 @dataclass(frozen=True, eq=False)
 class SetAnalysis:
-    """The finished analysis of one set.
+    """The analysis of one set.
 
     Attributes
     ----------
@@ -62,6 +63,8 @@ class SetAnalysis:
     cautions : tuple of Caution
         Those of the set as a whole, worst first, the standing one last.
     picture : SetPicture
+    is_provisional : bool
+        True where quick bounds stand in for slow ones that are still to come.
     """
 
     question: Question
@@ -69,41 +72,65 @@ class SetAnalysis:
     readings: tuple[Reading, ...]
     cautions: tuple[Caution, ...]
     picture: SetPicture
+    is_provisional: bool = False
 
     @property
     def main(self) -> Reading | None:
         """The main reading, or None where there is none."""
         return self.readings[0] if self.readings and self.readings[0].estimate is not None else None
 
-    def with_main_ask(self, ask: Ask) -> SetAnalysis:
-        """Return the analysis with another main reading and nothing else computed anew."""
-        if self.fit is None:
+    def with_main_ask(self, ask: LifeAsk) -> SetAnalysis:
+        """Return the analysis with another main reading and nothing else computed anew; quick enough for a drag.
+
+        Where the bound of the basis is slow it is read off the band already drawn, and marked provisional.
+        """
+        if self.fit is None or not self.fit.converged:
             return self
-        reading = take_reading(self.fit, ask, self.question.basis, self.question.life_unit)
-        readings = (reading, *self.readings[1:])
-        return replace(self, readings=readings, picture=replace(self.picture, reading=reading))
+        basis, unit = self.question.basis, self.question.life_unit
+        if is_slow(self.fit, basis) and self.picture.failure is not None:
+            reading = read_off_band(self.fit, self.picture.failure, ask, basis, unit)
+        else:
+            reading = take_reading(self.fit, ask, basis, unit)
+        return replace(self, readings=(reading, *self.readings[1:]), picture=replace(self.picture, reading=reading))
 
 
-def analyse(question: Question) -> SetAnalysis:
-    """Fit the family of the basis, take every reading, draw up the picture; every trouble becomes a caution."""
+def analyse(question: Question, *, quick: bool = False, proceed: Proceed | None = None) -> SetAnalysis:
+    """Fit the family of the basis, take every reading, draw up the picture; every trouble becomes a caution.
+
+    Parameters
+    ----------
+    quick : bool
+        Let likelihood-ratio bounds stand in where those of the basis are slow; the analysis is then provisional.
+    proceed : callable, optional
+        Called between pieces of slow work; what it raises ends the work.
+    """
     cautions = [unread_caution(question.counts.unread)] if question.counts.unread else []
     fitted: Fit | None = None
     curves: Curves | None = None
+    stand_in: str | None = None
     data = _life_data(question.units)
     if data is not None:
         try:
-            fitted = _fit(data, question.basis)
+            fitted = replace(_fit(data, question.basis), proceed=proceed)
             cautions.extend(fitted.cautions)
-            curves = draw_curves(fitted, question.basis) if fitted.converged else None
+            stand_in = STAND_IN if quick and fitted.converged and is_slow(fitted, question.basis) else None
+            if fitted.converged:
+                curves = draw_curves(fitted, question.basis, kind=stand_in or question.basis.bound)
         except RigpaperError as trouble:
             cautions.append(Caution("basis-cannot-be-carried-out", Severity.SERIOUS, str(trouble)))
-    readings: tuple[Reading, ...] = ()
-    if fitted is not None:
-        readings = tuple(take_reading(fitted, ask, question.basis, question.life_unit) for ask in question.asks)
+    readings = _readings(fitted, question, stand_in)
     points, steps = _marks(data, question.units, cautions)
     reading = readings[0] if readings and readings[0].estimate is not None else None
     picture = _picture(question, points, steps, curves, reading)
-    return SetAnalysis(question, fitted, readings, (*worst_first(tuple(cautions)), STANDING_CAUTION), picture)
+    ordered = (*worst_first(tuple(cautions)), STANDING_CAUTION)
+    return SetAnalysis(question, fitted, readings, ordered, picture, is_provisional=stand_in is not None)
+
+
+def _readings(fitted: Fit | None, question: Question, stand_in: str | None) -> tuple[Reading, ...]:
+    if fitted is None:
+        return ()
+    basis, unit = question.basis, question.life_unit
+    return tuple(take_reading(fitted, ask, basis, unit, stand_in=stand_in) for ask in question.asks)
 
 
 def _life_data(units: ReadUnits) -> LifeData | None:

@@ -72,13 +72,13 @@ def draw_steps(data: LifeData) -> Curve:
     return step_curve(kaplan_meier(data), data.last_observation)
 
 
-def draw_curves(fitted: Fit, basis: Basis) -> Curves:
-    """Return the curves of a fit that converged, their bands on the sides that go with the basis.
+def draw_curves(fitted: Fit, basis: Basis, *, kind: str) -> Curves:
+    """Return the curves of a fit that converged, with bands of a kind on the sides that go with the basis.
 
     A lower bound of the lives is an upper bound of the failure probability.
     """
     ages = _ages(fitted)
-    confidence, kind = basis.confidence, basis.bound
+    confidence = basis.confidence
     against = bound_side(HazardAsk(0.0), basis.side)
     failure, survival = probability_curves(fitted, ages, confidence=confidence, side=against, kind=kind)
     hazard = hazard_curve(fitted, ages, confidence=confidence, side=against, kind=kind)

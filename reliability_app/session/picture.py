@@ -34,6 +34,10 @@ class Reading:
         What the reading rests on.
     cautions : tuple of Caution
         What must be known before relying on it, worst first.
+    bound_used : str
+        The kind of bound given, where the basis leaves the choice open ("automatic"); empty without a bound.
+    is_provisional : bool
+        True while a quick bound stands in for the one of the basis, which is still being computed.
     """
 
     ask: Ask
@@ -42,6 +46,8 @@ class Reading:
     upper: float | None
     basis: Basis
     cautions: tuple[Caution, ...] = ()
+    bound_used: str = ""
+    is_provisional: bool = False
 
 
 @dataclass(frozen=True, eq=False)

@@ -33,7 +33,7 @@ def as_text(analyses: Sequence[SetAnalysis], life_unit: str) -> str:
         question = analysis.question
         lines = [f"{question.name}: {all_counts_text(question.counts)}"]
         lines += [f"  {reading_sentence(reading, life_unit)}" for reading in analysis.readings if _is_given(reading)]
-        lines.append(f"  ({basis_text(question.basis, question.counts)})")
+        lines.append(f"  ({basis_text(question.basis, question.counts, analysis.main)})")
         lines += [f"  ! {caution.text}" for caution in cautions_of(analysis)]
         paragraphs.append("\n".join(lines))
     return "\n\n".join(paragraphs)
@@ -45,7 +45,7 @@ def statement(analysis: SetAnalysis) -> str:
     cautions = worst_first((*(main.cautions if main else ()), *analysis.cautions))
     ordered = [caution for caution in cautions if caution != STANDING_CAUTION]
     sentence = reading_sentence(main, question.life_unit) if main else "No reading."
-    lines = [f"{question.name}: {sentence}", f"({basis_text(question.basis, question.counts)})"]
+    lines = [f"{question.name}: {sentence}", f"({basis_text(question.basis, question.counts, main)})"]
     return "\n".join([*lines, *(f"! {caution.text}" for caution in (*ordered, STANDING_CAUTION))])
 
 
@@ -119,6 +119,7 @@ def _reading_object(reading: Reading) -> dict[str, object]:
         "side": bound_side(reading.ask, basis.side),
         "confidence": basis.confidence,
         "bound": basis.bound,
+        "bound_used": reading.bound_used or None,
     }
 
 

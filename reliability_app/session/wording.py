@@ -119,11 +119,17 @@ def bound_clause(reading: Reading, life_unit: str) -> str:
     return f"No bound can be given at {as_given(100 * reading.basis.confidence)} % confidence"
 
 
-def basis_text(basis: Basis, counts: Counts) -> str:
-    """Return what the readings rest on: lognormal, maximum likelihood, 12 failed of 20, likelihood ratio."""
+def basis_text(basis: Basis, counts: Counts, reading: Reading | None = None) -> str:
+    """Return what the readings rest on: Lognormal, maximum likelihood, 12 failed of 20, likelihood ratio bound.
+
+    With a reading the kind of bound is the one given for it, and a provisional one is called so.
+    """
     title = family(basis.family).title
-    kind = BOUND_TITLES.get(basis.bound, basis.bound)
-    return f"{title}, {basis.fit}, {counts_text(counts)}, {kind} bound"
+    used = reading.bound_used if reading is not None and reading.bound_used else basis.bound
+    kind = f"{BOUND_TITLES.get(used, used)} bound"
+    if used != basis.bound:
+        kind += f" ({'provisional' if reading is not None and reading.is_provisional else basis.bound})"
+    return f"{title}, {basis.fit}, {counts_text(counts)}, {kind}"
 
 
 def counts_text(counts: Counts) -> str:

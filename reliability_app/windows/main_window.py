@@ -81,6 +81,8 @@ class MainWindow(QMainWindow):
         self.bridge.said.connect(contents.message_bar.show_message)
         self.analyst.answered.connect(self._show_answer)
         self.analyst.failed.connect(self._say_failure)
+        self.analyst.advanced.connect(contents.reading.show_progress)
+        contents.reading.stop_asked.connect(self.analyst.stop)
         self.undo.cleanChanged.connect(self._show_title)
         self.undo.retraced.connect(self._show_place_of)
         self.files.path_changed.connect(self._show_title)
@@ -171,10 +173,13 @@ class MainWindow(QMainWindow):
         """Follow the line: the sentence and the bracket at once, the session when the line is let go."""
         from reliability_app.session.document import LifeAsk
 
-        if self.analysis is not None and not self.analyst.is_busy:
+        if self.analysis is not None and self.analysis.question.revision == self._revision_shown():
             self.analysis = self.analysis.with_main_ask(LifeAsk(percent))
             self.contents.reading.show_analysis(self.analysis)
             self._show_pictures(self.analysis)
+
+    def _revision_shown(self) -> int:
+        return self.session.sets[self.shown_set].table.revision
 
     def _choose_percent(self, percent: float) -> None:
         from reliability_app.session.document import LifeAsk

@@ -125,7 +125,7 @@ def test_an_exact_bound_that_does_not_exist_is_refused_beside_the_estimate() -> 
     assert reading.cautions[0].code == "bound-unavailable"
 
 
-@pytest.mark.parametrize(("field", "name"), [("family", "pearson"), ("bound", "calibrated"), ("fit", "by eye")])
+@pytest.mark.parametrize(("field", "name"), [("family", "pearson"), ("fit", "by eye")])
 def test_a_basis_this_version_cannot_carry_out_is_named(field: str, name: str) -> None:
     analysis = analysed(NIST_ROWS, **{field: name})
     assert analysis.fit is None

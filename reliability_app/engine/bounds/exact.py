@@ -36,8 +36,8 @@ def has_exact_bounds(data: LifeData, family_name: str) -> bool:
     return family_name == "lognormal" and data.is_complete and data.unit_count >= 2
 
 
-def exact_interval(estimate: Estimate, data: LifeData, measure: Measure, tail: float) -> tuple[Array, Array]:
-    """Return both ends, each of shape (measure.size,), with probability `tail` beyond each.
+def exact_end(estimate: Estimate, data: LifeData, measure: Measure, tail: float, sign: float) -> Array:
+    """Return the lower (sign -1) or upper (sign 1) ends, shape (measure.size,), with probability `tail` beyond.
 
     Raises
     ------
@@ -49,19 +49,15 @@ def exact_interval(estimate: Estimate, data: LifeData, measure: Measure, tail: f
             "An exact bound is known here only for the lognormal family and complete data (every unit failed at a "
             "known age): choose the likelihood bound."
         )
-    moments = _moments(estimate)
+    moments, below = _moments(estimate), tail if sign < 0 else 1.0 - tail
     match measure:
         case LifeMeasure():
-            low = [_life_end(moments, z, 1.0 - tail) for z in measure.z]
-            high = [_life_end(moments, z, tail) for z in measure.z]
+            return np.array([_life_end(moments, z, 1.0 - below) for z in measure.z])
         case ScoreMeasure():
-            low = [_score_end(moments, y, tail) for y in measure.y]
-            high = [_score_end(moments, y, 1.0 - tail) for y in measure.y]
+            return np.array([_score_end(moments, y, below) for y in measure.y])
         case SlopeMeasure():
-            low, high = [_slope_end(moments, tail)], [_slope_end(moments, 1.0 - tail)]
-        case _:
-            raise BoundUnavailable("No exact bound of a hazard is known: choose the likelihood bound.")
-    return np.array(low), np.array(high)
+            return np.array([_slope_end(moments, below)])
+    raise BoundUnavailable("No exact bound of a hazard is known: choose the likelihood bound.")
 
 
 def _moments(estimate: Estimate) -> _Moments:

@@ -25,18 +25,13 @@ _ZOOMS = 6
 _MOST_DOUBLINGS = 12
 
 
-def profile_interval(estimate: Estimate, measure: Measure, root: float) -> tuple[Array, Array]:
-    """Return both ends, each of shape (measure.size,); -inf or inf where the profile never falls far enough."""
+def profile_end(estimate: Estimate, measure: Measure, root: float, sign: float) -> Array:
+    """Return the lower (sign -1) or upper (sign 1) ends, shape (measure.size,); infinite where none is reached."""
     start = measure.terms(np.array([estimate.a]), np.array([estimate.b]))
     gradient = np.stack([start.d_a, start.d_b], axis=-1)
     errors = np.sqrt(np.einsum("ij,jk,ik->i", gradient, estimate.covariance_ab, gradient))
-    lines = _lines(measure, estimate)
-    ends = [
-        [_end(estimate, line, float(value), sign * float(error), root) for sign in (-1.0, 1.0)]
-        for line, value, error in zip(lines, start.value, errors, strict=True)
-    ]
-    low, high = np.array(ends).T
-    return low, high
+    ends = zip(_lines(measure, estimate), start.value.tolist(), errors.tolist(), strict=True)
+    return np.array([_end(estimate, line, value, sign * error, root) for line, value, error in ends])
 
 
 def _lines(measure: Measure, estimate: Estimate) -> list[Points]:

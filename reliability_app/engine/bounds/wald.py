@@ -11,9 +11,9 @@ from reliability_app.engine.life_measures import Measure
 Array = NDArray[np.float64]
 
 
-def wald_interval(estimate: Estimate, measure: Measure, root: float) -> tuple[Array, Array]:
-    """Return both ends, each of shape (measure.size,), at `root` standard errors from the estimate."""
+def wald_end(estimate: Estimate, measure: Measure, root: float, sign: float) -> Array:
+    """Return the lower (sign -1) or upper (sign 1) ends, shape (measure.size,), `root` standard errors away."""
     terms = measure.terms(np.array([estimate.a]), np.array([estimate.b]))
     gradient = np.stack([terms.d_a, terms.d_b], axis=-1)
     error = np.sqrt(np.einsum("ij,jk,ik->i", gradient, estimate.covariance_ab, gradient))
-    return terms.value - root * error, terms.value + root * error
+    return np.asarray(terms.value + sign * root * error)

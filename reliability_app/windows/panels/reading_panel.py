@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable
 
-from PySide6.QtCore import Qt, QTimer
+from PySide6.QtCore import Qt, QTimer, Signal
 from PySide6.QtGui import QGuiApplication
 from PySide6.QtWidgets import (
     QHBoxLayout,
@@ -36,6 +36,8 @@ class ReadingPanel(QWidget):
     shown as current.
     """
 
+    stop_asked = Signal()
+
     def __init__(self, push_edit: Callable[[Edit], None], parent: QWidget | None = None) -> None:
         super().__init__(parent)
         self._push_edit = push_edit
@@ -46,6 +48,11 @@ class ReadingPanel(QWidget):
         self.copy_button = QPushButton("Copy")
         self.copy_button.setAccessibleName("Copy the reading with its basis and cautions")
         self.copy_button.setToolTip("Copy the reading with its basis and cautions")
+        self.progress = QLabel()
+        self.stop_button = QPushButton("Stop")
+        self.stop_button.setToolTip("Keep the provisional bound")
+        self.stop_button.setAccessibleName("Stop calibrating and keep the provisional bound")
+        self._show_progress(False)
         self.table = ReadingsTable()
         self.new_ask = QLineEdit()
         self.new_ask_trouble = QLabel()
@@ -54,6 +61,7 @@ class ReadingPanel(QWidget):
         self._stale = QTimer(self, singleShot=True, interval=_STALE_AFTER_MS)
         self._stale.timeout.connect(self._turn_pale)
         self.copy_button.clicked.connect(self.copy_statement)
+        self.stop_button.clicked.connect(self._stop)
         self.new_ask.returnPressed.connect(self._add_ask)
         self.table.main_chosen.connect(self._make_main)
         self.table.removal_asked.connect(self._remove)
@@ -62,6 +70,8 @@ class ReadingPanel(QWidget):
         """Show a finished analysis."""
         self._stale.stop()
         self._analysis = analysis
+        if not analysis.is_provisional:
+            self._show_progress(False)
         question = analysis.question
         self._asks = question.asks
         self.setEnabled(True)
@@ -72,10 +82,24 @@ class ReadingPanel(QWidget):
             self.rests_on.setText("")
         else:
             self.sentence.setText(reading_sentence(main, question.life_unit))
-            self.rests_on.setText(f"({basis_text(question.basis, question.counts)})")
+            self.rests_on.setText(f"({basis_text(question.basis, question.counts, main)})")
         self.copy_button.setEnabled(main is not None)
         self.table.show_readings(analysis.readings, question.life_unit)
         self.cautions.show_cautions(cautions_of(analysis) if question.units.rows else ())
+
+    def show_progress(self, steps: int) -> None:
+        """Show that the calibration of a provisional bound goes on: `steps` batches of simulated tests so far."""
+        if self._analysis is not None and self._analysis.is_provisional:
+            self.progress.setText(f"Calibrating the bounds: {steps} batches of simulated tests so far")
+            self._show_progress(True)
+
+    def _stop(self) -> None:
+        self._show_progress(False)
+        self.stop_asked.emit()
+
+    def _show_progress(self, is_shown: bool) -> None:
+        self.progress.setVisible(is_shown)
+        self.stop_button.setVisible(is_shown)
 
     def expect_newer(self) -> None:
         """Note that what is shown will soon be out of date."""
@@ -141,6 +165,10 @@ class ReadingPanel(QWidget):
         layout.setContentsMargins(8, 6, 8, 6)
         layout.addLayout(top)
         layout.addWidget(self.rests_on)
+        slow = QHBoxLayout()
+        slow.addWidget(self.progress, 1)
+        slow.addWidget(self.stop_button)
+        layout.addLayout(slow)
         layout.addWidget(halves, 1)
 
 
