@@ -1,10 +1,10 @@
-"""How often bounds of each kind hold: a resumable study, one line of JSON a cell: python tests/benchmarks/coverage_study.py FILE
+"""How often bounds of each kind hold, a resumable study: python tests/benchmarks/coverage_study.py FILE
 
-A cell is a family, a number of units and a plan. For each of its samples (those with three failures or more) it is asked
-whether the true B1, B10 and B50 life lies inside the one-sided bounds of each kind at 90 % and 95 %, both ways. For a
-calibrated bound that needs no search: the true value is inside when the observed signed root for it does not exceed the
-quantile simulated at the fit constrained to it. A cell already in FILE is passed over, so the study can be stopped and
-started again. With `--table` it writes resources/bound_coverage.json from FILE.
+A cell is a family, a number of units and a plan; it gives one line of JSON. For each of its samples (those with
+three failures or more) it is asked whether the true B1, B10 and B50 life lies inside the one-sided bounds of each kind
+at 90 % and 95 %, both ways. For a calibrated bound that needs no search: the true value is inside when the observed
+signed root for it does not exceed the quantile simulated at the fit constrained to it. A cell already in FILE is passed
+over, so the study can be stopped and started again.
 """
 
 from __future__ import annotations

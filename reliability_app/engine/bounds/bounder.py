@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from contextlib import suppress
 from dataclasses import dataclass, field
 
 import numpy as np
@@ -26,7 +27,8 @@ Array = NDArray[np.float64]
 # Where each end is slow to find a band is computed at this many of its places and joined.
 _SLOW_BAND = 24
 # A calibration is made at this many places of a band; the signed root changes slowly between them.
-_CALIBRATED_PLACES = 7
+_CALIBRATED_PLACES = 13
+_ROOT_LEVELS = 6
 # With this many failures the likelihood-ratio bound keeps its promise to well within a point by itself.
 ENOUGH_FAILURES = 300
 
@@ -72,19 +74,11 @@ class Bounder:
             return outline_end(measure, self.region(-float(ndtri(tail))), sign)
         if kind == "wald" or measure.size <= _SLOW_BAND:
             return self.end(measure, kind, tail, sign)
-        every = np.arange(measure.size)
         if kind == "calibrated":
-            some = _spread(measure.size, _CALIBRATED_PLACES)
-            roots = np.interp(every, some, [self._root(measure.at(some[[k]]), tail, sign) for k in range(some.size)])
-            some = _spread(measure.size, _SLOW_BAND)
-            ends = [
-                outline_end(measure.at(some[[k]]), self.region(float(roots[some[k]])), sign)[0]
-                for k in range(some.size)
-            ]
-        else:
-            some = _spread(measure.size, _SLOW_BAND)
-            ends = self.end(measure.at(some), kind, tail, sign).tolist()
-        return np.asarray(np.interp(every, some, ends))
+            return self._calibrated_band(measure, tail, sign)
+        every = np.arange(measure.size)
+        some = np.unique(np.linspace(0, measure.size - 1, _SLOW_BAND).round().astype(np.intp))
+        return np.asarray(np.interp(every, some, self.end(measure.at(some), kind, tail, sign)))
 
     def _kind_for(self, kind: str, measure: Measure) -> str:
         return self.resolved(kind, of_hazard=isinstance(measure, HazardMeasure))
@@ -107,7 +101,23 @@ class Bounder:
             ends.append(self._points(single, self._root(single, tail, sign), sign).value[0])
         return np.array(ends)
 
-    def _root(self, measure: Measure, tail: float, sign: float) -> float:
+    def _calibrated_band(self, measure: Measure, tail: float, sign: float) -> Array:
+        """Join calibrations at some places of the band by a smooth curve of their signed roots."""
+        places = np.unique(np.linspace(0, measure.size - 1, _CALIBRATED_PLACES).round().astype(np.intp))
+        found: dict[int, float] = {}
+        for place in places.tolist():
+            nearest = next(reversed(found.values()), None)
+            with suppress(BoundUnavailable):
+                found[place] = self._root(measure.at(np.array([place])), tail, sign, first=nearest)
+        if not found:
+            raise BoundUnavailable("The band cannot be calibrated here: choose the likelihood bound.")
+        # The same random numbers for all make the root a smooth function of the place.
+        roots = smooth_through(np.array(list(found), dtype=np.float64), np.array(list(found.values())), measure.size)
+        levels = np.linspace(roots.min(), roots.max(), _ROOT_LEVELS) if np.ptp(roots) > 0 else roots[:1]
+        ends = np.stack([outline_end(measure, self.region(float(level)), sign) for level in levels])
+        return np.array([np.interp(root, levels, column) for root, column in zip(roots, ends.T, strict=True)])
+
+    def _root(self, measure: Measure, tail: float, sign: float, *, first: float | None = None) -> float:
         """Return the signed root at which the calibrated end of a measure of size 1 lies."""
 
         def point_at(root: float) -> tuple[float, float]:
@@ -116,7 +126,7 @@ class Bounder:
                 raise BoundUnavailable("The bound runs beyond all ages here, so it cannot be calibrated.")
             return float(end.a[0]), float(end.b[0])
 
-        return self.calibrator.root(measure, sign, tail, point_at=point_at, proceed=self.proceed)
+        return self.calibrator.root(measure, sign, tail, point_at=point_at, first=first, proceed=self.proceed)
 
     def _points(self, measure: Measure, root: float, sign: float) -> EndPoints:
         return likelihood_end(self.estimate, measure, self.region(root), sign)
@@ -129,5 +139,18 @@ class Bounder:
         return self._calibrators[0]
 
 
-def _spread(size: int, most: int) -> NDArray[np.intp]:
-    return np.unique(np.linspace(0, size - 1, most).round().astype(np.intp))
+def smooth_through(places: Array, values: Array, size: int) -> Array:
+    """Return values at 0 ... size - 1 by cubic pieces through the given ones, constant beyond the outermost."""
+    if places.size == 1:
+        return np.full(size, values[0])
+    slopes = np.gradient(values, places)
+    at = np.clip(np.arange(size, dtype=np.float64), places[0], places[-1])
+    left = np.clip(np.searchsorted(places, at, side="right") - 1, 0, places.size - 2)
+    width = places[left + 1] - places[left]
+    t = (at - places[left]) / width
+    return np.asarray(
+        values[left] * (1 + 2 * t) * (1 - t) ** 2
+        + slopes[left] * width * t * (1 - t) ** 2
+        + values[left + 1] * t * t * (3 - 2 * t)
+        - slopes[left + 1] * width * t * t * (1 - t)
+    )

@@ -54,7 +54,14 @@ class Calibrator:
     draws: Draws
 
     def root(
-        self, measure: Measure, sign: float, tail: float, *, point_at: PointAt, proceed: Proceed | None = None
+        self,
+        measure: Measure,
+        sign: float,
+        tail: float,
+        *,
+        point_at: PointAt,
+        first: float | None = None,
+        proceed: Proceed | None = None,
     ) -> float:
         """Return the signed root at which the bound of a measure of size 1 lies.
 
@@ -68,6 +75,8 @@ class Calibrator:
         point_at : callable
             The constrained estimate (a, b) for the value of the measure at which the observed signed root is the
             argument, on this side.
+        first : float, optional
+            Where to begin the search; the root of the likelihood-ratio bound if not given.
         proceed : callable, optional
             Called before each batch; what it raises ends the work.
 
@@ -83,7 +92,7 @@ class Calibrator:
             roots = self.simulated_roots(measure, *point_at(root), sign)
             return float(np.quantile(roots, 1.0 - tail)) - root
 
-        return _find_root(excess, -float(ndtri(tail)))
+        return _find_root(excess, -float(ndtri(tail)) if first is None else first)
 
     def simulated_roots(self, measure: Measure, a: float, b: float, sign: float) -> Array:
         """Return signed roots for the true value of samples drawn at (a, b), for those that would give a reading."""
