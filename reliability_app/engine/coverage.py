@@ -1,0 +1,176 @@
+"""How often bounds hold: tests like the one in hand simulated at its fit, each kind of bound held against the truth.
+
+For a calibrated bound no search is needed: the true value lies inside when the observed signed root for it does not
+exceed the quantile simulated at the fit constrained to it. Only tests with three failures or more count, because from
+fewer no reading would be given.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+from scipy.special import ndtri
+
+from reliability_app.engine.bounds.calibrated import FEWEST_FAILURES, Calibrator, Proceed
+from reliability_app.engine.bounds.constrained import curve_of, maximise_along
+from reliability_app.engine.bounds.wald import wald_end
+from reliability_app.engine.errors import BoundUnavailable
+from reliability_app.engine.fit_result import Fit
+from reliability_app.engine.fitting import fit
+from reliability_app.engine.life_data import LifeData
+from reliability_app.engine.life_measures import LifeMeasure
+from reliability_app.engine.sample import Sample
+from reliability_app.engine.simulation import Draws, draw_sample, plan_of
+
+Array = NDArray[np.float64]
+
+JUDGED_KINDS = ("wald", "likelihood", "calibrated")
+TESTS, INNER_TESTS, SEED = 400, 1000, 20_260_102
+
+
+@dataclass(frozen=True)
+class Coverage:
+    """How often a kind of bound held in simulated tests.
+
+    Attributes
+    ----------
+    kind, side : str
+    confidence : float
+        What was promised.
+    held : float
+        Share of the tests in which the true value lay inside the bound.
+    standard_error : float
+        Of `held`, from the number of tests.
+    tests : int
+        Tests with three failures or more.
+    """
+
+    kind: str
+    side: str
+    confidence: float
+    held: float
+    standard_error: float
+    tests: int
+
+
+def coverage_of_life(
+    found: Fit,
+    fraction: float,
+    *,
+    confidence: float = 0.95,
+    side: str = "lower",
+    tests: int = TESTS,
+    inner_tests: int = INNER_TESTS,
+    seed: int = SEED,
+    proceed: Proceed | None = None,
+) -> tuple[Coverage, ...]:
+    """Simulate the plan of a fit's data at the fit, and say how often each kind of one-sided bound of a life held.
+
+    Parameters
+    ----------
+    side : str
+        "lower" or "upper".
+    proceed : callable, optional
+        Called before each test; what it raises ends the work.
+
+    Raises
+    ------
+    NoEstimate
+        Without a fit.
+    BoundUnavailable
+        If the plan cannot be simulated, or hardly any simulated test would see three failures.
+    """
+    score = found.family.standard.quantile(np.array([fraction]))
+    held = dict.fromkeys(JUDGED_KINDS, 0)
+    used = 0
+    for place, test in enumerate(simulated_tests(found, 4 * tests, seed)):
+        if proceed is not None:
+            proceed()
+        refitted = fit(test, found.family.name)
+        if not refitted.converged:
+            continue
+        # The tests are in scores, in which the true logarithm of the life is the score itself.
+        judged = judge(refitted, score, float(score[0]), confidences=(confidence,), batch=inner_tests, seed=place)
+        for kind in JUDGED_KINDS:
+            held[kind] += judged[kind, confidence, side]
+        used += 1
+        if used == tests:
+            break
+    if used < tests // 4:
+        raise BoundUnavailable(
+            "Under this plan hardly any test would see three failures, so there is nothing to simulate."
+        )
+    return tuple(_coverage(kind, side, confidence, held[kind], used) for kind in JUDGED_KINDS)
+
+
+def simulated_tests(found: Fit, tests: int, seed: int) -> Iterator[LifeData]:
+    """Give tests drawn at the fit under its data's plan, lives in exp(score); those with too few failures left out."""
+    plan = plan_of(found.data)
+    draws = Draws.of(plan, tests, seed)
+    estimate = found.bounder.estimate
+    a, b = -estimate.mu / estimate.sigma, 1.0 / estimate.sigma
+    sample, failures = draw_sample(plan, draws, found.family.standard, a=a, b=b)
+    for place in np.flatnonzero(failures >= FEWEST_FAILURES).tolist():
+        yield _data_of(sample, place)
+
+
+def _data_of(sample: Sample, place: int) -> LifeData:
+    failed, running = sample.failed.rows(np.array([place])), sample.running.rows(np.array([place]))
+    y = np.concatenate([failed.y[0], running.y[0]])
+    weight = np.concatenate([failed.weight[0], running.weight[0]])
+    flags = np.concatenate([np.ones(failed.size, dtype=bool), np.zeros(running.size, dtype=bool)])
+    there = weight > 0
+    return LifeData.right_censored(np.exp(y[there]), flags[there], quantity=weight[there])
+
+
+def judge(
+    found: Fit, score: Array, true_log_life: float, *, confidences: tuple[float, ...], batch: int, seed: int
+) -> dict[tuple[str, float, str], bool]:
+    """Say for each kind, confidence and side whether the true life at a score lies inside the bound of a fit.
+
+    Parameters
+    ----------
+    score : ndarray, shape (1,)
+        z of the fraction failed.
+    true_log_life : float
+        The true logarithm of the life at which that fraction has failed.
+    batch, seed : int
+        Tests simulated for the calibration, and the seed of their draws.
+    """
+    estimate, measure = found.bounder.estimate, LifeMeasure(score)
+    truth = (true_log_life - estimate.sample.shift) / estimate.sample.spread
+    value = float(measure.terms(np.array([estimate.a]), np.array([estimate.b])).value[0])
+    a, b, top = _constrained(found, measure, truth)
+    observed = float(np.sqrt(max(2.0 * (float(estimate.terms.value[0]) - top), 0.0)) * np.sign(value - truth))
+    plan = plan_of(found.data)
+    roots = Calibrator(estimate, plan, Draws.of(plan, batch, seed)).simulated_roots(measure, a, b, -1.0)
+    answer = {}
+    for side, sign in (("lower", -1.0), ("upper", 1.0)):
+        for confidence in confidences:
+            normal = float(ndtri(confidence))
+            end = float(wald_end(estimate, measure, normal, sign)[0])
+            limit = float(np.quantile(-sign * roots, confidence))
+            answer["wald", confidence, side] = bool(sign * (end - truth) >= 0)
+            answer["likelihood", confidence, side] = bool(-sign * observed <= normal)
+            answer["calibrated", confidence, side] = bool(-sign * observed <= limit)
+    return answer
+
+
+def _constrained(found: Fit, measure: LifeMeasure, value: float) -> tuple[float, float, float]:
+    """Return the fit constrained to a value of a life, and its log-likelihood."""
+    estimate = found.bounder.estimate
+    if estimate.b_is_fixed:
+        a = float(measure.z[0]) - value * estimate.b
+        return a, estimate.b, float(estimate.evaluate(np.array([a]), np.array([estimate.b])).value[0])
+    curve = curve_of(measure, value)
+    start = np.array([curve.start(estimate.a, estimate.b)])
+    held = maximise_along(lambda _, a, b: estimate.evaluate(a, b), curve, start)
+    return float(held.a[0]), float(held.b[0]), float(held.value[0])
+
+
+def _coverage(kind: str, side: str, confidence: float, held: int, tests: int) -> Coverage:
+    share = held / tests
+    return Coverage(kind, side, confidence, share, float(np.sqrt(share * (1.0 - share) / tests)), tests)
