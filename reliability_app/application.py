@@ -12,7 +12,7 @@ from importlib import import_module
 from pathlib import Path
 
 from PySide6.QtCore import QObject, QTimer
-from PySide6.QtWidgets import QApplication, QMessageBox
+from PySide6.QtWidgets import QApplication, QMessageBox, QWidget
 
 from reliability_app.windows.main_window import APPLICATION_TITLE, MainWindow
 from reliability_app.windows.settings import WindowSettings
@@ -64,28 +64,41 @@ class Start(QObject):
         window = self._window
         window.fill(Session(), Messages())
         install_last_resort(window.files.keep_recovery_copy, window.messages)
-        if self._file is not None:
+        if not self._recovered() and self._file is not None:
             window.files.open(self._file)
-        else:
-            self._offer_recovery()
 
-    def _offer_recovery(self) -> None:
+    def _recovered(self) -> bool:
+        """Offer the unsaved work of windows that ended without closing; True when some was taken over."""
         from reliability_app.session.recovery import found_copies
 
         for copy in found_copies():
-            what = copy.original.name if copy.original else "a session that was never saved"
-            answer = QMessageBox.question(
-                self._window,
-                "Unsaved work found",
-                f"Rigpaper ended without closing {what}. Its unsaved work of {copy.written:%Y-%m-%d %H:%M} was kept. "
-                "Open it? (No deletes the copy.)",
-                QMessageBox.StandardButton.Yes | QMessageBox.StandardButton.No | QMessageBox.StandardButton.Ignore,
-            )
-            if answer == QMessageBox.StandardButton.Yes:
-                self._window.files.recover(copy)
-                return
-            if answer == QMessageBox.StandardButton.No:
+            if self._file is not None and copy.original not in (None, self._file.absolute()):
+                continue
+            answer = ask_about_recovery(self._window, copy.original, f"{copy.written:%Y-%m-%d %H:%M}")
+            if answer == "open" and self._window.files.recover(copy):
+                return True
+            if answer == "delete":
                 copy.remove()
+        return False
+
+
+def ask_about_recovery(window: QWidget, original: Path | None, written: str) -> str:
+    """Ask what to do with unsaved work that was found: "open", "delete", or "later", which Escape means too."""
+    what = original.name if original else "a session that was never saved"
+    box = QMessageBox(
+        QMessageBox.Icon.Question,
+        "Unsaved work found",
+        f"Rigpaper ended without closing {what}. Its unsaved work of {written} was kept.",
+        parent=window,
+    )
+    open_it = box.addButton("&Open it", QMessageBox.ButtonRole.AcceptRole)
+    later = box.addButton("&Later", QMessageBox.ButtonRole.RejectRole)
+    delete = box.addButton("&Delete it", QMessageBox.ButtonRole.DestructiveRole)
+    box.setDefaultButton(open_it)
+    box.setEscapeButton(later)
+    box.exec()
+    clicked = box.clickedButton()
+    return "open" if clicked is open_it else "delete" if clicked is delete else "later"
 
 
 def _import_heavy_libraries() -> None:

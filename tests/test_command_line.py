@@ -47,7 +47,7 @@ def test_the_answer_names_counts_and_cautions(capsys: pytest.CaptureFixture[str]
 def test_sentences_for_people(capsys: pytest.CaptureFixture[str]) -> None:
     assert main(["read", str(NIST), "--percent", "10"]) == 0
     out = capsys.readouterr().out
-    assert "B10 life 164 h. With 95 % confidence between 59.9 h and 272 h" in out
+    assert "B10 life 164 h. With 95 % confidence between 59.8 h and 272 h" in out
     assert "10 failed of 20" in out
 
 

@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from collections.abc import Mapping
+from dataclasses import dataclass, field, replace
 
 from reliability_app.engine import Curve, Fit, LifeData, fit
 from reliability_app.engine.bounds import Proceed, check_bound
@@ -10,11 +11,12 @@ from reliability_app.engine.cautions import Caution, Severity, worst_first
 from reliability_app.engine.errors import BoundUnavailable, RigpaperError
 from reliability_app.session.document import Ask, Basis, LifeAsk, Session
 from reliability_app.session.drawing_up import NO_POINTS, Curves, Points, draw_curves, draw_points, draw_steps
+from reliability_app.session.family_caution import held_against, rivals_for
 from reliability_app.session.picture import Reading, SetPicture
 from reliability_app.session.quick_reading import STAND_IN, is_slow, read_off_band
 from reliability_app.session.taking_readings import take_reading
 from reliability_app.session.unit_table import Counts, ReadUnits
-from reliability_app.session.wording import STANDING_CAUTION, unread_caution
+from reliability_app.session.wording import STANDING_CAUTION, repeated_caution, unread_caution
 
 MAXIMUM_LIKELIHOOD = "maximum likelihood"
 
@@ -31,6 +33,8 @@ class Question:
     units: ReadUnits
     counts: Counts
     revision: int
+    repeated_names: tuple[str, ...] = ()
+    names: Mapping[int, str] = field(default_factory=dict)
 
     @classmethod
     def about(cls, session: Session, set_index: int) -> Question:
@@ -45,6 +49,8 @@ class Question:
             units=chosen.table.read_units(),
             counts=chosen.table.counts(),
             revision=chosen.table.revision,
+            repeated_names=chosen.table.repeated_names(),
+            names=chosen.table.names(),
         )
 
 
@@ -65,6 +71,8 @@ class SetAnalysis:
     picture : SetPicture
     is_provisional : bool
         True where quick bounds stand in for slow ones that are still to come.
+    rivals : tuple of Fit
+        Fits of other families that the units do not tell from this one; the main reading is held against them.
     """
 
     question: Question
@@ -73,6 +81,7 @@ class SetAnalysis:
     cautions: tuple[Caution, ...]
     picture: SetPicture
     is_provisional: bool = False
+    rivals: tuple[Fit, ...] = ()
 
     @property
     def main(self) -> Reading | None:
@@ -91,6 +100,7 @@ class SetAnalysis:
             reading = read_off_band(self.fit, self.picture.failure, ask, basis, unit)
         else:
             reading = take_reading(self.fit, ask, basis, unit)
+        reading = held_against(reading, self.fit, self.rivals, unit)
         return replace(self, readings=(reading, *self.readings[1:]), picture=replace(self.picture, reading=reading))
 
 
@@ -105,6 +115,8 @@ def analyse(question: Question, *, quick: bool = False, proceed: Proceed | None 
         Called between pieces of slow work; what it raises ends the work.
     """
     cautions = [unread_caution(question.counts.unread)] if question.counts.unread else []
+    if question.repeated_names:
+        cautions.append(repeated_caution(question.repeated_names))
     fitted: Fit | None = None
     curves: Curves | None = None
     stand_in: str | None = None
@@ -118,19 +130,23 @@ def analyse(question: Question, *, quick: bool = False, proceed: Proceed | None 
                 curves = draw_curves(fitted, question.basis, kind=stand_in or question.basis.bound)
         except RigpaperError as trouble:
             cautions.append(Caution("basis-cannot-be-carried-out", Severity.SERIOUS, str(trouble)))
-    readings = _readings(fitted, question, stand_in)
+    rivals = rivals_for(fitted)
+    readings = _readings(fitted, question, stand_in, rivals)
     points, steps = _marks(data, question.units, cautions)
     reading = readings[0] if readings and readings[0].estimate is not None else None
     picture = _picture(question, points, steps, curves, reading)
     ordered = (*worst_first(tuple(cautions)), STANDING_CAUTION)
-    return SetAnalysis(question, fitted, readings, ordered, picture, is_provisional=stand_in is not None)
+    return SetAnalysis(question, fitted, readings, ordered, picture, is_provisional=stand_in is not None, rivals=rivals)
 
 
-def _readings(fitted: Fit | None, question: Question, stand_in: str | None) -> tuple[Reading, ...]:
+def _readings(
+    fitted: Fit | None, question: Question, stand_in: str | None, rivals: tuple[Fit, ...]
+) -> tuple[Reading, ...]:
     if fitted is None:
         return ()
     basis, unit = question.basis, question.life_unit
-    return tuple(take_reading(fitted, ask, basis, unit, stand_in=stand_in) for ask in question.asks)
+    readings = [take_reading(fitted, ask, basis, unit, stand_in=stand_in) for ask in question.asks]
+    return tuple(held_against(reading, fitted, rivals, unit) for reading in readings[:1]) + tuple(readings[1:])
 
 
 def _life_data(units: ReadUnits) -> LifeData | None:
@@ -169,6 +185,7 @@ def _picture(
         point_fraction=points.fraction,
         point_quantity=points.quantity,
         point_rows=points.rows,
+        point_names=tuple(tuple(question.names.get(row, "") for row in rows) for rows in points.rows),
         running_age=points.running_age,
         running_quantity=points.running_quantity,
         failure=curves.failure if curves else None,

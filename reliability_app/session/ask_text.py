@@ -12,6 +12,7 @@ _BLIFE = re.compile(r"b\s*(?P<number>[\d.,]+)(\s*life)?", re.IGNORECASE)
 _PERCENT = re.compile(r"(?P<number>.+?)\s*(%|percent)", re.IGNORECASE)
 _HAZARD = re.compile(r"(hazard|rate)(\s+rate)?(\s+at)?\s+(?P<number>.+)", re.IGNORECASE)
 _RELIABILITY = re.compile(r"((reliability|r)(\s+at)?\s+)?(?P<number>.+)", re.IGNORECASE)
+_PLAIN = re.compile(r"[\d.,\s]+")
 
 
 class AskUnreadable(RigpaperError):
@@ -36,8 +37,16 @@ def read_ask(text: str, life_unit: str) -> Ask:
     without_unit = asked.removesuffix(life_unit).strip() if life_unit else asked
     if match := _HAZARD.fullmatch(without_unit):
         return HazardAsk(_age(match["number"], text, life_unit))
+    if asked == without_unit and _PLAIN.fullmatch(asked):
+        raise AskUnreadable(f"{text!r} may be a percent or an age: type {asked} % or {asked} {life_unit}.".rstrip())
     match = _RELIABILITY.fullmatch(without_unit)
     return ReliabilityAsk(_age(match["number"] if match else "", text, life_unit))
+
+
+def example_asks(life_unit: str) -> str:
+    """Return what can be typed, by example."""
+    example = f"1500 {life_unit}".strip()
+    return f"Add: 20 %, reliability {example}, or hazard {example}"
 
 
 def _age(number: str, text: str, life_unit: str) -> float:

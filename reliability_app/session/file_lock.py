@@ -95,13 +95,14 @@ class FileLock:
             os.write(descriptor, json.dumps(holder).encode())
 
     def _refusal(self, descriptor: int) -> str:
-        by = ""
+        since = ""
         with suppress(OSError, ValueError, KeyError, TypeError):
             holder = json.loads(os.pread(descriptor, 1000, 0))
-            by = f" (process {holder['process']} on {holder['host']}, since {holder['since']})"
+            where = "" if holder["host"] == platform.node() else f" on {holder['host']}"
+            since = f"{where}, since {datetime.fromisoformat(holder['since']):%Y-%m-%d %H:%M}"
         return (
-            f"{self.path} is open in another window{by}. "
-            "Here it can be read; to change it, close the other window, or save it here under another name."
+            f"{self.path} is open in another window already{since}. What is shown here is a copy: "
+            "to change the file itself, close the other window first, or save this copy under another name."
         )
 
 

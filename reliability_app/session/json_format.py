@@ -165,8 +165,9 @@ def _checked_version(data: bytes, source: str) -> int:
     if type(head.version) is not int or head.version < 1:
         raise SessionUnreadable(source, "its version should be a whole number from 1 up", place="$.version")
     if head.version > VERSION:
+        saved_by = f", saved by Rigpaper {head.saved_by!s:.20}" if head.saved_by else ""
         reason = (
-            f"it is a session of file version {head.version}, saved by Rigpaper {head.saved_by!s:.20}, "
+            f"it is a session of file version {head.version}{saved_by}, "
             f"and this Rigpaper {__version__} reads versions up to {VERSION}"
         )
         raise NewerVersion(source, reason, advice="Install the newer Rigpaper to open it.")

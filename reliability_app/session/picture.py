@@ -68,6 +68,8 @@ class SetPicture:
         Units that failed at each point.
     point_rows : tuple of tuple of int
         For each point the rows of the unit table it stands for.
+    point_names : tuple of tuple of str
+        For each point the names of those rows' units; empty where a unit has none.
     running_age, running_quantity : ndarray, shape (m,)
         Ages at which units were still running, and how many.
     failure, hazard, survival : Curve or None
@@ -85,6 +87,7 @@ class SetPicture:
     point_fraction: Floats
     point_quantity: Integers
     point_rows: tuple[tuple[int, ...], ...]
+    point_names: tuple[tuple[str, ...], ...]
     running_age: Floats
     running_quantity: Integers
     failure: Curve | None
@@ -96,4 +99,4 @@ class SetPicture:
     @property
     def is_empty(self) -> bool:
         """True where there is nothing to draw."""
-        return self.point_age.size == 0 and self.running_age.size == 0
+        return self.point_age.size == 0 and self.running_age.size == 0 and self.failure is None

@@ -5,7 +5,7 @@ from __future__ import annotations
 import json
 from collections.abc import Sequence
 
-from reliability_app.engine.cautions import Caution, worst_first
+from reliability_app.engine.cautions import Caution, Severity, together, worst_first
 from reliability_app.session.analysis import SetAnalysis
 from reliability_app.session.document import Ask, HazardAsk, LifeAsk, ReliabilityAsk
 from reliability_app.session.picture import Reading
@@ -15,15 +15,18 @@ from reliability_app.session.wording import (
     all_counts_text,
     ask_title,
     basis_text,
+    parameters_text,
     reading_sentence,
 )
+
+MARKS = {Severity.SERIOUS: "!!", Severity.CAUTION: "!", Severity.NOTE: "-"}
 
 
 def cautions_of(analysis: SetAnalysis) -> tuple[Caution, ...]:
     """Return all cautions of a set and its readings, worst first, the standing one last."""
     found = [*analysis.cautions, *(caution for reading in analysis.readings for caution in reading.cautions)]
     others = tuple(caution for caution in found if caution != STANDING_CAUTION)
-    return (*worst_first(others), STANDING_CAUTION)
+    return (*together(worst_first(others)), STANDING_CAUTION)
 
 
 def as_text(analyses: Sequence[SetAnalysis], life_unit: str) -> str:
@@ -34,7 +37,9 @@ def as_text(analyses: Sequence[SetAnalysis], life_unit: str) -> str:
         lines = [f"{question.name}: {all_counts_text(question.counts)}"]
         lines += [f"  {reading_sentence(reading, life_unit)}" for reading in analysis.readings if _is_given(reading)]
         lines.append(f"  ({basis_text(question.basis, question.counts, analysis.main)})")
-        lines += [f"  ! {caution.text}" for caution in cautions_of(analysis)]
+        if parameters := parameters_text(analysis.fit):
+            lines.append(f"  {parameters}")
+        lines += [f"  {MARKS[caution.severity]} {caution.text}" for caution in cautions_of(analysis)]
         paragraphs.append("\n".join(lines))
     return "\n\n".join(paragraphs)
 
@@ -46,28 +51,41 @@ def statement(analysis: SetAnalysis) -> str:
     ordered = [caution for caution in cautions if caution != STANDING_CAUTION]
     sentence = reading_sentence(main, question.life_unit) if main else "No reading."
     lines = [f"{question.name}: {sentence}", f"({basis_text(question.basis, question.counts, main)})"]
-    return "\n".join([*lines, *(f"! {caution.text}" for caution in (*ordered, STANDING_CAUTION))])
+    lines += [parameters] if (parameters := parameters_text(analysis.fit)) else []
+    said = (*ordered, STANDING_CAUTION)
+    return "\n".join([*lines, *(f"{MARKS[caution.severity]} {caution.text}" for caution in said)])
 
 
-def readings_as_tab_separated(readings: Sequence[Reading], life_unit: str) -> str:
-    """Return readings as rows for a spreadsheet: headings, plain numbers, then the cautions of each reading."""
-    rows = [["Reading", "Estimate", "Lower", "Upper", "Confidence", "Bound", "Family", "Cautions"]]
-    for reading in readings:
+def readings_as_tab_separated(analysis: SetAnalysis) -> str:
+    """Return the readings as rows for a spreadsheet, with what they rest on, and the cautions below them."""
+    question = analysis.question
+    unit, counts = question.life_unit, question.counts
+    head = ["Set", "Reading", "Estimate", "Lower", "Upper", "Confidence", "Side", "Bound", "Family", "Failed", "Units"]
+    failed = counts.failed + counts.found_failed
+    rows = [head]
+    for reading in analysis.readings:
         numbers = [_plain(value) for value in (reading.estimate, reading.lower, reading.upper)]
         basis = reading.basis
-        words = [str(basis.confidence), basis.bound, basis.family, " ".join(c.text for c in reading.cautions)]
-        rows.append([ask_title(reading.ask, life_unit), *numbers, *words])
-    return "\n".join("\t".join(row) for row in rows)
+        words = [
+            str(basis.confidence),
+            bound_side(reading.ask, basis.side),
+            reading.bound_used or basis.bound,
+            basis.family,
+        ]
+        title = ask_title(reading.ask, unit) + (f" ({unit})" if isinstance(reading.ask, LifeAsk) and unit else "")
+        rows.append([question.name, title, *numbers, *words, str(failed), str(failed + counts.running)])
+    cautions = [["Caution", caution.text] for caution in cautions_of(analysis)]
+    return "\n".join("\t".join(row) for row in [*rows, *cautions])
 
 
 def _plain(value: float | None) -> str:
     return "" if value is None else f"{value:.6g}"
 
 
-def as_json(analyses: Sequence[SetAnalysis], file: str) -> str:
+def as_json(analyses: Sequence[SetAnalysis], file: str, life_unit: str) -> str:
     """Return everything as one JSON object; absent numbers are null."""
     return json.dumps(
-        {"file": file, "sets": [_set_object(analysis) for analysis in analyses]},
+        {"file": file, "life_unit": life_unit, "sets": [_set_object(analysis) for analysis in analyses]},
         indent=2,
         ensure_ascii=False,
         allow_nan=False,
@@ -99,6 +117,7 @@ def _set_object(analysis: SetAnalysis) -> dict[str, object]:
         "parameters": fitted.parameters if fitted else None,
         "standard_errors": fitted.standard_errors if fitted else None,
         "covariance": covariance,
+        "covariance_of": list(fitted.coordinates) if fitted else None,
         "log_likelihood": fitted.log_likelihood if fitted else None,
         "aicc": fitted.aicc if fitted else None,
         "readings": [_reading_object(reading) for reading in analysis.readings],

@@ -42,7 +42,7 @@ class Answer:
 
     def as_json(self) -> str:
         """Return one JSON object."""
-        return plain_output.as_json(self.analyses, str(self.file))
+        return plain_output.as_json(self.analyses, str(self.file), self.life_unit)
 
 
 def read_request(

@@ -58,8 +58,8 @@ def _refuse_other_kinds(path: Path, data: bytes) -> None:
     suffix = path.suffix.lower()
     if suffix in _SPREADSHEET_SUFFIXES or data.startswith((_ZIP_START, _OLE_START)):
         raise TableUnreadable(
-            f"{path} is a spreadsheet file, which cannot be opened yet: save it as CSV there and open that, "
-            "or copy its cells and paste them."
+            f"{path} is a spreadsheet file, which this version does not open: save it as CSV in the spreadsheet "
+            "program and open that, or copy its cells and paste them."
         )
     if suffix == ".json":
         raise TableUnreadable(f"{path} is a JSON file but no session: choose a session or a table (CSV, TSV, text).")

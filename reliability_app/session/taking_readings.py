@@ -16,7 +16,7 @@ from reliability_app.engine.fit_cautions import cautions_of_age, cautions_of_bou
 from reliability_app.engine.fit_result import Ends
 from reliability_app.session.document import Ask, Basis, HazardAsk, LifeAsk, ReliabilityAsk, Side
 from reliability_app.session.picture import Reading
-from reliability_app.session.wording import age_text, ask_title
+from reliability_app.session.wording import ask_title, observed_age_text
 
 
 def take_reading(fitted: Fit, ask: Ask, basis: Basis, life_unit: str, *, stand_in: str | None = None) -> Reading:
@@ -57,8 +57,8 @@ def _cautions_of_place(ask: Ask, estimate: float, fitted: Fit, life_unit: str) -
     if isinstance(ask, LifeAsk):
         age, subject = estimate, ask_title(ask, life_unit)
     else:
-        age, subject = ask.age, f"The age {age_text(ask.age, life_unit)}"
-    return cautions_of_age(age, fitted.data, subject=subject, age_text=partial(age_text, life_unit=life_unit))
+        age, subject = ask.age, f"The age {observed_age_text(ask.age, life_unit)}"
+    return cautions_of_age(age, fitted.data, subject=subject, age_text=partial(observed_age_text, life_unit=life_unit))
 
 
 def bound_side(ask: Ask, side: Side) -> Side:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections import Counter
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from typing import TypeVar
@@ -181,6 +182,15 @@ class UnitTable:
             for code in (bulk_reading.IS_FAILED, bulk_reading.IS_RUNNING, bulk_reading.IS_FOUND_FAILED)
         )
         return Counts(failed, running, found_failed, int((status == bulk_reading.IS_UNREAD).sum()))
+
+    def names(self) -> dict[int, str]:
+        """Return the names of the units that have one, by row."""
+        return {row: name for row, name in enumerate(self._texts.column("unit")) if name}
+
+    def repeated_names(self) -> tuple[str, ...]:
+        """Return the names of units that stand in more than one row, in table order."""
+        counted = Counter(name for name in self._texts.column("unit") if name)
+        return tuple(name for name, count in counted.items() if count > 1)
 
     def read_units(self) -> ReadUnits:
         """Return what the rows that can be read say of their units."""

@@ -2,19 +2,35 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+from decimal import ROUND_CEILING, ROUND_FLOOR, ROUND_HALF_EVEN, Decimal
 from math import floor, isfinite, log10
+from typing import Literal
 
+from reliability_app.engine import Fit
+from reliability_app.engine.candidates import Verdict
 from reliability_app.engine.cautions import Caution, Severity
 from reliability_app.engine.families import family
+from reliability_app.engine.family_choice import Disagreement
 from reliability_app.session.document import Ask, Basis, HazardAsk, LifeAsk, ReliabilityAsk
 from reliability_app.session.picture import Reading
 from reliability_app.session.unit_table import Counts
 
+Toward = Literal["nearest", "down", "up"]
+
 DIGITS = 3
+# Where a lower and an upper bound are rounded to.
+SAFE_SIDES: tuple[Toward, Toward] = ("down", "up")
+_ROUNDINGS = {"nearest": ROUND_HALF_EVEN, "down": ROUND_FLOOR, "up": ROUND_CEILING}
+_BINARY_NOISE = Decimal("1e-12")
 THOUSANDS = "\u202f"  # narrow no-break space: ISO 80000-1 groups digits by threes with a small space
 _GROUP_FROM = 10_000
 _MOST_DECIMALS = 6
+_NAMES_SHOWN = 3
+_PARAMETER_DIGITS = 4
 _SUPERSCRIPTS = str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹")
+
+_PERSONS = ("Weibull", "Fréchet", "Birnbaum")
 
 BOUND_TITLES = {
     "likelihood": "likelihood ratio",
@@ -33,18 +49,30 @@ STANDING_CAUTION = Caution(
 )
 
 
-def number_text(value: float, digits: int = DIGITS) -> str:
-    """Return a number with `digits` significant digits, thousands set off by a narrow space."""
+def number_text(value: float, digits: int = DIGITS, *, toward: Toward = "nearest") -> str:
+    """Return a number with `digits` significant digits, thousands set off by a narrow space.
+
+    A bound is rounded to its safe side: a lower one `toward` "down", an upper one "up".
+    """
     if value == 0 or not isfinite(value):
         return "0" if value == 0 else "unbounded"
-    exponent = floor(log10(abs(float(f"{value:.{digits - 1}e}"))))
+    exact = Decimal(repr(float(value)))
+    rounded = _rounded(exact, digits, toward)
+    exponent = rounded.adjusted()
     if exponent < -4 or exponent >= 9:
-        mantissa, power = f"{value:.{digits - 1}e}".split("e")
+        mantissa, power = f"{rounded:.{digits - 1}e}".split("e")
         return f"{mantissa} × 10{str(int(power)).translate(_SUPERSCRIPTS)}"
-    decimals = max(0, digits - 1 - exponent)
-    rounded = round(value, digits - 1 - exponent)
-    text = f"{rounded:,.{decimals}f}"
+    text = f"{rounded:,.{max(0, digits - 1 - exponent)}f}"
     return text.replace(",", THOUSANDS) if abs(rounded) >= _GROUP_FROM else text.replace(",", "")
+
+
+def _rounded(value: Decimal, digits: int, toward: Toward) -> Decimal:
+    """Round to significant digits; what rounds up to a further digit keeps it."""
+    step = Decimal(1).scaleb(value.adjusted() - digits + 1)
+    # A hair on the unsafe side is the noise of a last binary digit, not a value.
+    if abs(value - value.quantize(step, ROUND_HALF_EVEN)) <= abs(value) * _BINARY_NOISE:
+        toward = "nearest"
+    return value.quantize(step, _ROUNDINGS[toward])
 
 
 def as_given(value: float) -> str:
@@ -55,19 +83,25 @@ def as_given(value: float) -> str:
     return text
 
 
-def age_text(age: float, life_unit: str) -> str:
+def age_text(age: float, life_unit: str, *, toward: Toward = "nearest") -> str:
     """Return an age with its unit."""
-    return f"{number_text(age)} {life_unit}".rstrip()
+    return f"{number_text(age, toward=toward)} {life_unit}".rstrip()
 
 
-def share_text(share: float) -> str:
+def observed_age_text(age: float, life_unit: str) -> str:
+    """Return an age that was observed, with the digits it was recorded with."""
+    return f"{as_given(age)} {life_unit}".rstrip()
+
+
+def share_text(share: float, *, toward: Toward = "nearest") -> str:
     """Return a reliability with the decimals that show two digits of what is missing to 1, six at the most."""
     missing = 1.0 - share
     if missing < 10.0**-_MOST_DECIMALS:
         return "1" if missing <= 0 else f"more than {1 - 10.0**-_MOST_DECIMALS:.{_MOST_DECIMALS}f}"
     if share < 0.001:
-        return number_text(share)
-    return f"{share:.{min(max(DIGITS, 1 - floor(log10(missing))), _MOST_DECIMALS)}f}"
+        return number_text(share, toward=toward)
+    places = min(max(DIGITS, 1 - floor(log10(missing))), _MOST_DECIMALS)
+    return f"{Decimal(repr(share)).quantize(Decimal(1).scaleb(-places), _ROUNDINGS[toward]):f}"
 
 
 def ask_title(ask: Ask, life_unit: str) -> str:
@@ -81,15 +115,16 @@ def ask_title(ask: Ask, life_unit: str) -> str:
             return f"Hazard rate at {as_given(ask.age)} {life_unit}".rstrip()
 
 
-def value_text(ask: Ask, value: float, life_unit: str) -> str:
+def value_text(ask: Ask, value: float, life_unit: str, *, toward: Toward = "nearest") -> str:
     """Return an answer of this kind, with its unit."""
     match ask:
         case LifeAsk():
-            return age_text(value, life_unit)
+            return age_text(value, life_unit, toward=toward)
         case ReliabilityAsk():
-            return share_text(value)
+            return share_text(value, toward=toward)
         case HazardAsk():
-            return f"{number_text(value)} per {life_unit}" if life_unit else number_text(value)
+            number = number_text(value, toward=toward)
+            return f"{number} per {life_unit}" if life_unit else number
 
 
 def reading_sentence(reading: Reading, life_unit: str) -> str:
@@ -107,9 +142,8 @@ def reading_sentence(reading: Reading, life_unit: str) -> str:
 def bound_clause(reading: Reading, life_unit: str) -> str:
     """Return the bound as a clause: With 95 % confidence at least 860 h."""
     confidence = f"With {as_given(100 * reading.basis.confidence)} % confidence"
-    lower, upper = (
-        None if end is None else value_text(reading.ask, end, life_unit) for end in (reading.lower, reading.upper)
-    )
+    lower = None if reading.lower is None else value_text(reading.ask, reading.lower, life_unit, toward="down")
+    upper = None if reading.upper is None else value_text(reading.ask, reading.upper, life_unit, toward="up")
     if lower is not None and upper is not None:
         return f"{confidence} between {lower} and {upper}"
     if lower is not None:
@@ -132,6 +166,18 @@ def basis_text(basis: Basis, counts: Counts, reading: Reading | None = None) -> 
     return f"{title}, {basis.fit}, {counts_text(counts)}, {kind}"
 
 
+def parameters_text(fitted: Fit | None) -> str:
+    """Return the fitted parameters and the log-likelihood in words; empty without a fit."""
+    if fitted is None or not fitted.converged:
+        return ""
+    parameters = ", ".join(
+        f"{name.replace('_', ' ')} {number_text(value, _PARAMETER_DIGITS)}"
+        for name, value in fitted.parameters.items()
+        if value is not None
+    )
+    return f"{parameters}; log-likelihood {fitted.log_likelihood:.3f}"
+
+
 def counts_text(counts: Counts) -> str:
     """Return how many units failed of how many that were read."""
     failed = counts.failed + counts.found_failed
@@ -146,5 +192,62 @@ def all_counts_text(counts: Counts) -> str:
 
 def unread_caution(rows: int) -> Caution:
     """Return the caution that some rows are not part of the analysis."""
-    what = "1 row is unread and left out" if rows == 1 else f"{rows} rows are unread and left out"
-    return Caution("rows-unread", Severity.CAUTION, f"{what}: see the marked cells of the units for the reasons.")
+    what = "1 row cannot be read and is left out" if rows == 1 else f"{rows} rows cannot be read and are left out"
+    return Caution("rows-unread", Severity.CAUTION, f"{what}: the marked cells of the table of units say why.")
+
+
+def verdict_sentence(verdict: Verdict, life_unit: str) -> str:
+    """Return what can be said of the choice of family: Lognormal and Weibull fit alike; B1 life is 61.0 h or 41.9 h."""
+    if not verdict.alike:
+        return "No families can be compared on these units: more failures are needed."
+    titles, lives = zip(*verdict.alike, strict=True)
+    life = ask_title(LifeAsk(100.0 * verdict.fraction), life_unit)
+    if len(titles) > 1:
+        ages = [age_text(age, life_unit) for age in (lives if len(lives) == 2 else (min(lives), max(lives)))]
+        between = f"{ages[0]} or {ages[1]}" if len(lives) == 2 else f"between {ages[0]} and {ages[1]}"
+        said = f"{_opening(_listed(titles))} fit alike; {life} is {between}."
+    else:
+        better = ""
+        if verdict.margin is not None:
+            better = f" fits clearly better than {_listed(verdict.apart)} (AICc lower by {verdict.margin:.1f} or more)"
+        said = f"{titles[0]}{better}; {life} is {age_text(lives[0], life_unit)}."
+    poor = " None of the families describes these units well (Anderson-Darling)." if verdict.poor else ""
+    return said + poor
+
+
+def disagreement_caution(found: Disagreement, reading: Reading, life_unit: str) -> Caution:
+    """Return the caution that another family fits as well, or better, and says something else."""
+    if reading.estimate is None:
+        raise ValueError("A reading without an estimate has nothing to disagree with.")
+    own, other = (value_text(reading.ask, value, life_unit) for value in (reading.estimate, found.value))
+    what = f"puts the {ask_title(reading.ask, life_unit)} at {other} instead of {own}"
+    if found.is_clear:
+        text = (
+            f"{found.title} fits clearly better (AICc lower by {found.gain:.1f}) and {what}: consider it as the family."
+        )
+    else:
+        text = (
+            f"{found.title} fits these units as well and {what}: the units cannot tell the two apart, so compare the "
+            "families and rely on the less favourable one until more failures decide."
+        )
+    return Caution("families-disagree", Severity.CAUTION, text)
+
+
+def _listed(titles: Sequence[str]) -> str:
+    """Return titles of families as a list in mid-sentence, where only the names of persons keep their capital."""
+    names = [title if title.startswith(_PERSONS) else title[0].lower() + title[1:] for title in titles]
+    return names[0] if len(names) == 1 else f"{', '.join(names[:-1])} and {names[-1]}"
+
+
+def _opening(text: str) -> str:
+    return text[0].upper() + text[1:]
+
+
+def repeated_caution(names: Sequence[str]) -> Caution:
+    """Return the caution that units of one name stand in several rows and are counted in each."""
+    shown = ", ".join(names[:_NAMES_SHOWN]) + (" and others" if len(names) > _NAMES_SHOWN else "")
+    return Caution(
+        "units-repeated",
+        Severity.CAUTION,
+        f"More than one row is called {shown}: every row counts as a unit of its own; delete those that are the same.",
+    )

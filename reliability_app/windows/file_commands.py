@@ -56,6 +56,7 @@ class FileCommands(QObject):
         self._lock: FileLock | None = None
         self._recovery_told = False
         self.path: Path | None = None
+        self._copy_of: Path | None = None
         self._keep_timer = QTimer(self, singleShot=True, interval=_KEEP_AFTER_MS)
         self._keep_timer.timeout.connect(self.keep_recovery_copy)
 
@@ -64,6 +65,8 @@ class FileCommands(QObject):
         """What the window's title calls the session."""
         if self.path is not None:
             return self.path.name
+        if self._copy_of is not None:
+            return f"Copy of {self._copy_of.name}"
         return self._session.title or "Untitled session"
 
     def new(self) -> None:
@@ -151,7 +154,8 @@ class FileCommands(QObject):
     def save_as(self) -> bool:
         """Ask for a file and save there."""
         self._finish_entry()
-        suggested = Path(self._folder()) / f"{self._session.title or 'session'}{SUFFIX}"
+        stem = f"{self._copy_of.stem} copy" if self._copy_of else self._session.title or "session"
+        suggested = Path(self._folder()) / f"{stem}{SUFFIX}"
         start = str(self.path or suggested)
         name, _ = QFileDialog.getSaveFileName(self._window, "Save session as", start, SESSION_FILTER)
         if not name:
@@ -204,7 +208,7 @@ class FileCommands(QObject):
         except RigpaperError as trouble:
             self._messages.say(Severity.SERIOUS, str(trouble))
             return False
-        self.path = path
+        self.path, self._copy_of = path, None
         self._settings.note_recent(path)
         self._undo.setClean()
         self.keep_recovery_copy()
@@ -213,12 +217,12 @@ class FileCommands(QObject):
 
     def _take_over(self, session: Session, path: Path | None) -> None:
         self._release()
-        self.path = path
+        self.path, self._copy_of = path, None
         if path is not None:
             try:
                 self._hold(path)
             except FileInUse as in_use:
-                self.path = None
+                self.path, self._copy_of = None, path
                 self._messages.say(Severity.CAUTION, str(in_use))
         self._undo.clear()
         self._session.replace_with(session)
@@ -239,4 +243,5 @@ class FileCommands(QObject):
             self._lock = None
 
     def _folder(self) -> str:
-        return str(self.path.parent) if self.path is not None else ""
+        beside = self.path or self._copy_of
+        return str(beside.parent) if beside is not None else ""

@@ -36,7 +36,8 @@ class MainWindow(QMainWindow):
         self.setWindowTitle(APPLICATION_TITLE)
         self.setAcceptDrops(True)
         if not self.restoreGeometry(settings.layout("window")):
-            self.resize(1240, 780)
+            room = self.screen().availableGeometry().size()
+            self.resize(min(1240, room.width()), min(780, room.height()))
         waiting = QLabel("Rigpaper is starting …")
         waiting.setAlignment(Qt.AlignmentFlag.AlignCenter)
         self.setCentralWidget(waiting)
@@ -102,6 +103,7 @@ class MainWindow(QMainWindow):
             self._show_everything()
             return
         self.files.note_edit()
+        self.contents.message_bar.put_away_notes()
         if change.kind == "sets":
             self.show_set(min(self.shown_set, len(self.session.sets) - 1))
             return
@@ -159,12 +161,19 @@ class MainWindow(QMainWindow):
         self.answer_shown.emit()
 
     def _show_pictures(self, analysis: SetAnalysis) -> None:
+        from reliability_app.session.plain_output import statement
+
+        said = statement(analysis)
         for page in self.contents.pages:
+            page.statement = said
             page.show_pictures([analysis.picture], current=0, life_unit=analysis.question.life_unit)
 
     def _say_failure(self, text: str) -> None:
         from reliability_app.engine.cautions import Severity
 
+        self.contents.reading.show_failure()
+        for page in self.contents.pages:
+            page.show_pictures((), current=0, life_unit=self.session.life_unit)
         self.messages.say(Severity.SERIOUS, f"{text} Save your work, and undo the latest change to go on.")
 
     # The reading line

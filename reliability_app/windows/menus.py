@@ -20,6 +20,25 @@ from reliability_app.windows.theme import Scheme, apply_scheme
 if TYPE_CHECKING:
     from reliability_app.windows.main_window import MainWindow
 
+KEYS = """<table cellpadding='3'>
+<tr><td><b>On a chart</b></td><td></td></tr>
+<tr><td>Drag the reading line</td><td>read another percent</td></tr>
+<tr><td>Alt + arrow, Shift + arrow</td><td>move the reading to the next usual percent, or by a little</td></tr>
+<tr><td>Arrows, drag with the left button</td><td>move the view</td></tr>
+<tr><td>+ and −, mouse wheel</td><td>zoom</td></tr>
+<tr><td>Home or 0</td><td>show all again</td></tr>
+<tr><td>Right button, or the menu key</td><td>reset, log or linear age, copy the picture</td></tr>
+<tr><td><b>In the table of units</b></td><td></td></tr>
+<tr><td>Ctrl + V</td><td>paste a table or a block</td></tr>
+<tr><td>F2, Enter, Tab</td><td>edit, go down, go right; Shift reverses</td></tr>
+<tr><td>Ctrl + D</td><td>fill down</td></tr>
+<tr><td>Ctrl + Shift + I, Ctrl + Delete</td><td>insert and delete rows</td></tr>
+<tr><td>F8</td><td>go to the next row that cannot be read</td></tr>
+<tr><td>Ctrl + Tab</td><td>leave the table</td></tr>
+<tr><td><b>In the table of readings</b></td><td></td></tr>
+<tr><td>Enter or a double click</td><td>read this one on the chart and in the sentence</td></tr>
+<tr><td>Delete</td><td>remove a reading</td></tr>
+</table>"""
 SCHEMES: dict[Scheme, str] = {"system": "As the system", "light": "Light", "dark": "Dark"}
 
 
@@ -83,6 +102,7 @@ class Menus(QObject):
             group.addAction(action)
 
     def _build_help(self, menu: QMenu) -> None:
+        self._add(menu, "&Keys and mouse", "F1", self._tell_keys)
         self._add(menu, "&About Rigpaper", "", self._tell_about)
 
     def _add(self, menu: QMenu, text: str, keys: str, act: Callable[[], object], *, icon: str = "") -> QAction:
@@ -111,6 +131,9 @@ class Menus(QObject):
         application = QGuiApplication.instance()
         if isinstance(application, QApplication):
             apply_scheme(application, name)
+
+    def _tell_keys(self) -> None:
+        QMessageBox.information(self._window, "Keys and mouse", KEYS)
 
     def _tell_about(self) -> None:
         QMessageBox.about(

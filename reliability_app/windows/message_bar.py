@@ -17,6 +17,7 @@ class MessageBar(QFrame):
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__(parent)
         self.setFrameShape(QFrame.Shape.StyledPanel)
+        self._severity = Severity.NOTE
         self._mark = QLabel()
         self._text = QLabel()
         self._text.setWordWrap(True)
@@ -38,7 +39,13 @@ class MessageBar(QFrame):
         """Show a message in the place of the one before."""
         self._mark.setText(f"<b>{_MARKS[message.severity]}</b>")
         self._text.setText(message.text)
+        self._severity = message.severity
         self.show()
+
+    def put_away_notes(self) -> None:
+        """Close the bar if what it says was only a note: the work has gone on since."""
+        if self._severity is Severity.NOTE:
+            self.hide()
 
     def text(self) -> str:
         """Return what is said, empty when the bar is closed."""

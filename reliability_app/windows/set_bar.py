@@ -11,6 +11,7 @@ from reliability_app.engine.cautions import Severity
 from reliability_app.session.document import Session, UnitSet
 from reliability_app.session.edits import AddSet, ChangeLifeUnit, Edit, RemoveSet, RenameSet
 from reliability_app.session.messages import Messages
+from reliability_app.windows.entry_line import EntryLine
 
 USUAL_UNITS = ("h", "days", "cycles", "km")
 
@@ -50,9 +51,11 @@ class SetBar(QWidget):
         self.sets.activated.connect(self.set_chosen)
         self.add_button.clicked.connect(self.add_set)
         self.life_unit.activated.connect(self._take_life_unit)
-        line = self.life_unit.lineEdit()
-        if line is not None:
-            line.editingFinished.connect(self._take_life_unit)
+        line = EntryLine()
+        line.setAccessibleName("Unit of the lives")
+        line.editingFinished.connect(self._take_life_unit)
+        self.life_unit.setLineEdit(line)
+        self.life_unit.setToolTip("The name of the unit; the numbers stay as they are")
 
     @property
     def current(self) -> int:

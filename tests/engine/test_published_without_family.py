@@ -157,3 +157,17 @@ def test_exact_limit_of_an_upper_percentile_and_its_reciprocal_twin() -> None:
     assert f.life_bounds(0.95, side="upper", **asked) == (None, pytest.approx(recomputed, abs=5e-8))
     twin = fit(complete([1 / value for value in values]), "lognormal")
     assert twin.life_bounds(0.05, side="lower", **asked) == (pytest.approx(1 / recomputed, rel=1e-9), None)
+
+
+@pytest.mark.parametrize("lives", [[246.4, 304.4], [100, 110], [100, 150], [100, 110, 120], [246, 300, 304], [10, 1e4, 3]])
+def test_exact_reliability_bounds_invert_exact_life_bounds_far_from_the_data_too(lives: list[float]) -> None:
+    # Invented lives of two or three units, for which the library's distribution function gives up in places.
+    found = fit(LifeData.right_censored(lives, np.ones(len(lives))), "lognormal")
+    for fraction in (0.001, 0.1, 0.5, 0.9):
+        life = found.life_bounds(fraction, confidence=0.95, kind="exact")[0]
+        share = found.reliability_bounds(life, confidence=0.95, kind="exact")[0]
+        assert share == pytest.approx(1.0 - fraction, rel=1e-6)
+    ages = np.geomspace(min(lives) / 1e4, max(lives) * 1e4, 60)
+    lower, upper = found.reliability_bounds(ages, side="two", kind="exact")
+    assert (np.diff(lower) <= 1e-12).all()
+    assert (lower <= upper).all()

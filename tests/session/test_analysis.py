@@ -97,7 +97,7 @@ def test_no_number_is_given_where_no_estimate_exists() -> None:
 def test_extrapolation_to_either_side_is_said_beside_the_number() -> None:
     _, b1, _, _, b90 = analysed(NIST_ROWS, family="weibull").readings
     assert [caution.code for caution in b1.cautions if caution.code.endswith("failure")] == ["below-first-failure"]
-    assert "54.0 h" in b1.cautions[0].text
+    assert "(54 h)" in b1.cautions[0].text
     assert b90.cautions[0].code == "beyond-last-observation"
 
 

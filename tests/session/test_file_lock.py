@@ -41,13 +41,13 @@ def other_process(session_file):
 def test_a_second_window_of_the_same_process_is_told(session_file):
     with FileLock(session_file) as first, pytest.raises(FileInUse) as refusal:
         FileLock(session_file).take()
-    assert str(refusal.value).startswith(f"{session_file} is open in another window (process {os.getpid()} on ")
-    assert "save it here under another name" in str(refusal.value)
+    assert str(refusal.value).startswith(f"{session_file} is open in another window already, since 20")
+    assert "save this copy under another name" in str(refusal.value)
     assert not first.held
 
 
 def test_a_window_of_another_process_is_told(session_file, other_process):
-    with pytest.raises(FileInUse, match=f"process {other_process.pid} on "):
+    with pytest.raises(FileInUse, match="is open in another window already, since 20"):
         FileLock(session_file).take()
 
 
@@ -91,7 +91,7 @@ def test_a_hidden_file_with_nonsense_in_it_does_no_harm(session_file):
 def test_a_holder_that_left_no_name_is_still_respected(session_file):
     with FileLock(session_file):
         (session_file.parent / ".rig.json.lock").write_text("")
-        with pytest.raises(FileInUse, match=r"is open in another window\. Here"):
+        with pytest.raises(FileInUse, match=r"is open in another window already\. What is shown"):
             FileLock(session_file).take()
 
 

@@ -39,6 +39,16 @@ def test_numbers_have_three_significant_digits(value: float, text: str) -> None:
 
 
 @pytest.mark.parametrize(
+    ("value", "down", "up"),
+    [(496.65, "496", "497"), (1164.82, "1160", "1170"), (0.0020831, "0.00208", "0.00209"), (250.0, "250", "250"),
+     (0.1 + 0.2, "0.300", "0.300"), (9.999, "9.99", "10.0")],
+)  # fmt: skip
+def test_bounds_are_rounded_to_their_safe_side(value: float, down: str, up: str) -> None:
+    assert number_text(value, toward="down") == down
+    assert number_text(value, toward="up") == up
+
+
+@pytest.mark.parametrize(
     ("share", "text"),
     [
         (0.5, "0.500"),
@@ -67,7 +77,7 @@ def reading(ask: object, estimate: float | None, lower: float | None, upper: flo
 @pytest.mark.parametrize(
     ("given", "sentence"),
     [
-        (reading(LifeAsk(10), 1244, 859.7, None), "B10 life 1240 h. With 95 % confidence at least 860 h."),
+        (reading(LifeAsk(10), 1244, 859.7, None), "B10 life 1240 h. With 95 % confidence at least 859 h."),
         (reading(LifeAsk(10), 1244, None, 1700), "B10 life 1240 h. With 95 % confidence at most 1700 h."),
         (reading(LifeAsk(0.1), 124, 86, 170), "B0.1 life 124 h. With 95 % confidence between 86.0 h and 170 h."),
         (

@@ -304,5 +304,5 @@ class TestMenuAndAccess:
         qtbot.mouseMove(page.view.viewport(), place)
         qtbot.wait(20)
         said = page.view.plotItem.vb.toolTip()
-        assert said.startswith("Design A: 2 failed at 1640 h, plotted at ")
+        assert said.startswith("P-05: 2 failed at 1640 h, plotted at ")
         assert said.endswith("(row 5)")

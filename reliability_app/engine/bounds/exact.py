@@ -79,7 +79,11 @@ def _score_end(moments: _Moments, y: float, level: float) -> float:
     observed = (moments.mean - y) / moments.deviation * root_n
 
     def excess(z: float) -> float:
-        return float(nctdtr(moments.n - 1.0, -z * root_n, observed)) - level
+        share = float(nctdtr(moments.n - 1.0, -z * root_n, observed))
+        if np.isnan(share):
+            # Far from the data the library gives up; there the share is 0 or 1 to all digits.
+            share = float(observed > -z * root_n)
+        return share - level
 
     centre = -observed / root_n
     width = 1.0

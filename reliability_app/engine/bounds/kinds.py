@@ -7,7 +7,7 @@ from reliability_app.engine.errors import DataError, UnknownName
 BOUND_KINDS = ("automatic", "calibrated", "likelihood", "wald", "exact")
 SIDES = ("lower", "upper", "two")
 OPPOSITE_SIDE = {"lower": "upper", "upper": "lower", "two": "two"}
-_LEAST_CONFIDENCE, _MOST_CONFIDENCE = 0.5, 0.999999
+LEAST_CONFIDENCE, MOST_CONFIDENCE = 0.5, 0.999999
 
 
 def check_bound(kind: str, side: str, confidence: float) -> None:
@@ -18,7 +18,7 @@ def check_bound(kind: str, side: str, confidence: float) -> None:
         )
     if side not in SIDES:
         raise UnknownName(f"There is no side called {side!r}. The sides are: {', '.join(SIDES)}.")
-    if not _LEAST_CONFIDENCE < confidence <= _MOST_CONFIDENCE:
+    if not LEAST_CONFIDENCE < confidence <= MOST_CONFIDENCE:
         raise DataError(
             [f"A confidence of {confidence:g} cannot be used: give a number above 0.5 and below 1, such as 0.95."]
         )

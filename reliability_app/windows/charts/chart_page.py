@@ -16,6 +16,7 @@ from reliability_app.session.wording import reading_sentence
 from reliability_app.windows.charts.age_axis import AgeAxis
 from reliability_app.windows.charts.chart_ranges import Range, limits_around
 from reliability_app.windows.charts.chart_view import ChartView
+from reliability_app.windows.charts.copied_picture import with_foot
 from reliability_app.windows.charts.grid_lines import GridLines
 from reliability_app.windows.charts.legend import Corner, Legend, LegendEntry
 from reliability_app.windows.charts.reading_line import Along, ReadingLine, ReadingMark
@@ -24,7 +25,7 @@ from reliability_app.windows.charts.reading_steps import fine_step, round_step
 from reliability_app.windows.charts.round_axis import RoundAxis
 from reliability_app.windows.theme import SeriesStyle, Theme, theme_of
 
-NO_UNITS = "Paste or type lives in the Units grid."
+NO_UNITS = "Paste or type the lives of some units into the table on the left."
 _SMALL = 0.85
 _MARK_SHARE = 0.62  # size of a unit's mark, in line heights
 
@@ -79,6 +80,7 @@ class ChartPage(QWidget):
     ) -> None:
         super().__init__(parent)
         self.name = name
+        self.statement = ""
         self._pictures: tuple[SetPicture, ...] = ()
         self._current = 0
         self._life_unit = "h"
@@ -193,8 +195,8 @@ class ChartPage(QWidget):
         self._settle_view(is_new=True)
 
     def copy_picture(self) -> None:
-        """Put the chart on the clipboard as an image."""
-        QGuiApplication.clipboard().setImage(self.view.picture())
+        """Put the chart on the clipboard as an image, with the statement it rests on below it."""
+        QGuiApplication.clipboard().setImage(with_foot(self.view.picture(), self.statement, self._theme, self.font()))
 
     def menu(self) -> QMenu:
         """Return a new menu with the actions of this page."""

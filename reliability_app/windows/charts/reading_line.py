@@ -244,6 +244,11 @@ class ReadingLine(QGraphicsObject):
             end = self._pixel(position, mark.value) if mark.along == "age" else self._pixel(mark.age, position)
             painter.setPen(QPen(self._colour, 3.0, Qt.PenStyle.SolidLine, Qt.PenCapStyle.FlatCap))
             painter.drawLine(end, spot)
+            inside = self._inside(end)
+            if inside != end:
+                # The bound lies beyond the picture: its number stands at the edge with an arrow.
+                self._paint_end_text(painter, inside, _beyond(text, inward, mark.along), -inward, mark.along)
+                continue
             painter.setPen(QPen(self._colour, 2.0, Qt.PenStyle.SolidLine, Qt.PenCapStyle.SquareCap))
             if mark.along == "age":
                 corners = [QPointF(inward * _FOOT, -_FOOT), QPointF(0, -_FOOT), QPointF(0, _FOOT)]
@@ -254,6 +259,14 @@ class ReadingLine(QGraphicsObject):
             painter.drawPolyline([end + corner for corner in corners])
             if text:
                 self._paint_end_text(painter, end, text, inward, mark.along)
+
+    def _inside(self, end: QPointF) -> QPointF:
+        """Return the point of the picture nearest to an end of the bracket."""
+        area = self._area()
+        return QPointF(
+            min(max(end.x(), area.left()), area.right()),
+            min(max(end.y(), area.top()), area.bottom()),
+        )
 
     def _end_text_box(self, end: QPointF, text: str, inward: int, along: Along) -> QRectF:
         """Return the place of a bound's text: outside its end of the bracket, or inside where that would not fit."""
@@ -329,3 +342,10 @@ class ReadingLine(QGraphicsObject):
             self._grabbed_at = None
             self.released.emit()
             self.update()
+
+
+def _beyond(text: str, inward: int, along: Along) -> str:
+    """Return the text of a bound that lies beyond the picture."""
+    if along == "age":
+        return f"◂ {text}" if inward > 0 else f"{text} ▸"
+    return f"▾ {text}" if inward > 0 else f"▴ {text}"

@@ -11,7 +11,7 @@ from reliability_app.engine.curves import Curve
 from reliability_app.engine.paper import AgeScale, ProbabilityScale
 from reliability_app.session.document import HazardAsk, LifeAsk, ReliabilityAsk
 from reliability_app.session.picture import Reading, SetPicture
-from reliability_app.session.wording import age_text, as_given, number_text, value_text
+from reliability_app.session.wording import SAFE_SIDES, age_text, as_given, number_text, value_text
 from reliability_app.windows.charts.reading_line import ReadingMark
 
 Floats = NDArray[np.float64]
@@ -119,7 +119,10 @@ def paper_mark(place: Place, probability: ProbabilityScale, age: AgeScale, life_
     value = float(probability.to_scale(place.fraction))
     if place.fractions != (None, None):
         ends = [None if end is None else float(probability.to_scale(end)) for end in place.fractions]
-        texts = ["" if end is None else f"{number_text(100.0 * end)} %" for end in place.fractions]
+        texts = [
+            "" if end is None else f"{number_text(100.0 * end, toward=toward)} %"
+            for end, toward in zip(place.fractions, SAFE_SIDES, strict=True)
+        ]
         return ReadingMark(position, value, "value", ends[0], ends[1], place.age_text, place.percent_text, *texts)
     return aged_mark(place, value, age, life_unit, value_text=place.percent_text)
 
@@ -127,7 +130,10 @@ def paper_mark(place: Place, probability: ProbabilityScale, age: AgeScale, life_
 def aged_mark(place: Place, value: float, age: AgeScale, life_unit: str, *, value_text: str) -> ReadingMark:
     """Return the mark of a reading whose bound, if any, is an age, at a height of `value`."""
     ends = [None if end is None else float(age.to_scale(end)) for end in place.ages]
-    texts = ["" if end is None else age_text(end, life_unit) for end in place.ages]
+    texts = [
+        "" if end is None else age_text(end, life_unit, toward=toward)
+        for end, toward in zip(place.ages, SAFE_SIDES, strict=True)
+    ]
     return ReadingMark(
         float(age.to_scale(place.age)), value, "age", ends[0], ends[1], place.age_text, value_text, *texts
     )
@@ -140,7 +146,8 @@ def hazard_mark(picture: SetPicture | None, place: Place, age: AgeScale, life_un
     reading = picture.reading
     if reading is not None and isinstance(reading.ask, HazardAsk) and reading.ask.age == place.age:
         return _asked_hazard(reading, place, age, life_unit)
-    return aged_mark(place, value_at(picture.hazard, place.age), age, life_unit, value_text="")
+    hazard = value_at(picture.hazard, place.age)
+    return aged_mark(place, hazard, age, life_unit, value_text=number_text(hazard))
 
 
 def failed_tip(picture: SetPicture, life_unit: str, at: int) -> str:
@@ -150,7 +157,9 @@ def failed_tip(picture: SetPicture, life_unit: str, at: int) -> str:
     many = "" if count == 1 else f"{count} "
     said = f"{many}failed at {as_given(float(picture.point_age[at]))} {life_unit}".rstrip()
     place = f"plotted at {number_text(100.0 * float(picture.point_fraction[at]))} %"
-    return f"{picture.name}: {said}, {place}{_rows_text(rows)}"
+    names = [name for name in picture.point_names[at] if name] if at < len(picture.point_names) else []
+    who = ", ".join(names) if 0 < len(names) <= _MOST_ROWS_NAMED else picture.name
+    return f"{who}: {said}, {place}{_rows_text(rows)}"
 
 
 def running_tip(picture: SetPicture, life_unit: str, at: int) -> str:
@@ -167,7 +176,8 @@ def _rows_text(rows: tuple[int, ...]) -> str:
 
 
 def _asked_hazard(reading: Reading, place: Place, age: AgeScale, life_unit: str) -> ReadingMark:
-    texts = ["" if end is None else value_text(reading.ask, end, life_unit) for end in (reading.lower, reading.upper)]
+    ends = zip((reading.lower, reading.upper), SAFE_SIDES, strict=True)
+    texts = ["" if end is None else value_text(reading.ask, end, life_unit, toward=toward) for end, toward in ends]
     estimate = float(reading.estimate or 0.0)
     position = float(age.to_scale(place.age))
     return ReadingMark(

@@ -5,13 +5,14 @@ from __future__ import annotations
 from collections.abc import Callable
 from dataclasses import replace
 
-from PySide6.QtWidgets import QComboBox, QFormLayout, QGroupBox, QLineEdit, QWidget
+from PySide6.QtWidgets import QComboBox, QFormLayout, QGroupBox, QLabel, QWidget
 
-from reliability_app.engine.bounds import BOUND_KINDS
+from reliability_app.engine.bounds.kinds import BOUND_KINDS, LEAST_CONFIDENCE, MOST_CONFIDENCE
 from reliability_app.engine.families import CATALOGUE
 from reliability_app.session.document import Basis
 from reliability_app.session.edits import ChangeBasis, Edit
 from reliability_app.session.wording import BOUND_TITLES, SIDE_TITLES, as_given
+from reliability_app.windows.entry_line import EntryLine
 
 USUAL_CONFIDENCES = (0.80, 0.90, 0.95, 0.99)
 
@@ -28,6 +29,9 @@ class BasisPanel(QGroupBox):
         self.bound = _choice("Bound", [(BOUND_TITLES[kind].capitalize(), kind) for kind in BOUND_KINDS])
         self.confidence = _choice("Confidence", [(_percent(level), level) for level in USUAL_CONFIDENCES])
         self.side = _choice("Side", [(title.capitalize(), side) for side, title in SIDE_TITLES.items()])
+        self.trouble = QLabel()
+        self.trouble.setWordWrap(True)
+        self.trouble.hide()
         self._make_confidence_editable()
         layout = QFormLayout(self)
         layout.setFieldGrowthPolicy(QFormLayout.FieldGrowthPolicy.AllNonFixedFieldsGrow)
@@ -38,6 +42,7 @@ class BasisPanel(QGroupBox):
             ("Si&de", self.side),
         ):
             layout.addRow(label, field)
+        layout.addRow(self.trouble)
         self.family.activated.connect(lambda: self._choose(family=self.family.currentData()))
         self.bound.activated.connect(lambda: self._choose(bound=self.bound.currentData()))
         self.side.activated.connect(lambda: self._choose(side=self.side.currentData()))
@@ -54,7 +59,7 @@ class BasisPanel(QGroupBox):
     def _make_confidence_editable(self) -> None:
         self.confidence.setEditable(True)
         self.confidence.setInsertPolicy(QComboBox.InsertPolicy.NoInsert)
-        line = QLineEdit()
+        line = EntryLine()
         line.setAccessibleName("Confidence in percent")
         line.editingFinished.connect(self._take_confidence)
         self.confidence.setLineEdit(line)
@@ -64,10 +69,16 @@ class BasisPanel(QGroupBox):
     def _take_confidence(self) -> None:
         text = self.confidence.currentText().replace("%", "").replace(",", ".").strip()
         try:
-            level = round(float(text) / 100.0, 12)
+            given = float(text)
         except ValueError:
-            level = 0.0
-        if 0.5 < level <= 0.999999:
+            given = 0.0
+        level = round(given if 0.5 < given < 1.0 else given / 100.0, 12)
+        usable = LEAST_CONFIDENCE < level <= MOST_CONFIDENCE
+        self.trouble.setText(
+            f"{self.confidence.currentText()!r} cannot be used: type a percent above 50 and below 100."
+        )
+        self.trouble.setVisible(not usable)
+        if usable:
             self._choose(confidence=level)
         self.confidence.setEditText(_percent(self._basis.confidence))
 

@@ -9,7 +9,6 @@ from PySide6.QtGui import QGuiApplication
 from PySide6.QtWidgets import (
     QHBoxLayout,
     QLabel,
-    QLineEdit,
     QPushButton,
     QSizePolicy,
     QSplitter,
@@ -18,11 +17,12 @@ from PySide6.QtWidgets import (
 )
 
 from reliability_app.session.analysis import SetAnalysis
-from reliability_app.session.ask_text import AskUnreadable, read_ask
-from reliability_app.session.document import Ask, LifeAsk
+from reliability_app.session.ask_text import AskUnreadable, example_asks, read_ask
+from reliability_app.session.document import Ask
 from reliability_app.session.edits import ChangeAsks, Edit
 from reliability_app.session.plain_output import cautions_of, statement
-from reliability_app.session.wording import basis_text, reading_sentence
+from reliability_app.session.wording import basis_text, parameters_text, reading_sentence
+from reliability_app.windows.entry_line import EntryLine
 from reliability_app.windows.panels.cautions_view import CautionsView
 from reliability_app.windows.panels.readings_table import ReadingsTable
 
@@ -45,6 +45,7 @@ class ReadingPanel(QWidget):
         self._asks: tuple[Ask, ...] = ()
         self.sentence = _text("Reading sentence", 1.25)
         self.rests_on = _text("What the reading rests on", 1.0)
+        self.parameters = _text("Fitted parameters", 1.0)
         self.copy_button = QPushButton("Copy")
         self.copy_button.setAccessibleName("Copy the reading with its basis and cautions")
         self.copy_button.setToolTip("Copy the reading with its basis and cautions")
@@ -54,7 +55,7 @@ class ReadingPanel(QWidget):
         self.stop_button.setAccessibleName("Stop calibrating and keep the provisional bound")
         self._show_progress(False)
         self.table = ReadingsTable()
-        self.new_ask = QLineEdit()
+        self.new_ask = EntryLine()
         self.new_ask_trouble = QLabel()
         self.cautions = CautionsView()
         self._lay_out()
@@ -83,8 +84,11 @@ class ReadingPanel(QWidget):
         else:
             self.sentence.setText(reading_sentence(main, question.life_unit))
             self.rests_on.setText(f"({basis_text(question.basis, question.counts, main)})")
+        self.parameters.setText(parameters_text(analysis.fit))
+        self.parameters.setVisible(bool(self.parameters.text()))
+        self.new_ask.setPlaceholderText(example_asks(question.life_unit))
         self.copy_button.setEnabled(main is not None)
-        self.table.show_readings(analysis.readings, question.life_unit)
+        self.table.show_analysis(analysis)
         self.cautions.show_cautions(cautions_of(analysis) if question.units.rows else ())
 
     def show_progress(self, steps: int) -> None:
@@ -111,6 +115,16 @@ class ReadingPanel(QWidget):
         if self._analysis is not None:
             QGuiApplication.clipboard().setText(statement(self._analysis))
 
+    def show_failure(self) -> None:
+        """Show that there is no answer, because the analysis failed."""
+        self._stale.stop()
+        self._analysis = None
+        self._show_progress(False)
+        self.setEnabled(False)
+        self.sentence.setText("No reading: the analysis failed.")
+        self.rests_on.setText("")
+        self.parameters.setText("")
+
     def _turn_pale(self) -> None:
         self.rests_on.setText("Computing: what stands above is out of date.")
         self.setEnabled(False)
@@ -124,26 +138,23 @@ class ReadingPanel(QWidget):
             self.new_ask_trouble.show()
             return
         self.new_ask_trouble.hide()
-        self.new_ask.clear()
+        self.new_ask.setText("")
         if ask not in self._asks:
             self._change_asks((*self._asks, ask))
 
     def _make_main(self, place: int) -> None:
-        ask = self._asks[place]
-        if isinstance(ask, LifeAsk) and place:
+        if place > 0:
+            ask = self._asks[place]
             self._change_asks((ask, *(other for other in self._asks if other != ask)))
 
     def _remove(self, place: int) -> None:
-        left = tuple(ask for at, ask in enumerate(self._asks) if at != place)
-        lives = [ask for ask in left if isinstance(ask, LifeAsk)]
-        if lives:
-            self._change_asks((lives[0], *(ask for ask in left if ask != lives[0])))
+        if len(self._asks) > 1:
+            self._change_asks(tuple(ask for at, ask in enumerate(self._asks) if at != place))
 
     def _change_asks(self, asks: tuple[Ask, ...]) -> None:
         self._push_edit(ChangeAsks(self._asks, asks))
 
     def _lay_out(self) -> None:
-        self.new_ask.setPlaceholderText("Add: 20 %, 1500 h, or hazard 1500 h")
         self.new_ask.setAccessibleName("Add a reading: a percent, an age, or hazard and an age")
         self.new_ask_trouble.setWordWrap(True)
         self.new_ask_trouble.hide()
@@ -165,6 +176,7 @@ class ReadingPanel(QWidget):
         layout.setContentsMargins(8, 6, 8, 6)
         layout.addLayout(top)
         layout.addWidget(self.rests_on)
+        layout.addWidget(self.parameters)
         slow = QHBoxLayout()
         slow.addWidget(self.progress, 1)
         slow.addWidget(self.stop_button)

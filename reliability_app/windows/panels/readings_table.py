@@ -9,11 +9,12 @@ from PySide6.QtGui import QAction, QGuiApplication, QKeySequence
 from PySide6.QtWidgets import QAbstractItemView, QHeaderView, QTableView, QWidget
 
 from reliability_app.engine.cautions import Severity
-from reliability_app.session.document import LifeAsk
+from reliability_app.session.analysis import SetAnalysis
 from reliability_app.session.picture import Reading
 from reliability_app.session.plain_output import readings_as_tab_separated
-from reliability_app.session.wording import ask_title, value_text
+from reliability_app.session.wording import SAFE_SIDES, Toward, ask_title, value_text
 
+_ROUNDED: tuple[Toward, ...] = ("nearest", *SAFE_SIDES)
 _HEADINGS = ("Reading", "Estimate", "Lower", "Upper", "")
 _DISPLAY, _TIP = Qt.ItemDataRole.DisplayRole, Qt.ItemDataRole.ToolTipRole
 _ALIGN, _FONT = Qt.ItemDataRole.TextAlignmentRole, Qt.ItemDataRole.FontRole
@@ -70,11 +71,12 @@ class ReadingsModel(QAbstractTableModel):
         if column == 4:
             return "!" if any(caution.severity >= Severity.CAUTION for caution in reading.cautions) else ""
         value = (reading.estimate, reading.lower, reading.upper)[column - 1]
-        return "" if value is None else value_text(reading.ask, value, self.life_unit)
+        toward = _ROUNDED[column - 1]
+        return "" if value is None else value_text(reading.ask, value, self.life_unit, toward=toward)
 
 
 class ReadingsTable(QTableView):
-    """Shows the readings; Enter or a double click on a life makes it the main reading, Delete takes one away."""
+    """Shows the readings; Enter or a double click makes one the main reading, Delete takes one away."""
 
     main_chosen = Signal(int)
     removal_asked = Signal(int)
@@ -82,6 +84,7 @@ class ReadingsTable(QTableView):
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__(parent)
         self._model = ReadingsModel(self)
+        self._analysis: SetAnalysis | None = None
         self.setModel(self._model)
         self.setAccessibleName("Readings")
         self.setSelectionBehavior(QAbstractItemView.SelectionBehavior.SelectRows)
@@ -92,24 +95,27 @@ class ReadingsTable(QTableView):
         self.setTabKeyNavigation(False)
         header = self.horizontalHeader()
         header.setSectionResizeMode(QHeaderView.ResizeMode.ResizeToContents)
-        header.setSectionResizeMode(0, QHeaderView.ResizeMode.Stretch)
+        header.setStretchLastSection(True)
         self.verticalHeader().setDefaultSectionSize(self.fontMetrics().height() + 6)
         self._add_actions()
         self.doubleClicked.connect(lambda index: self.main_chosen.emit(index.row()))
 
-    def show_readings(self, readings: Sequence[Reading], life_unit: str) -> None:
-        """Show these readings, keeping the row selected."""
-        row = self.currentIndex().row()
-        self._model.show_readings(readings, life_unit)
+    def show_analysis(self, analysis: SetAnalysis) -> None:
+        """Show the readings of an analysis; the row selected stays, or the last where one was added."""
+        self._analysis = analysis
+        readings, before = analysis.readings, self._model.rowCount()
+        row = self.currentIndex().row() if len(readings) <= before or not before else len(readings) - 1
+        self._model.show_readings(readings, analysis.question.life_unit)
         self.setColumnHidden(2, all(reading.lower is None for reading in readings))
         self.setColumnHidden(3, all(reading.upper is None for reading in readings))
         if 0 <= row < len(readings):
             self.selectRow(row)
+            self.scrollTo(self._model.index(row, 0))
 
     def copy_all(self) -> None:
         """Copy all readings with headings as tab-separated text."""
-        text = readings_as_tab_separated(self._model.readings, self._model.life_unit)
-        QGuiApplication.clipboard().setText(text)
+        if self._analysis is not None:
+            QGuiApplication.clipboard().setText(readings_as_tab_separated(self._analysis))
 
     def _add_actions(self) -> None:
         self.setContextMenuPolicy(Qt.ContextMenuPolicy.ActionsContextMenu)
@@ -123,7 +129,3 @@ class ReadingsTable(QTableView):
             action.setShortcutContext(Qt.ShortcutContext.WidgetShortcut)
             action.triggered.connect(lambda _=False, act=act: act(self.currentIndex().row()))
             self.addAction(action)
-
-    def can_be_main(self, row: int) -> bool:
-        """True for a life, which the reading line can mark."""
-        return isinstance(self._model.readings[row].ask, LifeAsk)

@@ -190,7 +190,12 @@ class GridView(QTableView):
             if self._tab_start is None:
                 self._tab_start = section
             tab_start = self._tab_start
-            self._move_by(step)
+            last = self._model.columnCount() - 1
+            if step is Step.RIGHT and section == last and row + 1 < self._model.rowCount():
+                # Past the last column goes on in the next row, where the run began.
+                self._go_within_table(row + 1, tab_start)
+            else:
+                self._move_by(step)
             self._tab_start = tab_start
             return
         start = self._tab_start if self._tab_start is not None and step is Step.DOWN else section
@@ -330,6 +335,7 @@ class GridView(QTableView):
         rows.setAccessibleName("Row numbers")
         columns.setAccessibleName("Columns")
         columns.setHighlightSections(False)
+        columns.setTextElideMode(Qt.TextElideMode.ElideRight)
         rows.setHighlightSections(False)
         columns.setContextMenuPolicy(Qt.ContextMenuPolicy.CustomContextMenu)
         rows.setContextMenuPolicy(Qt.ContextMenuPolicy.CustomContextMenu)
