@@ -14,7 +14,7 @@ import numpy as np
 from numpy.typing import NDArray
 from scipy.special import ndtri
 
-from reliability_app.engine.bounds.calibrated import FEWEST_FAILURES, Calibrator, Proceed
+from reliability_app.engine.bounds.calibrated import Calibrator, Proceed
 from reliability_app.engine.bounds.constrained import curve_of, maximise_along
 from reliability_app.engine.bounds.wald import wald_end
 from reliability_app.engine.errors import BoundUnavailable
@@ -22,6 +22,7 @@ from reliability_app.engine.fit_result import Fit
 from reliability_app.engine.fitting import fit
 from reliability_app.engine.life_data import LifeData
 from reliability_app.engine.life_measures import LifeMeasure
+from reliability_app.engine.refitting import FEWEST_FAILURES
 from reliability_app.engine.sample import Sample
 from reliability_app.engine.simulation import Draws, draw_sample, plan_of
 

@@ -22,7 +22,7 @@ class Estimate:
     Attributes
     ----------
     a, b : float
-        -mu/sigma and 1/sigma of the standardised logarithm of life.
+        -mu/sigma and 1/sigma on the standardised line of the family.
     terms : Terms
         Log-likelihood (without Jacobian) and derivatives there, each of shape (1,).
     gradient_norm, decrement, steps
@@ -40,12 +40,12 @@ class Estimate:
 
     @property
     def mu(self) -> float:
-        """Location of ln life."""
+        """Location on the line of the family: of ln life, or of life itself."""
         return self.sample.shift - self.sample.spread * self.a / self.b
 
     @property
     def sigma(self) -> float:
-        """Spread of ln life."""
+        """Spread on the line of the family."""
         return self.sample.spread / self.b
 
     @property
@@ -62,8 +62,8 @@ class Estimate:
     def log_likelihood(self) -> float:
         """Log-likelihood of the lives themselves."""
         failures = float(self.sample.failed.total[0])
-        jacobian = failures * np.log(self.sample.spread) + self.sample.sum_log_life[0]
-        return float(self.terms.value[0] - jacobian)
+        jacobian = self.sample.log_slope[0] - failures * np.log(self.sample.spread)
+        return float(self.terms.value[0] + jacobian)
 
     @cached_property
     def covariance_ab(self) -> Array:

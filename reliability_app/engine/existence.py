@@ -61,7 +61,7 @@ def outcome_before_fitting(data: LifeData, family: Family) -> Outcome:
     failures = ~data.is_running
     if not failures.any():
         return Outcome.NO_FAILURE
-    if not (data.lower > 0).any():
+    if not (data.lower > family.life_scale.origin).any():
         return Outcome.FAILED_BEFORE_FIRST_LOOK
     if family.fixed_sigma is not None:
         return Outcome.ESTIMATED

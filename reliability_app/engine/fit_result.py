@@ -15,7 +15,7 @@ from reliability_app.engine.cautions import Caution
 from reliability_app.engine.errors import DataError, NoEstimate, UnknownName
 from reliability_app.engine.estimate import Estimate
 from reliability_app.engine.existence import Outcome
-from reliability_app.engine.families import Family
+from reliability_app.engine.families import Family, Rule
 from reliability_app.engine.fit_cautions import cautions_of_fit
 from reliability_app.engine.life_data import LifeData
 from reliability_app.engine.life_measures import (
@@ -109,6 +109,13 @@ class Fit:
             return None
         return -2.0 * self.estimate.log_likelihood + 2.0 * count * units / (units - count - 1)
 
+    @property
+    def bic(self) -> float | None:
+        """Schwarz's criterion (1978, Ann. Statist. 6, 461-464), a parameter costing the logarithm of all units."""
+        if self.estimate is None:
+            return None
+        return -2.0 * self.estimate.log_likelihood + self.family.parameter_count * float(np.log(self.data.unit_count))
+
     @cached_property
     def cautions(self) -> tuple[Caution, ...]:
         """What must be known before relying on anything read off this fit."""
@@ -157,15 +164,14 @@ class Fit:
 
     def density(self, age: ArrayLike) -> Number:
         """Return the probability density at `age`, per unit of age."""
-        z = self.score(age)
-        ages = np.atleast_1d(np.asarray(age, dtype=np.float64))
-        log_density = self.family.standard.log_density(z).value
-        return _like(age, np.exp(log_density) / (self._found().sigma * ages))
+        found, y = self._found(), self._y(age)
+        log_density = self.family.standard.log_density(found.a + found.b * y).value
+        return _like(age, found.b * np.exp(log_density + found.sample.log_slope_at(y)))
 
     def mean_life(self) -> float:
-        """Return the mean life of the fitted distribution."""
+        """Return the mean life of the fitted distribution; infinite where its tail is too heavy for one."""
         found = self._found()
-        return float(np.exp(found.mu + self.family.standard.log_moment(np.array(found.sigma))))
+        return self.family.mean_life(found.mu, found.sigma)
 
     def conditional_reliability(self, age: ArrayLike, *, given: float) -> Number:
         """Return the share of the units running at `given` that are still running at `age` (age >= given)."""
@@ -195,7 +201,7 @@ class Fit:
             sigma = np.ones_like(value) if rule.is_of_mu else sample.spread * np.exp(-value)
             return np.array([rule.of(*pair) for pair in zip(mu.tolist(), sigma.tolist(), strict=True)])
 
-        return self._ends(measure, customary, 0.0, (kind, side, confidence), falling=name == "sigma")
+        return self._ends(measure, customary, 0.0, (kind, side, confidence), falling=rule is Rule.SIGMA)
 
     @cached_property
     def bounder(self) -> Bounder:
@@ -231,8 +237,10 @@ class Fit:
 
     def _y(self, age: ArrayLike) -> Array:
         ages = np.atleast_1d(np.asarray(age, dtype=np.float64))
-        if not ((ages > 0) & np.isfinite(ages)).all():
-            raise DataError(["An age must be a positive number."])
+        life_scale = self.family.life_scale
+        if not life_scale.admits(ages).all():
+            kind = "positive" if np.isfinite(life_scale.origin) else "finite"
+            raise DataError([f"An age must be a {kind} number."])
         return self._found().sample.to_y(ages)
 
     def score(self, age: ArrayLike) -> Array:
@@ -241,8 +249,7 @@ class Fit:
         return found.a + found.b * self._y(age)
 
     def _age_of(self, y: Array) -> Array:
-        sample = self._found().sample
-        return np.exp(sample.shift + sample.spread * y)
+        return self._found().sample.to_age(y)
 
     def score_measure(self, age: ArrayLike) -> ScoreMeasure:
         """Return z at `age` as a measure to be bounded."""
@@ -254,9 +261,8 @@ class Fit:
 
     def hazard_of(self, age: ArrayLike) -> Callable[[Array], Array]:
         """Return the function that turns the hazard measure at `age` into a hazard rate."""
-        ages = np.atleast_1d(np.asarray(age, dtype=np.float64))
-        spread = self._found().sample.spread
-        return lambda log_hazard: np.exp(log_hazard) / (spread * ages)
+        log_slope = self._found().sample.log_slope_at(self._y(age))
+        return lambda log_hazard: np.exp(log_hazard + log_slope)
 
 
 def reading_ends(end: Callable[[float], Array], asked: ArrayLike, side: str, *, lowest: float) -> Ends:

@@ -19,6 +19,7 @@ Array = NDArray[np.float64]
 # A larger sample is first climbed on a part of it; from there the whole needs two or three steps instead of six.
 _THIN_ABOVE = 40_000
 _THIN_TO = 4_000
+_FURTHEST_START = 30.0
 
 
 def fit(data: LifeData, family_name: str) -> Fit:
@@ -39,12 +40,15 @@ def fit(data: LifeData, family_name: str) -> Fit:
     ------
     UnknownName
         If there is no such family.
+    DataError
+        If the family is one of ln life, and some lives are not positive.
     """
     chosen = family(family_name)
+    data.check_beyond(chosen.life_scale.origin, chosen.title)
     outcome = outcome_before_fitting(data, chosen)
     if outcome is not Outcome.ESTIMATED:
         return Fit(data, chosen, outcome, None)
-    sample = sample_of(data)
+    sample = sample_of(data, chosen.life_scale)
     top = fit_batch(sample, chosen)
     if not top.converged[0]:
         return Fit(data, chosen, Outcome.NOT_CONVERGED, None)
@@ -87,13 +91,19 @@ def _climb(sample: Sample, chosen: Family, a: Array, b: Array) -> Maximum:
 
 
 def _starts(sample: Sample, chosen: Family) -> tuple[Array, Array]:
-    """Start where half of the share failed lies at the mean of the failures, with their own spread."""
+    """Start where half of the share failed lies at the mean of the failures, with their own spread.
+
+    A wider spread is taken where some unit would lie so far out that its tail underflows.
+    """
     failures = _failures(sample)
     share = failures / (failures + sample.running.total)
     a = chosen.standard.quantile(np.clip(0.5 * share, 1e-12, 0.5))
     sigma = chosen.fixed_sigma
-    b = np.full_like(a, 1.0 if sigma is None else sample.spread / sigma)
-    return a, b
+    if sigma is not None:
+        return a, np.full_like(a, sample.spread / sigma)
+    places = (sample.failed.y, sample.running.y, sample.left.y, sample.between.middle)
+    furthest = max(max(float(y.max()), -float(y.min())) for y in places if y.size)
+    return a, np.full_like(a, min(1.0, _FURTHEST_START / max(furthest, 1.0)))
 
 
 def _failures(sample: Sample) -> Array:

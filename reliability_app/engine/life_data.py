@@ -21,9 +21,17 @@ class LifeData:
     """What is known of the lives of some units, in one unit of age.
 
     Build it with `right_censored` or `from_intervals`; both validate. The invariant afterwards: all arrays have shape
-    (n,), n >= 1, are not writable, and for each record 0 <= entered < upper and
-    failed: 0 < lower == upper; running: 0 < lower, upper = inf; found failed: 0 <= lower < upper < inf;
+    (n,), n >= 1, are not writable, and for each record
+    failed: lower == upper; running: lower finite, upper = inf; found failed: lower < upper < inf;
+    0 <= entered < upper, where 0 says that the unit was watched from the beginning;
     quantity is a whole number >= 1.
+
+    A unit found failed of which nothing was known before has lower = 0 (it failed after age 0) or lower = -inf (nothing
+    is known). For a family of ln life the two are one, F(upper); for a family of life itself the first is
+    F(upper) - F(0), the second F(upper).
+
+    Ages of 0 and below are let in: a family of life itself can be fitted to differences or logarithms too. A family of
+    ln life refuses them when it is fitted (`check_beyond`).
     """
 
     lower: Array
@@ -45,7 +53,7 @@ class LifeData:
         Parameters
         ----------
         life : array_like, shape (n,)
-            Age at failure, or age reached so far; positive.
+            Age at failure, or age reached so far.
         failed : array_like of bool, shape (n,)
         quantity : array_like of whole numbers, shape (n,), optional
             Identical units per record; 1 if not given.
@@ -80,7 +88,7 @@ class LifeData:
         ----------
         lower, upper : array_like, shape (n,)
             failed: lower == upper; running: upper = inf; found failed between two ages: lower < upper;
-            found failed at the first look: lower = 0.
+            found failed at the first look: lower = 0, or -inf where not even that is known.
         quantity, entered : array_like, shape (n,), optional
             As in `right_censored`.
 
@@ -107,6 +115,18 @@ class LifeData:
         for array in (lower, upper, counts, starts):
             array.flags.writeable = False
         return cls(lower, upper, counts, starts)
+
+    def check_beyond(self, origin: float, title: str) -> None:
+        """Raise DataError where a record cannot belong to lives that all lie beyond `origin`, as those of a family do.
+
+        Lower ends of minus infinity, and those at `origin` of units found failed, are in order.
+        """
+        if self.lower.min() > origin:
+            return
+        seen = np.where(np.isneginf(self.lower) | ((self.lower == origin) & self.is_found_failed), self.upper, self.lower)
+        wrong = (seen <= origin) & np.isfinite(origin)
+        if wrong.any():
+            raise DataError([_fault(wrong, f"the life is not above {origin:g}, as the {title} family has it")])
 
     @cached_property
     def is_failed(self) -> Mask:
@@ -173,10 +193,9 @@ def _vector(values: ArrayLike, name: str) -> Array:
 def _faults(lower: Array, upper: Array, quantity: Array, entered: Array) -> list[str]:
     running, exact = np.isposinf(upper), lower == upper
     finite = np.isfinite(lower)
+    unseen = np.isneginf(lower) & np.isfinite(upper)
     checks = (
-        (~finite | np.isnan(upper), "the life is not a finite number"),
-        (finite & (lower < 0), "the life is negative"),
-        (finite & (lower == 0) & (running | exact), "the life is 0; it must be positive"),
+        (~(finite | unseen) | np.isnan(upper), "the life is not a finite number"),
         (finite & (upper < lower), "the upper age is below the lower age"),
         (~((quantity >= 1) & (quantity == np.floor(quantity)) & np.isfinite(quantity)),
          "the quantity is not a whole number of 1 or more"),

@@ -1,4 +1,4 @@
-"""Samples on the standardised logarithmic scale: what the likelihood sums over, with a leading batch axis."""
+"""Samples on the standardised line of a family: what the likelihood sums over, with a leading batch axis."""
 
 from __future__ import annotations
 
@@ -10,6 +10,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from reliability_app.engine.life_data import LifeData, Mask
+from reliability_app.engine.life_scale import LOG_LIFE, LifeScale
 
 Array = NDArray[np.float64]
 Index = NDArray[np.intp] | Mask
@@ -89,9 +90,11 @@ NO_INTERVALS = IntervalPart(_NOTHING, _NOTHING, _NOTHING)
 
 @dataclass(frozen=True, eq=False)
 class Sample:
-    """A batch of censored samples in y = (ln life - shift)/spread.
+    """A batch of censored samples in y = (x - shift)/spread, with x the place of a life on the line `life_scale`.
 
-    `left` holds units found failed at their first look; `entered` the entry ages of units that came late.
+    `left` holds units found failed of which nothing was known before; `entered` the entry ages of units that came late.
+    `log_slope`, shape (rows,), is the sum over the failures of ln(dx/d life): what the log-likelihood on the line lacks
+    of that of the lives themselves.
     """
 
     failed: Part
@@ -101,11 +104,12 @@ class Sample:
     entered: Part
     shift: float
     spread: float
-    sum_log_life: Array
+    log_slope: Array
+    life_scale: LifeScale = LOG_LIFE
 
     def rows(self, index: Index) -> Sample:
         """Return the chosen samples of the batch."""
-        total = self.sum_log_life if self.sum_log_life.shape[0] == 1 else self.sum_log_life[index]
+        log_slope = self.log_slope if self.log_slope.shape[0] == 1 else self.log_slope[index]
         return Sample(
             self.failed.rows(index),
             self.running.rows(index),
@@ -114,12 +118,21 @@ class Sample:
             self.entered.rows(index),
             self.shift,
             self.spread,
-            total,
+            log_slope,
+            self.life_scale,
         )
 
     def to_y(self, age: Array) -> Array:
-        """Return the standardised logarithm of an age."""
-        return (np.log(age) - self.shift) / self.spread
+        """Return the standardised place of an age."""
+        return (self.life_scale.to_line(age) - self.shift) / self.spread
+
+    def to_age(self, y: Array) -> Array:
+        """Return the age at a standardised place."""
+        return self.life_scale.from_line(self.shift + self.spread * y)
+
+    def log_slope_at(self, y: Array) -> Array:
+        """Return ln(dy/d age) at a standardised place: what turns a density or hazard over y into one over age."""
+        return self.life_scale.log_slope(self.shift + self.spread * y) - np.log(self.spread)
 
     def thinned(self, most: int) -> Sample:
         """Return every k-th record of the large parts: a quick first look at a very large sample."""
@@ -131,48 +144,52 @@ class Sample:
             self.entered,
             self.shift,
             self.spread,
-            self.sum_log_life,
+            self.log_slope,
+            self.life_scale,
         )
 
 
-def sample_of(data: LifeData) -> Sample:
-    """Return the one sample of `data`, coincident records summed once, centred on the failures."""
+def sample_of(data: LifeData, life_scale: LifeScale = LOG_LIFE) -> Sample:
+    """Return the one sample of `data` on a line, coincident records summed once, centred on the failures."""
     failed, running, found = data.is_failed, data.is_running, data.is_found_failed
-    weight, log_failed = data.quantity, np.log(data.lower[failed])
-    shift, spread = _centre(log_failed, data)
+    first_seen = data.lower > life_scale.origin
+    weight, failures = data.quantity, life_scale.to_line(data.lower[failed])
+    shift, spread = _centre(failures, data, life_scale)
 
     def part(age: Array, chosen: Mask) -> Part:
-        return _summed((np.log(age[chosen]) - shift) / spread, weight[chosen]) if chosen.any() else NO_PART
+        return _summed((life_scale.to_line(age[chosen]) - shift) / spread, weight[chosen]) if chosen.any() else NO_PART
 
     return Sample(
-        failed=_summed((log_failed - shift) / spread, weight[failed]),
+        failed=_summed((failures - shift) / spread, weight[failed]),
         running=part(data.lower, running),
-        between=_between(data, found & (data.lower > 0), shift, spread) if found.any() else NO_INTERVALS,
-        left=part(data.upper, found & (data.lower == 0)) if found.any() else NO_PART,
+        between=_between(data, found & first_seen, (shift, spread), life_scale) if found.any() else NO_INTERVALS,
+        left=part(data.upper, found & ~first_seen) if found.any() else NO_PART,
         entered=part(data.entered, data.entered > 0),
         shift=shift,
         spread=spread,
-        sum_log_life=np.array([float(weight[failed] @ log_failed)]),
+        log_slope=np.array([float(weight[failed] @ life_scale.log_slope(failures))]),
+        life_scale=life_scale,
     )
 
 
-def _between(data: LifeData, chosen: Mask, shift: float, spread: float) -> IntervalPart:
+def _between(data: LifeData, chosen: Mask, centre: tuple[float, float], life_scale: LifeScale) -> IntervalPart:
     lower, upper = data.lower[chosen], data.upper[chosen]
-    # From the ratio of the ages, so that the narrowest interval keeps its width to the last digit.
-    half = 0.5 * np.log1p((upper - lower) / lower)
-    middle = (np.log(lower) + half - shift) / spread
+    shift, spread = centre
+    half = life_scale.half_width(lower, upper)
+    middle = (life_scale.to_line(lower) + half - shift) / spread
     return IntervalPart(middle[None], (half / spread)[None], data.quantity[chosen][None])
 
 
-def _centre(log_failed: Array, data: LifeData) -> tuple[float, float]:
-    """Return a location and a spread of ln life that make the standardised parameters moderate."""
-    if log_failed.size == 0:
-        ends = np.where(data.is_running, data.lower, data.upper)
-        log_failed = np.log(ends[np.isfinite(ends)])
-    shift, spread = float(log_failed.mean()), float(log_failed.std())
-    largest = float(np.abs(log_failed - shift).max(initial=0.0))
-    # Lives equal to the last digit have no spread of their own; 1 keeps the scale as it is.
-    return shift, spread if spread > 1e-12 * max(1.0, abs(shift)) and largest > 0 else 1.0
+def _centre(failures: Array, data: LifeData, life_scale: LifeScale) -> tuple[float, float]:
+    """Return a location and a spread on the line that make the standardised parameters moderate."""
+    ends = np.where(data.is_running, data.lower, data.upper)
+    places = failures if failures.size else life_scale.to_line(ends)
+    shift, spread = float(places.mean()), float(places.std())
+    if spread > life_scale.rounding(shift) and spread > 0:
+        return shift, spread
+    # Failures equal to the last digit have no spread of their own.
+    spread = float(life_scale.to_line(ends).std())
+    return shift, spread if spread > life_scale.rounding(shift) and spread > 0 else 1.0
 
 
 def _summed(y: Array, weight: Array) -> Part:

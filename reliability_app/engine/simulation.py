@@ -12,6 +12,7 @@ from reliability_app.engine.empirical import removal_steps
 from reliability_app.engine.errors import BoundUnavailable
 from reliability_app.engine.families import StandardDistribution
 from reliability_app.engine.life_data import LifeData
+from reliability_app.engine.life_scale import LOG_LIFE, LifeScale
 from reliability_app.engine.sample import NO_INTERVALS, NO_PART, Part, Sample
 
 Array = NDArray[np.float64]
@@ -28,7 +29,7 @@ class PlanKind(Enum):
 
 @dataclass(frozen=True, eq=False)
 class CensoringPlan:
-    """The plan under which a set of units was watched, as far as the data show it.
+    """The plan under which a set of units was watched, as far as the data show it, in places on the line of a family.
 
     Attributes
     ----------
@@ -37,12 +38,12 @@ class CensoringPlan:
     failures : int
         For a fixed number of failures: that number.
     end : float
-        For a fixed time: the logarithm of that age.
+        For a fixed time: its place.
     known_end, drawn_beyond : ndarray, shape (units,)
-        For staggered removals: the logarithm of the age at which a unit would leave, NaN where the unit failed first;
-        then the logarithm of its age at failure, beyond which the age at leaving is drawn.
+        For staggered removals: the place at which a unit would leave, NaN where the unit failed first; then that of its
+        failure, beyond which the age at leaving is drawn.
     removal_age, removal_share : ndarray
-        Steps of the Kaplan-Meier estimate of leaving, from which it is drawn: ln age, share still under test after it.
+        Steps of the Kaplan-Meier estimate of leaving, from which it is drawn: place, share still under test after it.
     """
 
     kind: PlanKind
@@ -60,8 +61,8 @@ def can_be_simulated(data: LifeData) -> bool:
     return not (data.is_found_failed.any() or data.entered.any())
 
 
-def plan_of(data: LifeData) -> CensoringPlan:
-    """Return the plan that the data show.
+def plan_of(data: LifeData, life_scale: LifeScale = LOG_LIFE) -> CensoringPlan:
+    """Return the plan that the data show, on the line of a family.
 
     All running units at one age, not below any failure, show a fixed time; if that age is the last failure's, a fixed
     number of failures. Anything else is taken as staggered removals.
@@ -77,7 +78,7 @@ def plan_of(data: LifeData) -> CensoringPlan:
             "late: choose the likelihood bound."
         )
     quantity = data.quantity.astype(np.intp)
-    life, failed = np.log(np.repeat(data.lower, quantity)), np.repeat(data.is_failed, quantity)
+    life, failed = life_scale.to_line(np.repeat(data.lower, quantity)), np.repeat(data.is_failed, quantity)
     running = life[~failed]
     kind = PlanKind.STAGGERED
     if not running.size:
@@ -92,7 +93,7 @@ def plan_of(data: LifeData) -> CensoringPlan:
         end=float(running[0]) if running.size else np.inf,
         known_end=np.where(failed, np.nan, life),
         drawn_beyond=np.where(failed, life, np.nan),
-        removal_age=np.log(age),
+        removal_age=life_scale.to_line(age),
         removal_share=share,
     )
 
@@ -117,7 +118,7 @@ class Draws:
 def draw_sample(
     plan: CensoringPlan, draws: Draws, standard: StandardDistribution, *, a: float, b: float
 ) -> tuple[Sample, Array]:
-    """Return a batch of samples in scores z = a + b ln life, and the number of failures of each."""
+    """Return a batch of samples in scores z = a + b x, x the place of a life, and the number of failures of each."""
     z = standard.quantile(draws.life)
     match plan.kind:
         case PlanKind.COMPLETE:
@@ -140,13 +141,13 @@ def draw_sample(
     dead = failed[:, :width]
     lives = Part(np.where(dead, z[:, :width], 0.0), dead.astype(np.float64))
     sample = Sample(
-        lives, running, NO_INTERVALS, NO_PART, NO_PART, shift=0.0, spread=1.0, sum_log_life=np.zeros(len(z))
+        lives, running, NO_INTERVALS, NO_PART, NO_PART, shift=0.0, spread=1.0, log_slope=np.zeros(len(z))
     )
     return sample, failed.sum(axis=1, dtype=np.float64)
 
 
 def _removals(plan: CensoringPlan, uniform: Array) -> Array:
-    """Return ln ages at leaving: known for units that left, drawn beyond their failure for those that failed first."""
+    """Return places at leaving: known for units that left, drawn beyond their failure for those that failed first."""
     ends = np.broadcast_to(plan.known_end, uniform.shape).copy()
     for unit in np.flatnonzero(np.isnan(plan.known_end)).tolist():
         start = np.searchsorted(plan.removal_age, plan.drawn_beyond[unit], side="left")

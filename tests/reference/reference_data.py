@@ -19,7 +19,7 @@ SET_NAMES = tuple(sorted(path.stem for path in FOLDER.glob("*.json") if path.ste
 
 @dataclass(frozen=True)
 class Units:
-    """Units as intervals: exact if lower == upper, running if upper is infinite, left if lower is 0."""
+    """Units as intervals: exact if lower == upper, running if upper is infinite, left if lower is 0 or minus infinity."""
 
     lower: NDArray[np.float64]
     upper: NDArray[np.float64]
@@ -51,7 +51,7 @@ def units_of(name: str) -> Units:
     columns = reference_set(name)["units"]
     if "life" in columns:
         return right_censored_units(columns["life"], columns["failed"], columns.get("quantity"), columns.get("entered"))
-    lower = [0.0 if value is None else value for value in columns["lower"]]
+    lower = [-np.inf if value is None else value for value in columns["lower"]]
     upper = [np.inf if value is None else value for value in columns["upper"]]
     return interval_units(lower, upper, columns.get("quantity"), columns.get("entered"))
 

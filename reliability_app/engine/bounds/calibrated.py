@@ -24,24 +24,20 @@ from reliability_app.engine.estimate import Estimate
 from reliability_app.engine.families import Family
 from reliability_app.engine.life_data import LifeData
 from reliability_app.engine.life_measures import HazardMeasure, Measure, ScoreMeasure
-from reliability_app.engine.likelihood import Terms, log_likelihood
-from reliability_app.engine.newton import maximise
-from reliability_app.engine.sample import Sample
-from reliability_app.engine.simulation import CensoringPlan, Draws, draw_sample, plan_of
+from reliability_app.engine.refitting import DrawnSamples, samples_at
+from reliability_app.engine.simulation import CensoringPlan, Draws, plan_of
 
 Array = NDArray[np.float64]
 PointAt = Callable[[float], tuple[float, float]]
 Proceed = Callable[[], None]
 """Called between pieces of slow work; raises to end it."""
 
-FEWEST_FAILURES = 3
 # Samples in a batch: fewer where each is large, because then the quantile is smoother and each refit costs more.
 _MOST_SAMPLES, _FEWEST_SAMPLES, _DRAWN_LIVES = 8_000, 1_000, 400_000
 SEED = 20_260_101
 # A quantile from some thousand samples is not known better than this.
 _ROOT_REACHED = 0.004
 _MOST_EVALUATIONS = 12
-_LEAST_SHARE_OF_SAMPLES = 0.05
 _SMALLEST_ROOT, _LARGEST_ROOT = 0.05, 8.0
 
 
@@ -96,40 +92,28 @@ class Calibrator:
 
     def simulated_roots(self, measure: Measure, a: float, b: float, sign: float) -> Array:
         """Return signed roots for the true value of samples drawn at (a, b), for those that would give a reading."""
-        original, standard = self.estimate.sample, self.estimate.family.standard
-        slope = b / original.spread
-        sample, failures = draw_sample(self.plan, self.draws, standard, a=a - slope * original.shift, b=slope)
-        usable = np.flatnonzero(failures >= FEWEST_FAILURES)
-        if usable.size < _LEAST_SHARE_OF_SAMPLES * failures.size:
-            raise BoundUnavailable(
-                "Under this plan hardly any test would see three failures, so the bound cannot be calibrated."
-            )
-        asked = _in_scores(measure, a, b)
-        return signed_roots(sample.rows(usable), failures[usable], self.estimate.family, asked, sign)
+        drawn = samples_at(self.estimate, self.plan, self.draws, a=a, b=b)
+        return signed_roots(drawn, self.estimate.family, _in_scores(measure, a, b), sign)
 
 
 def calibrator_for(estimate: Estimate, data: LifeData) -> Calibrator:
     """Return a calibrator under the plan of the data, with the usual number of samples and the usual seed."""
-    plan = plan_of(data)
+    plan = plan_of(data, estimate.family.life_scale)
     batch = int(np.clip(_DRAWN_LIVES // plan.units, _FEWEST_SAMPLES, _MOST_SAMPLES))
     return Calibrator(estimate, plan, Draws.of(plan, batch, SEED))
 
 
-def signed_roots(sample: Sample, failures: Array, family: Family, measure: Measure, sign: float) -> Array:
+def signed_roots(drawn: DrawnSamples, family: Family, measure: Measure, sign: float) -> Array:
     """Return the signed roots sqrt(2 (l_max - l_constrained)) for the true value of each sample of a batch.
 
-    The samples are in the scores of the model they were drawn from, whose own point is a = 0, b = 1. A root is positive
-    where the estimate lies above the true value for a lower end (sign -1), below it for an upper end (sign 1).
+    A root is positive where the estimate lies above the true value for a lower end (sign -1), below it for an upper end
+    (sign 1).
     """
-    count, fixed = failures.size, family.fixed_sigma is not None
-    standard, own = family.standard, (np.zeros(count), np.ones(count))
+    count, top, evaluate = drawn.failures.size, drawn.fitted_by(family), drawn.likelihood_of(family)
+    own = np.zeros(count), np.ones(count)
     true_value = float(measure.terms(own[0][:1], own[1][:1]).value[0])
 
-    def evaluate(rows: NDArray[np.intp], a: Array, b: Array) -> Terms:
-        return log_likelihood(sample if rows.size == count else sample.rows(rows), standard, a, b)
-
-    top = maximise(evaluate, *own, failures=failures, b_is_fixed=fixed)
-    if fixed:
+    if family.fixed_sigma is not None:
         held, reached = evaluate(np.arange(count), *own).value, top.converged
     else:
         curve = curve_of(measure, true_value)

@@ -4,13 +4,30 @@ from reliability_app.engine.errors import UnknownName
 from reliability_app.engine.families.base import (
     Derivatives,
     Family,
+    Rule,
     StandardDistribution,
 )
 from reliability_app.engine.families.exponential import EXPONENTIAL
+from reliability_app.engine.families.frechet import FRECHET
+from reliability_app.engine.families.largest_extreme_value_family import LARGEST_EXTREME_VALUE
+from reliability_app.engine.families.logistic_family import LOGISTIC
+from reliability_app.engine.families.loglogistic import LOGLOGISTIC
 from reliability_app.engine.families.lognormal import LOGNORMAL
+from reliability_app.engine.families.normal_family import NORMAL
+from reliability_app.engine.families.smallest_extreme_value_family import SMALLEST_EXTREME_VALUE
 from reliability_app.engine.families.weibull import WEIBULL
 
-CATALOGUE: tuple[Family, ...] = (LOGNORMAL, WEIBULL, EXPONENTIAL)
+CATALOGUE: tuple[Family, ...] = (
+    LOGNORMAL,
+    WEIBULL,
+    EXPONENTIAL,
+    LOGLOGISTIC,
+    FRECHET,
+    NORMAL,
+    SMALLEST_EXTREME_VALUE,
+    LARGEST_EXTREME_VALUE,
+    LOGISTIC,
+)
 FAMILY_NAMES: tuple[str, ...] = tuple(entry.name for entry in CATALOGUE)
 
 
@@ -27,6 +44,7 @@ __all__ = [
     "FAMILY_NAMES",
     "Derivatives",
     "Family",
+    "Rule",
     "StandardDistribution",
     "family",
 ]

@@ -11,6 +11,8 @@ from typing import NamedTuple
 import numpy as np
 from numpy.typing import NDArray
 
+from reliability_app.engine.life_scale import LOG_LIFE, PLAIN_LIFE, LifeScale
+
 Array = NDArray[np.float64]
 
 
@@ -28,7 +30,14 @@ class StandardDistribution(ABC):
     Every method takes an array of any shape and returns arrays of the same shape; each function is right to near
     machine precision in both tails. The density must be log-concave, which makes the likelihood concave in
     (-mu/sigma, 1/sigma) (Burridge 1981, J. R. Statist. Soc. B 43, 41-45).
+
+    Attributes
+    ----------
+    mean : float
+        E z.
     """
+
+    mean: float
 
     @abstractmethod
     def log_density(self, z: Array) -> Derivatives:
@@ -103,7 +112,7 @@ class Rule(Enum):
 
 @dataclass(frozen=True)
 class Family:
-    """A family of life distributions in which (ln life - mu)/sigma has a standard distribution.
+    """A family of life distributions in which (ln life - mu)/sigma, or (life - mu)/sigma, has a standard distribution.
 
     Attributes
     ----------
@@ -112,11 +121,13 @@ class Family:
     title : str
         The name on screen.
     standard : StandardDistribution
-        The distribution of (ln life - mu)/sigma.
+        The distribution of (ln life - mu)/sigma or (life - mu)/sigma.
     rules : mapping of str to Rule
         The customary parameters in customary order.
     fixed_sigma : float or None
         The value of sigma where the family fixes it (exponential: 1).
+    of_log_life : bool
+        True where mu and sigma belong to ln life, False where they belong to life itself.
     """
 
     name: str
@@ -124,6 +135,19 @@ class Family:
     standard: StandardDistribution
     rules: Mapping[str, Rule]
     fixed_sigma: float | None = None
+    of_log_life: bool = True
+
+    @property
+    def life_scale(self) -> LifeScale:
+        """The line to which mu and sigma belong."""
+        return LOG_LIFE if self.of_log_life else PLAIN_LIFE
+
+    def mean_life(self, mu: float, sigma: float) -> float:
+        """Return the mean of the lives; infinite where the upper tail is too heavy for one."""
+        if not self.of_log_life:
+            return mu + sigma * self.standard.mean
+        with np.errstate(over="ignore"):
+            return float(np.exp(mu + self.standard.log_moment(np.array(sigma))))
 
     @property
     def parameter_count(self) -> int:

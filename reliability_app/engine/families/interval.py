@@ -33,14 +33,15 @@ class IntervalDerivatives(NamedTuple):
 def log_interval(standard: StandardDistribution, middle: Array, half: Array) -> IntervalDerivatives:
     """Return the log probability of intervals, and its derivatives; all half widths positive."""
     at_middle = standard.log_density(middle)
-    narrow = half * (np.abs(at_middle.first) + 1.0) < _NARROW
+    widest = _NARROW / (np.abs(at_middle.first) + 1.0)
+    narrow = half < widest
     if narrow.all():
         return _integrated(standard, at_middle, middle, half)
     subtracted = _subtracted(standard, middle, half)
     if not narrow.any():
         return subtracted
     # The wide intervals are given a width that does no harm while the narrow ones are integrated.
-    integrated = _integrated(standard, at_middle, middle, np.where(narrow, half, 1e-3))
+    integrated = _integrated(standard, at_middle, middle, np.where(narrow, half, 0.1 * widest))
     return IntervalDerivatives(*(np.where(narrow, *both) for both in zip(integrated, subtracted, strict=True)))
 
 
@@ -70,8 +71,8 @@ def _subtracted(standard: StandardDistribution, middle: Array, half: Array) -> I
     larger, drop = np.where(left, above.value, below.value), -np.abs(above.value - below.value)
     share = -np.expm1(drop)
     rest = np.exp(drop)
-    ratio_low = np.abs(below.first) * np.where(left, rest, 1.0) / share
-    ratio_high = np.abs(above.first) * np.where(left, 1.0, rest) / share
+    ratio_low = _product(np.where(left, rest, 1.0), np.abs(below.first)) / share
+    ratio_high = _product(np.where(left, 1.0, rest), np.abs(above.first)) / share
     ends = standard.log_density(low), standard.log_density(high)
     return _assembled(larger + np.log(share), (ratio_low, ratio_high), ends)
 
@@ -80,6 +81,11 @@ def _tail(standard: StandardDistribution, z: Array, left: NDArray[np.bool_]) -> 
     """Return ln F where `left`, else ln S."""
     cdf, survival = standard.log_cdf(z), standard.log_survival(z)
     return Derivatives(*(np.where(left, *both) for both in zip(cdf, survival, strict=True)))
+
+
+def _product(vanishing: Array, other: Array) -> Array:
+    """Return the product, 0 where the first has underflowed: an end far in a short tail has no part in anything."""
+    return np.multiply(vanishing, other, where=vanishing > 0.0, out=np.zeros_like(vanishing))
 
 
 def _assembled(
@@ -92,7 +98,7 @@ def _assembled(
 ) -> IntervalDerivatives:
     """Put the derivatives together from density over probability at both ends."""
     (ratio_low, ratio_high), (low, high) = ratios, ends
-    bend_low, bend_high = ratio_low * low.first, ratio_high * high.first
+    bend_low, bend_high = _product(ratio_low, low.first), _product(ratio_high, high.first)
     slope = ratio_high - ratio_low if slope is None else slope
     stretch = ratio_high + ratio_low
     return IntervalDerivatives(

@@ -1,4 +1,4 @@
-"""The standard normal distribution: the lognormal family's ln life."""
+"""The standard normal distribution: the lognormal family's ln life, and the normal family's life itself."""
 
 from __future__ import annotations
 
@@ -14,6 +14,8 @@ _ROOT_TWO_OVER_PI = np.sqrt(2.0 / np.pi)
 
 class Normal(StandardDistribution):
     """f(z) = exp(-z^2/2)/sqrt(2 pi)."""
+
+    mean = 0.0
 
     def log_density(self, z: Array) -> Derivatives:
         """Return ln f(z)."""

@@ -17,6 +17,8 @@ _SUBTRACTION_LOSES_BELOW = 1e-2
 class SmallestExtremeValue(StandardDistribution):
     """F(z) = 1 - exp(-exp z)."""
 
+    mean = -float(np.euler_gamma)
+
     def log_density(self, z: Array) -> Derivatives:
         """Return ln f(z) = z - exp z."""
         x = np.exp(z)
