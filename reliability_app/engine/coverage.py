@@ -22,8 +22,7 @@ from reliability_app.engine.fit_result import Fit
 from reliability_app.engine.fitting import fit
 from reliability_app.engine.life_data import LifeData
 from reliability_app.engine.life_measures import LifeMeasure
-from reliability_app.engine.refitting import FEWEST_FAILURES
-from reliability_app.engine.sample import Sample
+from reliability_app.engine.refitting import FEWEST_FAILURES, life_data_of
 from reliability_app.engine.simulation import Draws, draw_sample, plan_of
 
 Array = NDArray[np.float64]
@@ -93,7 +92,7 @@ def coverage_of_life(
         refitted = fit(test, found.family.name)
         if not refitted.converged:
             continue
-        # The tests are in scores, in which the true logarithm of the life is the score itself.
+        # The tests are in scores, in which the true place of the life is the score itself.
         judged = judge(refitted, score, float(score[0]), confidences=(confidence,), batch=inner_tests, seed=place)
         for kind in JUDGED_KINDS:
             held[kind] += judged[kind, confidence, side]
@@ -108,27 +107,19 @@ def coverage_of_life(
 
 
 def simulated_tests(found: Fit, tests: int, seed: int) -> Iterator[LifeData]:
-    """Give tests drawn at the fit under its data's plan, lives in exp(score); those with too few failures left out."""
-    plan = plan_of(found.data)
+    """Give tests drawn at the fit under its data's plan, placed by score; those with too few failures left out."""
+    life_scale = found.family.life_scale
+    plan = plan_of(found.data, life_scale)
     draws = Draws.of(plan, tests, seed)
     estimate = found.bounder.estimate
     a, b = -estimate.mu / estimate.sigma, 1.0 / estimate.sigma
     sample, failures = draw_sample(plan, draws, found.family.standard, a=a, b=b)
     for place in np.flatnonzero(failures >= FEWEST_FAILURES).tolist():
-        yield _data_of(sample, place)
-
-
-def _data_of(sample: Sample, place: int) -> LifeData:
-    failed, running = sample.failed.rows(np.array([place])), sample.running.rows(np.array([place]))
-    y = np.concatenate([failed.y[0], running.y[0]])
-    weight = np.concatenate([failed.weight[0], running.weight[0]])
-    flags = np.concatenate([np.ones(failed.size, dtype=bool), np.zeros(running.size, dtype=bool)])
-    there = weight > 0
-    return LifeData.right_censored(np.exp(y[there]), flags[there], quantity=weight[there])
+        yield life_data_of(sample, place, life_scale)
 
 
 def judge(
-    found: Fit, score: Array, true_log_life: float, *, confidences: tuple[float, ...], batch: int, seed: int
+    found: Fit, score: Array, true_place: float, *, confidences: tuple[float, ...], batch: int, seed: int
 ) -> dict[tuple[str, float, str], bool]:
     """Say for each kind, confidence and side whether the true life at a score lies inside the bound of a fit.
 
@@ -136,17 +127,17 @@ def judge(
     ----------
     score : ndarray, shape (1,)
         z of the fraction failed.
-    true_log_life : float
-        The true logarithm of the life at which that fraction has failed.
+    true_place : float
+        The place, on the line of the family, of the true life at which that fraction has failed.
     batch, seed : int
         Tests simulated for the calibration, and the seed of their draws.
     """
     estimate, measure = found.bounder.estimate, LifeMeasure(score)
-    truth = (true_log_life - estimate.sample.shift) / estimate.sample.spread
+    truth = (true_place - estimate.sample.shift) / estimate.sample.spread
     value = float(measure.terms(np.array([estimate.a]), np.array([estimate.b])).value[0])
     a, b, top = _constrained(found, measure, truth)
     observed = float(np.sqrt(max(2.0 * (float(estimate.terms.value[0]) - top), 0.0)) * np.sign(value - truth))
-    plan = plan_of(found.data)
+    plan = plan_of(found.data, found.family.life_scale)
     roots = Calibrator(estimate, plan, Draws.of(plan, batch, seed)).simulated_roots(measure, a, b, -1.0)
     answer = {}
     for side, sign in (("lower", -1.0), ("upper", 1.0)):

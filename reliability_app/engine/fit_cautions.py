@@ -13,6 +13,7 @@ VERY_FEW_FAILURES = 5
 FEW_FAILURES = 10
 WALD_NEEDS_FAILURES = 50
 LIKELIHOOD_NEEDS_FAILURES = 20
+_NOTICED_BELOW_ZERO = 1e-3
 # Percent of complete tests with so many failures in which the one-sided 95 % lower bound of B10 lay below the true one:
 # own simulation of 40,000 tests a row, the same within half a point for lognormal and Weibull lives (at complete data the
 # share depends on nothing but the number).
@@ -50,6 +51,9 @@ def cautions_of_age(
 ) -> tuple[Caution, ...]:
     """Return the caution for reading at an age, or reading an age, outside what was observed."""
     first, last = data.first_failure, data.last_observation
+    if age <= 0 and first is not None and first > 0:
+        text = "not above 0, where no life can lie; choose a family of ln life, such as lognormal or Weibull."
+        return (Caution("life-not-positive", Severity.SERIOUS, f"{subject}: {text}", subject),)
     if first is not None and age < first:
         where = f"below the first failure ({age_text(first)})"
         code = "below-first-failure"
@@ -60,6 +64,17 @@ def cautions_of_age(
         return ()
     text = f"{where}, so extrapolated and dependent on the family chosen; compare the families."
     return (Caution(code, Severity.CAUTION, f"{subject}: {text}", subject),)
+
+
+def cautions_of_share_below_zero(share: float) -> tuple[Caution, ...]:
+    """Return the caution for a family of life itself that gives a share of positive lives to negative ages."""
+    if share < _NOTICED_BELOW_ZERO:
+        return ()
+    text = (
+        f"This family puts {100 * share:.2g} % of the lives below age 0, so readings at low percents come out too early "
+        "or negative; choose a family of ln life, such as lognormal or Weibull."
+    )
+    return (Caution("lives-below-zero", Severity.CAUTION, text),)
 
 
 def cautions_of_bound(kind: str, data: LifeData) -> tuple[Caution, ...]:

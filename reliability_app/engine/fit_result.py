@@ -16,7 +16,7 @@ from reliability_app.engine.errors import DataError, NoEstimate, UnknownName
 from reliability_app.engine.estimate import Estimate
 from reliability_app.engine.existence import Outcome
 from reliability_app.engine.families import Family, Rule
-from reliability_app.engine.fit_cautions import cautions_of_fit
+from reliability_app.engine.fit_cautions import cautions_of_fit, cautions_of_share_below_zero
 from reliability_app.engine.life_data import LifeData
 from reliability_app.engine.life_measures import (
     HazardMeasure,
@@ -121,7 +121,7 @@ class Fit:
         """What must be known before relying on anything read off this fit."""
         if self.estimate is None:
             return (self.outcome.caution,)
-        return cautions_of_fit(self.data)
+        return cautions_of_fit(self.data) + self._cautions_below_zero()
 
     def life(self, fraction: ArrayLike) -> Number:
         """Return the age by which `fraction` of the units have failed (0.10: the B10 life)."""
@@ -223,6 +223,12 @@ class Fit:
         return reading_ends(
             lambda sign: to_reading(self.bounder.end(measure, kind, tail, sign)), asked, side, lowest=lowest
         )
+
+    def _cautions_below_zero(self) -> tuple[Caution, ...]:
+        first = self.data.first_failure
+        if self.family.of_log_life or first is None or first <= 0:
+            return ()
+        return cautions_of_share_below_zero(float(self.failure_probability(0.0)))
 
     def _found(self) -> Estimate:
         if self.estimate is None:

@@ -93,16 +93,18 @@ def _climb(sample: Sample, chosen: Family, a: Array, b: Array) -> Maximum:
 def _starts(sample: Sample, chosen: Family) -> tuple[Array, Array]:
     """Start where half of the share failed lies at the mean of the failures, with their own spread.
 
-    A wider spread is taken where some unit would lie so far out that its tail underflows.
+    Where some unit would then lie so far out that its tail underflows, start with a wider spread, or, where that is
+    fixed, further up.
     """
     failures = _failures(sample)
     share = failures / (failures + sample.running.total)
     a = chosen.standard.quantile(np.clip(0.5 * share, 1e-12, 0.5))
-    sigma = chosen.fixed_sigma
+    places = [y for y in (sample.failed.y, sample.running.y, sample.left.y, sample.between.middle) if y.size]
+    highest, sigma = max(float(y.max()) for y in places), chosen.fixed_sigma
     if sigma is not None:
-        return a, np.full_like(a, sample.spread / sigma)
-    places = (sample.failed.y, sample.running.y, sample.left.y, sample.between.middle)
-    furthest = max(max(float(y.max()), -float(y.min())) for y in places if y.size)
+        b = sample.spread / sigma
+        return np.minimum(a, _FURTHEST_START - b * highest), np.full_like(a, b)
+    furthest = max(highest, *(-float(y.min()) for y in places))
     return a, np.full_like(a, min(1.0, _FURTHEST_START / max(furthest, 1.0)))
 
 

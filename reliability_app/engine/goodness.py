@@ -4,9 +4,10 @@ No table covers fitted parameters together with censoring, so both statistics ar
 samples drawn from the fit under the set's own plan and fitted anew.
 
 Anderson-Darling, n times the integral of (F_KM - F)^2/(F (1 - F)) dF from 0 to the last unit observed, with F_KM the
-Kaplan-Meier estimate: the product-limit estimate was put into such an integral by Koziol & Green (1976, Biometrika 63,
-465-474), for one common end of test by Pettitt & Stephens (1976, Biometrika 63, 291-298); both cited from memory. For
-complete data the integral runs on to F = 1 and is the classical statistic.
+Kaplan-Meier estimate. Koziol & Green put the product-limit estimate into the like integral without the weight (1976,
+Biometrika 63, 465-474), "Tests based on EDF statistics for randomly censored normal distributions when parameters are
+unknown" (2019, abstract read) into this one; for one common end of test it is Pettitt & Stephens' (1976, Biometrika 63,
+291-298, from memory). For complete data the integral runs on to F = 1 and is the classical statistic.
 
 Plot correlation: the correlation of ln life with the quantiles of the family at the plotting positions, which measures
 how straight the points lie on the paper (Filliben 1975, Technometrics 17, 111-117; for censored data Chen 1984,
@@ -22,10 +23,12 @@ from numpy.typing import NDArray
 
 from reliability_app.engine.batch_survival import BatchSteps, batch_steps
 from reliability_app.engine.bounds import Proceed
-from reliability_app.engine.errors import BoundUnavailable
+from reliability_app.engine.errors import BoundUnavailable, NoEstimate
 from reliability_app.engine.estimate import Estimate
 from reliability_app.engine.families import StandardDistribution
 from reliability_app.engine.fit_result import Fit
+from reliability_app.engine.fitting import fit
+from reliability_app.engine.goodness_one_by_one import NORMAL, REPEATS_ONE_BY_ONE, data_like, scored_steps
 from reliability_app.engine.life_data import LifeData
 from reliability_app.engine.refitting import FEWEST_FAILURES, samples_like
 from reliability_app.engine.simulation import can_be_simulated
@@ -33,6 +36,7 @@ from reliability_app.engine.simulation import can_be_simulated
 Array = NDArray[np.float64]
 
 SEED = 20_260_103
+_LEAST_SHARE_FITTED = 0.05
 
 
 @dataclass(frozen=True)
@@ -82,7 +86,7 @@ def goodness_of(
     Parameters
     ----------
     repeats : int, optional
-        Simulated samples; if not given 1,000, fewer for more than 4,000 units.
+        Simulated samples; if not given 1,000, fewer for more than 1,000 units.
     seed : int
         The same seed gives the same p-values.
     proceed : callable, optional
@@ -93,15 +97,13 @@ def goodness_of(
     NoEstimate
         Without a fit.
     """
-    estimate = found.bounder.estimate
+    if found.estimate is None:
+        raise NoEstimate(found.outcome.caution.text)
     if found.data.is_found_failed.any():
         return Goodness(None, None, 0, _INTERVALS)
-    steps = batch_steps(estimate.sample)
-    standard = estimate.family.standard
-    distance = float(anderson_darling(steps, standard, np.array([estimate.a]), np.array([estimate.b]))[0])
-    straightness = float(plot_correlation(steps, standard)[0])
+    distance, straightness = statistics_of(found)
     try:
-        distances, straightnesses = _simulated(estimate, found.data, repeats, seed, proceed)
+        distances, straightnesses = _simulated(found, repeats, seed, proceed)
     except BoundUnavailable as trouble:
         return _goodness((distance, None), (straightness, None), 0, str(trouble))
     worse = int(np.sum(distances >= distance)), int(np.sum(straightnesses <= straightness))
@@ -157,19 +159,54 @@ def plot_correlation(steps: BatchSteps, standard: StandardDistribution) -> Array
     return np.where(there.sum(axis=1) >= FEWEST_FAILURES, correlation, np.nan)
 
 
-def _simulated(
+def statistics_of(found: Fit) -> tuple[float, float]:
+    """Return Anderson-Darling and plot correlation of a fit with its own data."""
+    estimate = found.estimate
+    if isinstance(estimate, Estimate):
+        steps, standard, a, b = batch_steps(estimate.sample), found.family.standard, estimate.a, estimate.b
+    else:
+        steps, standard, a, b = scored_steps(found), NORMAL, 0.0, 1.0
+    distance = anderson_darling(steps, standard, np.array([a]), np.array([b]))
+    return float(distance[0]), float(plot_correlation(steps, standard)[0])
+
+
+def _simulated(found: Fit, repeats: int | None, seed: int, proceed: Proceed | None) -> tuple[Array, Array]:
+    """Return both statistics of samples drawn at the fit, each at its own fit."""
+    if not can_be_simulated(found.data):
+        raise BoundUnavailable(_NO_PLAN)
+    if found.data.failed_count < FEWEST_FAILURES:
+        raise BoundUnavailable("With fewer than three failures nothing can be said about how well a family fits.")
+    if isinstance(found.estimate, Estimate):
+        return _simulated_in_batches(found.estimate, found.data, repeats, seed, proceed)
+    return simulated_one_by_one(found, repeats=repeats, seed=seed, proceed=proceed)
+
+
+def _simulated_in_batches(
     estimate: Estimate, data: LifeData, repeats: int | None, seed: int, proceed: Proceed | None
 ) -> tuple[Array, Array]:
-    """Return both statistics of samples drawn at the estimate, each at its own fit."""
-    if not can_be_simulated(data):
-        raise BoundUnavailable(_NO_PLAN)
-    if data.failed_count < FEWEST_FAILURES:
-        raise BoundUnavailable("With fewer than three failures nothing can be said about how well a family fits.")
     standard = estimate.family.standard
-    found: list[tuple[Array, Array]] = []
+    statistics: list[tuple[Array, Array]] = []
     for drawn in samples_like(estimate, data, repeats=repeats, seed=seed, proceed=proceed):
         top, steps = drawn.fitted_by(estimate.family), batch_steps(drawn.sample)
         distance = anderson_darling(steps, standard, top.a, top.b)
-        found.append((distance[top.converged], plot_correlation(steps, standard)[top.converged]))
-    distances, straightnesses = (np.concatenate(column) for column in zip(*found, strict=True))
+        statistics.append((distance[top.converged], plot_correlation(steps, standard)[top.converged]))
+    distances, straightnesses = (np.concatenate(column) for column in zip(*statistics, strict=True))
     return distances, straightnesses
+
+
+def simulated_one_by_one(
+    found: Fit, *, repeats: int | None = None, seed: int = SEED, proceed: Proceed | None = None
+) -> tuple[Array, Array]:
+    """Return both statistics of samples drawn at any fit, refitted one at a time; 199 of them if not said otherwise.
+
+    Raises
+    ------
+    BoundUnavailable
+        If the plan cannot be simulated, or hardly any sample could be fitted.
+    """
+    count = repeats or REPEATS_ONE_BY_ONE
+    refits = (fit(test, found.family.name) for test in data_like(found, repeats=count, seed=seed, proceed=proceed))
+    statistics = np.array([statistics_of(refit) for refit in refits if refit.converged]).reshape(-1, 2)
+    if len(statistics) < _LEAST_SHARE_FITTED * count:
+        raise BoundUnavailable("Hardly any simulated sample could be fitted, so there is no reference for this family.")
+    return statistics[:, 0], statistics[:, 1]

@@ -123,9 +123,9 @@ class LifeData:
         """
         if self.lower.min() > origin:
             return
-        seen = np.where(np.isneginf(self.lower) | ((self.lower == origin) & self.is_found_failed), self.upper, self.lower)
-        wrong = (seen <= origin) & np.isfinite(origin)
-        if wrong.any():
+        is_unseen = np.isneginf(self.lower) | ((self.lower == origin) & self.is_found_failed)
+        wrong = np.where(is_unseen, self.upper, self.lower) <= origin
+        if wrong.any() and np.isfinite(origin):
             raise DataError([_fault(wrong, f"the life is not above {origin:g}, as the {title} family has it")])
 
     @cached_property

@@ -1,4 +1,4 @@
-"""LifeScale: the line on which a family has a location and a spread, ln life or life itself, and the way there and back."""
+"""LifeScale: the line on which a family has a location and a spread (ln life, or life itself), both ways."""
 
 from __future__ import annotations
 

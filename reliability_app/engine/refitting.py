@@ -13,6 +13,7 @@ from reliability_app.engine.errors import BoundUnavailable
 from reliability_app.engine.estimate import Estimate
 from reliability_app.engine.families import Family
 from reliability_app.engine.life_data import LifeData
+from reliability_app.engine.life_scale import LifeScale
 from reliability_app.engine.likelihood import Terms, log_likelihood
 from reliability_app.engine.newton import Evaluate, Maximum, maximise
 from reliability_app.engine.sample import Sample
@@ -28,9 +29,9 @@ FEWEST_FAILURES = 3
 _LEAST_SHARE_OF_SAMPLES = 0.05
 MOST_REPEATS, _FEWEST_REPEATS = 1000, 99
 # Lives drawn for one reference in all, and in one piece between two calls of `proceed`.
-_LIVES_DRAWN, _LIVES_A_PIECE = 4_000_000, 100_000
-# Beyond this number of units 99 repeats take minutes, and the smallest departure is found out anyway.
-_MOST_UNITS = 200_000
+_LIVES_DRAWN, _LIVES_A_PIECE = 1_000_000, 100_000
+# With more units 99 repeats take many seconds, and the smallest departure is found out anyway.
+_MOST_UNITS = 20_000
 
 
 @dataclass(frozen=True, eq=False)
@@ -84,7 +85,7 @@ def samples_like(
     Parameters
     ----------
     repeats : int, optional
-        Samples drawn; if not given 1,000, fewer for more than 4,000 units.
+        Samples drawn; if not given 1,000, fewer for more than 1,000 units, 99 at the least.
     seed : int
         The same seed gives the same samples.
     proceed : callable, optional
@@ -97,7 +98,9 @@ def samples_like(
     """
     plan = plan_of(data, estimate.family.life_scale)
     if plan.units > _MOST_UNITS:
-        raise BoundUnavailable(f"A reference is simulated for {_MOST_UNITS} units at the most.")
+        raise BoundUnavailable(
+            f"Nothing is simulated for more than {_MOST_UNITS} units: so many show every departure on the paper."
+        )
     count = repeats or int(np.clip(_LIVES_DRAWN // plan.units, _FEWEST_REPEATS, MOST_REPEATS))
     piece = max(1, _LIVES_A_PIECE // plan.units)
     for start in range(0, count, piece):
@@ -105,3 +108,12 @@ def samples_like(
             proceed()
         draws = Draws.of(plan, min(piece, count - start), seed + start)
         yield samples_at(estimate, plan, draws, a=estimate.a, b=estimate.b)
+
+
+def life_data_of(sample: Sample, row: int, life_scale: LifeScale) -> LifeData:
+    """Return one sample of a batch as life data, its places taken as places on a line."""
+    failed, running = sample.failed.rows(np.array([row])), sample.running.rows(np.array([row]))
+    place = np.concatenate([failed.y[0], running.y[0]])
+    weight = np.concatenate([failed.weight[0], running.weight[0]])
+    there, has_failed = weight > 0, np.arange(place.size) < failed.size
+    return LifeData.right_censored(life_scale.from_line(place[there]), has_failed[there], quantity=weight[there])

@@ -17,6 +17,7 @@ from numpy.typing import NDArray
 from scipy.special import ndtri_exp
 
 from reliability_app.engine.fit_result import Fit
+from reliability_app.engine.fitted_scores import Tails, log_complement, log_tails, normal_score
 
 Array = NDArray[np.float64]
 Records = NDArray[np.intp]
@@ -54,11 +55,11 @@ def quantile_residuals(found: Fit, *, seed: int = SEED) -> QuantileResiduals:
     """
     data = found.data
     record = np.repeat(np.arange(data.lower.size), data.quantity.astype(np.intp))
-    low, high = _log_tails(found, data.lower), _log_tails(found, data.upper)
+    low, high = _tails_of_unit(found, data.lower), _tails_of_unit(found, data.upper)
     share = np.random.default_rng(seed).random(record.size)
     drawn = _between((low[0][record], low[1][record]), (high[0][record], high[1][record]), share)
-    lower, upper = _score(*low)[record], _score(*high)[record]
-    value = np.where(data.is_failed[record], lower, np.clip(_score(*drawn), lower, upper))
+    lower, upper = normal_score(*low)[record], normal_score(*high)[record]
+    value = np.where(data.is_failed[record], lower, np.clip(normal_score(*drawn), lower, upper))
     return QuantileResiduals(lower, upper, value, record)
 
 
@@ -71,24 +72,16 @@ def surprising_units(residuals: QuantileResiduals, *, level: float = 0.05) -> ND
     return np.flatnonzero((residuals.upper < -limit) | (residuals.lower > limit))
 
 
-Tails = tuple[Array, Array]
-
-
-def _log_tails(found: Fit, age: Array) -> Tails:
+def _tails_of_unit(found: Fit, age: Array) -> Tails:
     """Return ln F and ln S at the ages, those of units that entered late given that they reached their entry."""
-    entered = found.data.entered
-    inside, beyond = found.family.life_scale.admits(age), np.isposinf(age)
-    z = found.score(np.where(inside, age, found.data.last_observation))
-    standard = found.family.standard
-    log_cdf = np.where(inside, standard.log_cdf(z).value, np.where(beyond, 0.0, -np.inf))
-    log_survival = np.where(inside, standard.log_survival(z).value, np.where(beyond, -np.inf, 0.0))
-    late = entered > 0
+    log_cdf, log_survival = log_tails(found, age)
+    late = found.data.entered > 0
     if late.any():
-        start = standard.log_survival(found.score(np.where(late, entered, found.data.last_observation))).value
+        _, start = log_tails(found, np.where(late, found.data.entered, found.data.last_observation))
         # A unit found failed may have been looked at last before it entered.
         given = np.minimum(log_survival - start, 0.0)
         log_survival = np.where(late, given, log_survival)
-        log_cdf = np.where(late, _log_complement(given), log_cdf)
+        log_cdf = np.where(late, log_complement(given), log_cdf)
     return log_cdf, log_survival
 
 
@@ -101,17 +94,6 @@ def _between(low: Tails, high: Tails, share: Array) -> Tails:
         log_survival = survival_low + np.log(1.0 - share * (1.0 - ratio[1]))
     in_left = cdf_high < survival_low
     return (
-        np.where(in_left, log_cdf, _log_complement(log_survival)),
-        np.where(in_left, _log_complement(log_cdf), log_survival),
+        np.where(in_left, log_cdf, log_complement(log_survival)),
+        np.where(in_left, log_complement(log_cdf), log_survival),
     )
-
-
-def _log_complement(log_probability: Array) -> Array:
-    """Return ln(1 - exp(x))."""
-    with np.errstate(divide="ignore"):
-        return np.log(-np.expm1(np.minimum(log_probability, 0.0)))
-
-
-def _score(log_cdf: Array, log_survival: Array) -> Array:
-    """Return the normal quantile, from the smaller tail."""
-    return np.where(log_cdf < log_survival, ndtri_exp(log_cdf), -np.asarray(ndtri_exp(log_survival)))

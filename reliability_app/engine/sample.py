@@ -132,7 +132,7 @@ class Sample:
 
     def log_slope_at(self, y: Array) -> Array:
         """Return ln(dy/d age) at a standardised place: what turns a density or hazard over y into one over age."""
-        return self.life_scale.log_slope(self.shift + self.spread * y) - np.log(self.spread)
+        return np.asarray(self.life_scale.log_slope(self.shift + self.spread * y) - np.log(self.spread))
 
     def thinned(self, most: int) -> Sample:
         """Return every k-th record of the large parts: a quick first look at a very large sample."""

@@ -4,13 +4,13 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from enum import Enum
+from typing import Protocol
 
 import numpy as np
 from numpy.typing import NDArray
 
 from reliability_app.engine.empirical import removal_steps
 from reliability_app.engine.errors import BoundUnavailable
-from reliability_app.engine.families import StandardDistribution
 from reliability_app.engine.life_data import LifeData
 from reliability_app.engine.life_scale import LOG_LIFE, LifeScale
 from reliability_app.engine.sample import NO_INTERVALS, NO_PART, Part, Sample
@@ -115,8 +115,15 @@ class Draws:
         return cls(life, generator.random((batch, plan.units)))
 
 
+class HasQuantiles(Protocol):
+    """All that is needed of a distribution to draw from it."""
+
+    def quantile(self, fraction: Array) -> Array:
+        """Return the quantiles at fractions of any shape."""
+
+
 def draw_sample(
-    plan: CensoringPlan, draws: Draws, standard: StandardDistribution, *, a: float, b: float
+    plan: CensoringPlan, draws: Draws, standard: HasQuantiles, *, a: float, b: float
 ) -> tuple[Sample, Array]:
     """Return a batch of samples in scores z = a + b x, x the place of a life, and the number of failures of each."""
     z = standard.quantile(draws.life)
@@ -140,9 +147,7 @@ def draw_sample(
     width = int(failed.sum(axis=1).max()) if plan.kind is not PlanKind.STAGGERED else plan.units
     dead = failed[:, :width]
     lives = Part(np.where(dead, z[:, :width], 0.0), dead.astype(np.float64))
-    sample = Sample(
-        lives, running, NO_INTERVALS, NO_PART, NO_PART, shift=0.0, spread=1.0, log_slope=np.zeros(len(z))
-    )
+    sample = Sample(lives, running, NO_INTERVALS, NO_PART, NO_PART, shift=0.0, spread=1.0, log_slope=np.zeros(len(z)))
     return sample, failed.sum(axis=1, dtype=np.float64)
 
 

@@ -102,14 +102,21 @@ class Records:
 
     def sums(self, values: Array) -> Array:
         """Return the sum of the cells' values over each record."""
-        total = np.concatenate([[0.0], np.cumsum(values)])
-        return np.asarray(total[self.last + 1] - total[self.first])
+        return _between(_running_sum(values), self.first, self.last + 1)
 
     def spread(self, values: Array) -> Array:
         """Return for each cell the sum of the records' values over the records that contain it."""
-        size = self.here.size
-        turns = np.bincount(self.first, values, size + 1) - np.bincount(self.last + 1, values, size + 1)
-        return np.cumsum(turns)[:size].astype(np.float64)
+        by_first, by_last, begun, over = self._orders
+        begun_sum, over_sum = _running_sum(values[by_first]), _running_sum(values[by_last])
+        return np.asarray((begun_sum[0][begun] - over_sum[0][over]) + (begun_sum[1][begun] - over_sum[1][over]))
+
+    @cached_property
+    def _orders(self) -> tuple[Integers, Integers, Integers, Integers]:
+        """The records by their first and by their last cell; for each cell how many have begun there or are over."""
+        by_first, by_last = np.argsort(self.first, kind="stable"), np.argsort(self.last, kind="stable")
+        cells = np.arange(self.here.size)
+        begun = np.searchsorted(self.first[by_first], cells, side="right")
+        return by_first, by_last, begun, np.searchsorted(self.last[by_last], cells, side="left")
 
     def raised(self, increment: Array) -> Array:
         """Return the slope of each cell but for the units passing it, from the records over several cells."""
@@ -153,3 +160,18 @@ def records_on(cells: Cells, data: LifeData) -> Records:
         weight=summed[is_long],
         passing=np.cumsum(turns)[:size].astype(np.float64),
     )
+
+
+def _running_sum(values: Array) -> tuple[Array, Array]:
+    """Return the sums of the first 0, 1, 2, ... values in two parts: as computed, and what rounding took from them.
+
+    A difference of two of them keeps its digits however small it is: a unit among a thousand million has its say.
+    """
+    total = np.concatenate([[0.0], np.cumsum(values)])
+    added = np.diff(total)
+    lost = (total[:-1] - (total[1:] - added)) + (values - added)
+    return total, np.concatenate([[0.0], np.cumsum(lost)])
+
+
+def _between(running: tuple[Array, Array], begin: Integers, end: Integers) -> Array:
+    return np.asarray((running[0][end] - running[0][begin]) + (running[1][end] - running[1][begin]))

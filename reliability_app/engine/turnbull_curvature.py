@@ -6,7 +6,7 @@ from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
-from scipy.linalg.lapack import dpttrf, dpttrs
+from scipy.linalg.lapack import dpbtrf, dpbtrs
 
 from reliability_app.engine.turnbull_cells import Records
 
@@ -17,7 +17,10 @@ _MOST_TURNS = 2_000
 # A pretended share of a unit in every cell, which keeps the equations solvable where the increments of some cells
 # can be traded for each other.
 _PRETENDED = 1e-9
-_LEAST = 1e-3
+_LEAST = 1.0
+# Records over at most so many held cells go into the preconditioner, which may hold at most so many numbers.
+_WIDEST_BAND = 16
+_MOST_IN_BAND = 4_000_000
 
 
 @dataclass(frozen=True, eq=False)
@@ -53,8 +56,8 @@ class Curvature:
     def newton_direction(self, slope: Array, records: Records, increment: Array, *, precision: float) -> Array:
         """Return the step in the increments to the top of the quadratic that has this slope and curvature.
 
-        By conjugate gradients, preconditioned with the tridiagonal part: the work of one turn is a few passes over
-        the records, whereas the matrix of ten thousand cells would fill a gigabyte.
+        By conjugate gradients, preconditioned with what lies near the diagonal: a turn costs a few passes over the
+        records, whereas the matrix of ten thousand cells would fill a gigabyte.
         """
         least = np.maximum(increment, _LEAST / np.maximum(records.passing, 1.0))
         steady = Curvature(self.near + _PRETENDED / least**2, self.start, self.stop, self.far)
@@ -62,9 +65,9 @@ class Curvature:
         return np.diff(rise, prepend=0.0)
 
     def _solve(self, right: Array, precision: float) -> Array:
-        factor = dpttrf(*self._tridiagonal())
+        factor = self._factor()
         potential, rest = np.zeros_like(right), right.copy()
-        search = dpttrs(factor[0], factor[1], rest)[0]
+        search = dpbtrs(factor, rest)[0]
         length = first_length = float(rest @ search)
         for _ in range(_MOST_TURNS):
             if length <= precision**2 * first_length:
@@ -73,18 +76,30 @@ class Curvature:
             stride = length / float(search @ pulled)
             potential += stride * search
             rest -= stride * pulled
-            smoothed = dpttrs(factor[0], factor[1], rest)[0]
+            smoothed = dpbtrs(factor, rest)[0]
             next_length = float(rest @ smoothed)
             search = smoothed + next_length / length * search
             length = next_length
         return potential
 
-    def _tridiagonal(self) -> tuple[Array, Array]:
-        diagonal = self.near.copy()
-        diagonal[:-1] += self.near[1:]
-        touched = np.bincount(self.start, self.far, self.size + 1) + np.bincount(self.stop, self.far, self.size + 1)
-        beside = -self.near[1:] if self.size > 1 else np.zeros(1)
-        return diagonal + touched[1:], beside
+    def _factor(self) -> Array:
+        """Return the Cholesky factor of the band around the diagonal, or of the diagonal itself where rounding forbids."""
+        span = self.stop - self.start
+        width = int(min(span.max(initial=1), _WIDEST_BAND, max(1, _MOST_IN_BAND // self.size), self.size - 1))
+        band = np.zeros((width + 1, self.size))
+        band[width] = self.near + np.append(self.near[1:], 0.0)
+        band[width] += np.bincount(self.start, self.far, self.size + 1)[1:]
+        band[width] += np.bincount(self.stop, self.far, self.size + 1)[1:]
+        factor, trouble = dpbtrf(self._with_neighbours(band, span, width))
+        return np.asarray(np.sqrt(band[width:]) if trouble else factor)
+
+    def _with_neighbours(self, band: Array, span: Integers, width: int) -> Array:
+        full = band.copy()
+        if width:
+            full[width - 1, 1:] -= self.near[1:]
+        inside = (span <= width) & (self.start > 0)
+        place = (width - span[inside]) * self.size + self.stop[inside] - 1
+        return full - np.bincount(place, self.far[inside], full.size).reshape(full.shape)
 
     def _times(self, potential: Array) -> Array:
         nodes = np.concatenate([[0.0], potential])

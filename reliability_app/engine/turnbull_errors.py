@@ -13,7 +13,7 @@ Integers = NDArray[np.intp]
 Mask = NDArray[np.bool_]
 
 # Dense equations of this many nodes take about a second; more would take minutes and gigabytes.
-_MOST_JOINTS = 3_000
+_MOST_JOINTS = 2_000
 
 
 def variances(curvature: Curvature) -> Array:

@@ -33,7 +33,7 @@ _LEAST_INCREMENT = 1e-11
 # Squared length of the last Newton step in its own metric; what it leaves over is of the order of this itself.
 _CLOSE_ENOUGH = 1e-12
 _SEED = 1e-6
-_ROUGHLY, _FINELY = 1e-6, 1e-6
+_ROUGHLY, _FINELY = 1e-2, 1e-6
 _ENOUGH_GAIN = 1e-4
 # What rounding can do to a sum of logarithms, as a share of the sum of their sizes.
 _ROUNDING = 1e-13
@@ -141,7 +141,7 @@ def _promising(records: Records, increment: Array) -> Integers:
         bend = records.weight * np.exp(-x) / np.expm1(-x) ** 2
     raised = records.spread(lift)
     slope = raised - records.passing
-    rounding = np.finfo(np.float64).eps * (2.0 * float(lift.sum()) + 16.0 * records.passing)
+    rounding = 16.0 * np.finfo(np.float64).eps * records.passing
     is_empty = increment == 0
     worth = is_empty & (records.passing > 0.5) & (slope > rounding + _LEAST_INCREMENT * records.spread(bend))
     candidates = np.flatnonzero(worth)

@@ -26,7 +26,7 @@ class Basis:
 
     family: str = "lognormal"
     fit: str = "maximum likelihood"
-    bound: str = "likelihood"
+    bound: str = "automatic"
     confidence: float = 0.95
     side: Side = "lower"
     kept: Mapping[str, object] = field(default_factory=_nothing_kept, compare=False)

@@ -37,7 +37,7 @@ class MainWindow(QMainWindow):
         self.setAcceptDrops(True)
         if not self.restoreGeometry(settings.layout("window")):
             room = self.screen().availableGeometry().size()
-            self.resize(min(1240, room.width()), min(780, room.height()))
+            self.resize(min(1240, int(0.96 * room.width())), min(780, int(0.9 * room.height())))
         waiting = QLabel("Rigpaper is starting …")
         waiting.setAlignment(Qt.AlignmentFlag.AlignCenter)
         self.setCentralWidget(waiting)

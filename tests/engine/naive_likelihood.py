@@ -17,7 +17,18 @@ from scipy import optimize, stats
 
 from tests.reference.reference_data import Units
 
-STANDARD = {"lognormal": stats.norm, "weibull": stats.gumbel_l, "exponential": stats.gumbel_l}
+STANDARD = {
+    "lognormal": stats.norm,
+    "weibull": stats.gumbel_l,
+    "exponential": stats.gumbel_l,
+    "loglogistic": stats.logistic,
+    "frechet": stats.gumbel_r,
+    "normal": stats.norm,
+    "smallest_extreme_value": stats.gumbel_l,
+    "largest_extreme_value": stats.gumbel_r,
+    "logistic": stats.logistic,
+}
+OF_LIFE_ITSELF = ("normal", "smallest_extreme_value", "largest_extreme_value", "logistic")
 Point = tuple[float, float]  # mu, ln sigma
 
 
@@ -52,22 +63,27 @@ class NaiveFit:
     def one_parameter(self) -> bool:
         return self.family == "exponential"
 
+    def line(self, age: NDArray[np.float64]) -> NDArray[np.float64]:
+        """ln age, or the age itself, whichever has a location and a spread; before age 0 ln age is minus infinity."""
+        return age if self.family in OF_LIFE_ITSELF else np.log(np.maximum(age, 0.0))
+
     def log_likelihood(self, mu: float, log_sigma: float) -> float:
         """Log-likelihood of the lives themselves; minus infinity where a term underflows."""
         sigma, standard = math.exp(log_sigma), STANDARD[self.family]
         units = self.units
         with np.errstate(all="ignore"):
-            low = (np.log(units.lower) - mu) / sigma
-            high = (np.log(units.upper) - mu) / sigma
+            low, high = ((self.line(ages) - mu) / sigma for ages in (units.lower, units.upper))
             exact, running = units.lower == units.upper, np.isinf(units.upper)
             between, late = ~exact & ~running, units.entered > 0
             term = np.zeros(low.size)
-            term[exact] = standard.logpdf(low[exact]) - log_sigma - np.log(units.lower[exact])
+            term[exact] = standard.logpdf(low[exact]) - log_sigma
+            if self.family not in OF_LIFE_ITSELF:
+                term[exact] -= np.log(units.lower[exact])
             term[running] = standard.logsf(low[running])
             term[between] = np.log(standard.cdf(high[between]) - standard.cdf(low[between]))
             if late.any():
-                term[late] -= standard.logsf((np.log(units.entered[late]) - mu) / sigma)
-        total = float(np.dot(units.quantity, term))
+                term[late] -= standard.logsf((self.line(units.entered[late]) - mu) / sigma)
+            total = float(np.dot(units.quantity, term))
         return total if math.isfinite(total) else -1e300
 
     @cached_property
@@ -82,6 +98,8 @@ class NaiveFit:
             )
             return float(found.x), 0.0
         point = np.array([math.log(float(np.mean(ages))), -0.5])
+        if self.family in OF_LIFE_ITSELF:
+            point = np.array([float(np.mean(ages)), math.log(float(np.std(ages)))])
         for _ in range(3):
             point = optimize.minimize(
                 lambda at: -self.log_likelihood(at[0], at[1]),
@@ -158,8 +176,9 @@ class NaiveFit:
         """Standard error of the reading on its own scale, with the gradient taken by differences."""
         mu, log_sigma = self.maximum
         step = 1e-3
+        along = step * math.exp(log_sigma)
         gradient = [
-            sum(weight * reading.value(mu + k * step, log_sigma) for k, weight in STENCIL) / step,
+            sum(weight * reading.value(mu + k * along, log_sigma) for k, weight in STENCIL) / along,
             sum(weight * reading.value(mu, log_sigma + k * step) for k, weight in STENCIL) / step,
         ]
         slope = np.array(gradient[: len(self.covariance)])
@@ -178,19 +197,19 @@ STENCIL = ((-3, -1 / 60), (-2, 9 / 60), (-1, -45 / 60), (1, 45 / 60), (2, -9 / 6
 
 
 def life_reading(family: str, fraction: float) -> Reading:
-    """The age by which a fraction has failed, profiled as its logarithm."""
+    """The age by which a fraction has failed, profiled as its logarithm, or as it is."""
     z = float(STANDARD[family].ppf(fraction))
     return Reading(
         value=lambda mu, log_sigma: mu + math.exp(log_sigma) * z,
         place=lambda value, log_sigma: (value - math.exp(log_sigma) * z, log_sigma),
         nuisance=lambda _mu, log_sigma: log_sigma,
-        shown=_exponential,
+        shown=float if family in OF_LIFE_ITSELF else _exponential,
     )
 
 
 def reliability_reading(family: str, age: float) -> Reading:
-    """The reliability at an age, profiled as z = (ln age - mu)/sigma."""
-    y = math.log(age)
+    """The reliability at an age, profiled as z = (y - mu)/sigma with y = ln age or age."""
+    y = age if family in OF_LIFE_ITSELF else math.log(age)
     return Reading(
         value=lambda mu, log_sigma: (y - mu) / math.exp(log_sigma),
         place=lambda value, log_sigma: (y - math.exp(log_sigma) * value, log_sigma),
@@ -201,7 +220,8 @@ def reliability_reading(family: str, age: float) -> Reading:
 
 def hazard_reading(family: str, age: float) -> Reading:
     """The hazard rate at an age, profiled as its logarithm, with z at that age as the nuisance."""
-    y, standard = math.log(age), STANDARD[family]
+    y, standard = age if family in OF_LIFE_ITSELF else math.log(age), STANDARD[family]
+    jacobian = 0.0 if family in OF_LIFE_ITSELF else -y  # ln of the slope of y over age
 
     def log_ratio(z: float) -> float:
         return float(standard.logpdf(z) - standard.logsf(z))
@@ -209,11 +229,11 @@ def hazard_reading(family: str, age: float) -> Reading:
     def place(value: float, z: float) -> Point:
         if family == "exponential":
             return -value, 0.0
-        log_sigma = log_ratio(z) - y - value
+        log_sigma = log_ratio(z) + jacobian - value
         return y - math.exp(log_sigma) * z, log_sigma
 
     return Reading(
-        value=lambda mu, log_sigma: log_ratio((y - mu) / math.exp(log_sigma)) - log_sigma - y,
+        value=lambda mu, log_sigma: log_ratio((y - mu) / math.exp(log_sigma)) - log_sigma + jacobian,
         place=place,
         nuisance=lambda mu, log_sigma: (y - mu) / math.exp(log_sigma),
         shown=_exponential,

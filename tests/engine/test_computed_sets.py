@@ -14,7 +14,7 @@ import numpy as np
 import pytest
 from scipy.special import ndtri
 
-from reliability_app.engine import FAMILY_NAMES, Fit, fit
+from reliability_app.engine import Fit, fit
 from reliability_app.engine.errors import BoundUnavailable, NoEstimate
 from tests.reference.reference_data import SET_NAMES, reference_set, units_of
 

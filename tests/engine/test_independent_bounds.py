@@ -9,7 +9,7 @@ from functools import cache
 
 import pytest
 
-from reliability_app.engine import FAMILY_NAMES, Fit, fit
+from reliability_app.engine import Fit, fit
 from tests.engine.naive_likelihood import (
     STANDARD,
     NaiveFit,
@@ -31,7 +31,10 @@ SETS = (
     "syn14_left_truncated",
     "nist",
 )
-CASES = [(name, family) for name in SETS for family in FAMILY_NAMES if family in STANDARD]
+# The naive computation is slow: every set for the three usual families, one of each kind for the others.
+USUAL = ("lognormal", "weibull", "exponential")
+ONE_OF_EACH = ("syn03_n20_cens60", "syn07a_interval_equal", "syn14_left_truncated")
+CASES = [(name, family) for name in SETS for family in STANDARD if family in USUAL or name in ONE_OF_EACH]
 FRACTIONS = (0.001, 0.05, 0.25, 0.80)
 BOUND = 1e-7  # relative; the naive computation reproduces R's limits to 1e-11
 
@@ -63,10 +66,13 @@ def assert_same_bounds(
 ) -> None:
     independent = naive(name, family)
     bounds = independent.likelihood_bounds if kind == "likelihood" else independent.wald_bounds
-    assert got == pytest.approx(bounds(reading, 0.95, "two"), rel=BOUND)
+    low, high = bounds(reading, 0.95, "two")
+    # A life itself may lie anywhere about 0: there the bound is held to a part of its width.
+    near = BOUND * (high - low) if reading.shown is float else 0.0
+    assert got == pytest.approx((low, high), rel=BOUND, abs=near)
 
 
-@pytest.mark.parametrize("family", ["lognormal", "weibull", "exponential"])
+@pytest.mark.parametrize("family", ["lognormal", "weibull", "exponential", "loglogistic"])
 def test_the_naive_likelihood_itself_agrees_with_r(family: str) -> None:
     """Its limits of a life against those computed in R, so that it may serve as a judge."""
     limits = reference_set("syn03_n20_cens60")["likelihood_limits"][family]

@@ -116,7 +116,7 @@ def test_device_a_lognormal_at_each_temperature(temperature: str) -> None:
     assert f.log_likelihood == printed(expected[temperature], 2)
 
 
-@pytest.mark.parametrize("family", ["weibull", "exponential", "lognormal"])
+@pytest.mark.parametrize("family", ["weibull", "exponential", "lognormal", "loglogistic"])
 def test_log_likelihood_without_covariate(family: str) -> None:
     """The loglik0 column of R survival's own test testreg: six units, printed to one decimal."""
     expected = published("r-testreg-four-distributions")["expected"][family]["loglik0"]
@@ -197,6 +197,43 @@ def test_exact_left_right_and_interval_censored_values_together() -> None:
         assert f.standard_errors["mu"] == printed(figures["se_mean"], decimals)
         assert f.standard_errors["sigma"] == printed(figures["se_sd"], decimals)
         assert on_log_scale == printed(figures["loglik"], decimals)
+
+
+def test_the_same_values_as_a_normal_sample() -> None:
+    """NAG Library manual, routine g07bb, as it stands there: a value known to lie below another has no lower end."""
+    item = published("nag-g07bb-normal-mixed")
+    data = {key: np.array(values) for key, values in item["data"].items()}
+    interval = data["interval"]
+    lower = np.concatenate([data["exact"], data["right"], interval[:, 0], np.full(len(data["left"]), -np.inf)])
+    upper = np.concatenate([data["exact"], np.full(len(data["right"]), np.inf), interval[:, 1], data["left"]])
+    f = fit(interval_units(lower, upper).life_data(), "normal")
+    covariance = np.asarray(f.covariance)
+    correlation = covariance[0, 1] / math.sqrt(covariance[0, 0] * covariance[1, 1])
+    assert correlation == printed(item["expected"]["corr"], 3)
+    for figures, decimals in ((item["expected"], 4), (item["recomputed"], 6)):
+        assert f.parameters["mu"] == printed(figures["mean"], decimals)
+        assert f.parameters["sigma"] == printed(figures["sd"], decimals)
+        assert f.standard_errors["mu"] == printed(figures["se_mean"], decimals)
+        assert f.standard_errors["sigma"] == printed(figures["se_sd"], decimals)
+        assert f.log_likelihood == printed(figures["loglik"], decimals)
+    assert f.mean_life() == f.parameters["mu"]
+
+
+@pytest.mark.parametrize(("family", "sign"), [("largest_extreme_value", 1.0), ("smallest_extreme_value", -1.0)])
+def test_extreme_value_sample_and_its_mirror_image(family: str, sign: float) -> None:
+    """scipy's test-suite (an R fitdistcens run), and 12 digits from an own search with mpmath.
+
+    Two values above 10, one between 0 and 1; negated, two below -10 of which nothing else is known.
+    """
+    item = published("scipy-gumbel-sev")
+    data = item["data"]["largest_ev"]
+    ends = [(x, x) for x in data["exact"]] + [(x, np.inf) for x in data["right"]] + [tuple(data["interval"][0])]
+    lower, upper = np.sort(sign * np.array(ends, dtype=float), axis=1).T
+    f = fit(interval_units(lower, upper).life_data(), family)
+    expected = sign * item["expected"]["loc"], item["expected"]["scale"]
+    assert (f.parameters["mu"], f.parameters["sigma"]) == pytest.approx(expected, abs=5e-6)
+    assert (f.parameters["mu"], f.parameters["sigma"]) == pytest.approx((sign * 4.48785194265, 4.84363999644), rel=1e-9)
+    assert f.mean_life() == pytest.approx(sign * (4.48785194265 + np.euler_gamma * 4.84363999644), rel=1e-9)
 
 
 def test_extreme_value_sample_mirrored_into_weibull_lives() -> None:

@@ -159,7 +159,9 @@ def test_exact_limit_of_an_upper_percentile_and_its_reciprocal_twin() -> None:
     assert twin.life_bounds(0.05, side="lower", **asked) == (pytest.approx(1 / recomputed, rel=1e-9), None)
 
 
-@pytest.mark.parametrize("lives", [[246.4, 304.4], [100, 110], [100, 150], [100, 110, 120], [246, 300, 304], [10, 1e4, 3]])
+@pytest.mark.parametrize(
+    "lives", [[246.4, 304.4], [100, 110], [100, 150], [100, 110, 120], [246, 300, 304], [10, 1e4, 3]]
+)
 def test_exact_reliability_bounds_invert_exact_life_bounds_far_from_the_data_too(lives: list[float]) -> None:
     # Invented lives of two or three units, for which the library's distribution function gives up in places.
     found = fit(LifeData.right_censored(lives, np.ones(len(lives))), "lognormal")

@@ -22,7 +22,7 @@ from tests.windows.conftest import nothing_left_behind
 __all__ = ["nothing_left_behind"]
 
 CONTROL = Qt.KeyboardModifier.ControlModifier
-ANSWER_WITHIN_MS = 10_000
+ANSWER_WITHIN_MS = 60_000  # a bound for a machine under load, not an expectation
 
 
 def pytest_collection_modifyitems(items: list[pytest.Item]) -> None:
@@ -76,7 +76,7 @@ class Desk:
 
     @property
     def sentence(self) -> str:
-        return self.window.contents.reading.sentence.text()
+        return self.window.contents.reading.sentence.text().replace("\u00a0", " ")
 
     @property
     def counts(self) -> str:

@@ -19,7 +19,7 @@ SET_NAMES = tuple(sorted(path.stem for path in FOLDER.glob("*.json") if path.ste
 
 @dataclass(frozen=True)
 class Units:
-    """Units as intervals: exact if lower == upper, running if upper is infinite, left if lower is 0 or minus infinity."""
+    """Units as intervals: exact if lower == upper, running if upper is infinite, left if lower is 0 or -inf."""
 
     lower: NDArray[np.float64]
     upper: NDArray[np.float64]

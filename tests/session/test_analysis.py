@@ -22,7 +22,9 @@ NIST_ROWS = [
 def analysed(rows: list[dict[str, str]], **basis: object) -> SetAnalysis:
     asks = (LifeAsk(10), LifeAsk(1), ReliabilityAsk(300), HazardAsk(300), LifeAsk(90))
     table = UnitTable.from_rows(rows)
-    session = Session(sets=[UnitSet("A", table, Basis(**basis))], asks=asks)  # type: ignore[arg-type]
+    # The likelihood bound unless a test names another: quick, and the one the published limits are for.
+    chosen = Basis(**{"bound": "likelihood", **basis})
+    session = Session(sets=[UnitSet("A", table, chosen)], asks=asks)
     return analyse(Question.about(session, 0))
 
 
@@ -153,3 +155,38 @@ def test_found_failed_units_are_fitted_and_the_missing_points_are_said() -> None
     analysis = analysed(rows)
     assert analysis.main is not None
     assert "points-not-drawn" in codes(analysis)
+
+
+def test_automatic_bounds_are_calibrated_and_a_quick_analysis_is_provisional() -> None:
+    slow = analysed(NIST_ROWS, family="weibull", bound="automatic")
+    assert slow.readings[0].bound_used == "calibrated"
+    assert not slow.is_provisional
+    quick = analyse(slow.question, quick=True)
+    assert quick.is_provisional
+    assert quick.readings[0].is_provisional
+    assert quick.readings[0].bound_used == "likelihood"
+    likelihood = analysed(NIST_ROWS, family="weibull", bound="likelihood").readings[0]
+    assert quick.readings[0].lower == likelihood.lower
+    assert slow.readings[0].lower < likelihood.lower
+
+
+def test_a_calibrated_reading_moved_by_hand_follows_the_band() -> None:
+    slow = analysed(NIST_ROWS, family="weibull", bound="calibrated")
+    moved = slow.with_main_ask(LifeAsk(25)).readings[0]
+    fresh = analyse(replace(slow.question, asks=(LifeAsk(25),))).readings[0]
+    assert moved.is_provisional
+    assert moved.estimate == fresh.estimate
+    # The band is drawn through calibrations at thirteen ages; between them it is smooth.
+    assert moved.lower == pytest.approx(fresh.lower, rel=0.02)
+
+
+def test_complete_lognormal_lives_have_the_exact_bound_at_once() -> None:
+    rows = [{"life": str(life), "state": "failed"} for life in NIST_FAILURES]
+    analysis = analyse(analysed(rows, bound="automatic").question, quick=True)
+    assert analysis.readings[0].bound_used == "exact"
+    assert not analysis.is_provisional
+
+
+def test_units_of_one_name_are_told() -> None:
+    rows = [{"unit": "P-1", "life": "10", "state": "failed"}, {"unit": "P-1", "life": "20", "state": "failed"}]
+    assert "units-repeated" in codes(analysed(rows))

@@ -46,7 +46,8 @@ def test_a_second_window_of_the_same_process_is_told(session_file):
     assert not first.held
 
 
-def test_a_window_of_another_process_is_told(session_file, other_process):
+@pytest.mark.usefixtures("other_process")
+def test_a_window_of_another_process_is_told(session_file):
     with pytest.raises(FileInUse, match="is open in another window already, since 20"):
         FileLock(session_file).take()
 

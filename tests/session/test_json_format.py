@@ -75,7 +75,7 @@ def test_the_file_reads_as_designed():
         '        {"unit": "P-03", "life": 400, "until": 600, "state": "found failed"},\n'
         '        {"unit": "P-04", "life": "n/a", "state": "failed", "rig": "Süd"}\n'
         "      ],\n"
-        '      "basis": {"family": "lognormal", "fit": "maximum likelihood", "bound": "likelihood", '
+        '      "basis": {"family": "lognormal", "fit": "maximum likelihood", "bound": "automatic", '
         '"confidence": 0.95, "side": "lower"}\n'
         "    }\n"
         "  ],\n"

@@ -97,7 +97,9 @@ def test_the_sentence_states_number_unit_and_bound(given: Reading, sentence: str
 
 
 def test_the_basis_names_family_method_units_and_bound() -> None:
-    text = basis_text(Basis(family="weibull"), Counts(failed=12, running=7, found_failed=1, unread=3))
+    text = basis_text(
+        Basis(family="weibull", bound="likelihood"), Counts(failed=12, running=7, found_failed=1, unread=3)
+    )
     assert text == "Weibull, maximum likelihood, 13 failed of 20, likelihood ratio bound"
 
 

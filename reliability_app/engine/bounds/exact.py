@@ -1,8 +1,8 @@
-"""Exact bounds for complete lognormal samples: non-central t for lives and reliabilities, chi-square for sigma.
+"""Exact bounds for complete (log)normal samples: non-central t for lives and reliabilities, chi-square for sigma.
 
-With n logarithms of mean m and standard deviation s (divisor n - 1), (m - y_p) sqrt(n)/s has the non-central t
-distribution with n - 1 degrees of freedom and non-centrality -z_p sqrt(n) (Owen 1968; Hahn & Meeker 1991, ch. 4;
-cited from memory). At z_p = 0 this is Student's t for mu.
+With n lives, or their logarithms, of mean m and standard deviation s (divisor n - 1), (m - y_p) sqrt(n)/s has the
+non-central t distribution with n - 1 degrees of freedom and non-centrality -z_p sqrt(n) (Owen 1968; Hahn & Meeker 1991,
+ch. 4; cited from memory). At z_p = 0 this is Student's t for mu.
 """
 
 from __future__ import annotations
@@ -24,7 +24,7 @@ Array = NDArray[np.float64]
 
 @dataclass(frozen=True)
 class _Moments:
-    """Size, mean and standard deviation (divisor n - 1) of the standardised logarithms."""
+    """Size, mean and standard deviation (divisor n - 1) of the standardised places of the lives."""
 
     n: float
     mean: float
@@ -32,8 +32,8 @@ class _Moments:
 
 
 def has_exact_bounds(data: LifeData, family_name: str) -> bool:
-    """True for complete lognormal data of at least two units."""
-    return family_name == "lognormal" and data.is_complete and data.unit_count >= 2
+    """True for complete lognormal or normal data of at least two units."""
+    return family_name in ("lognormal", "normal") and data.is_complete and data.unit_count >= 2
 
 
 def exact_end(estimate: Estimate, data: LifeData, measure: Measure, tail: float, sign: float) -> Array:
@@ -42,12 +42,12 @@ def exact_end(estimate: Estimate, data: LifeData, measure: Measure, tail: float,
     Raises
     ------
     BoundUnavailable
-        If the data are not complete, the family is not the lognormal, or the reading is a hazard.
+        If the data are not complete, the family is neither the lognormal nor the normal, or the reading is a hazard.
     """
     if not has_exact_bounds(data, estimate.family.name):
         raise BoundUnavailable(
-            "An exact bound is known here only for the lognormal family and complete data (every unit failed at a "
-            "known age): choose the likelihood bound."
+            "An exact bound is known here only for the lognormal and the normal family and complete data (every unit "
+            "failed at a known age): choose the likelihood bound."
         )
     moments, below = _moments(estimate), tail if sign < 0 else 1.0 - tail
     match measure:

@@ -8,6 +8,7 @@ the smallest, lambda = -1 the largest extreme value distribution.
 from __future__ import annotations
 
 from collections.abc import Callable
+from functools import partial
 
 import numpy as np
 from scipy.special import gammainccinv, gammaincinv, gammaln, ndtri
@@ -18,6 +19,7 @@ from reliability_app.engine.families.log_gamma_tails import lower_tail, upper_ta
 from reliability_app.engine.families.shaped_standard import ShapedStandard, solved
 
 Tail = Callable[[Array, Array], Derivatives]
+Inverse = Callable[[Array, Array, bool], Array]
 
 # Below this q the quantile of the incomplete gamma function is no better a start than that of the normal distribution.
 _NORMAL_START_BELOW = 1e-3
@@ -65,7 +67,12 @@ class LogGamma(ShapedStandard):
         """Return z with S(z) = share."""
         return self._inverse(share, lower=False)
 
-    def _inverse(self, probability: Array, *, lower: bool) -> Array:
+    def rough_quantile(self, fraction: Array) -> Array:
+        """Return the quantile to a few digits, quickly: a start for a search."""
+        return self._inverse(fraction, lower=True, invert=_rough_inverse)
+
+    def _inverse(self, probability: Array, *, lower: bool, invert: Inverse | None = None) -> Array:
+        invert = _core_inverse if invert is None else invert
         lam, flat = np.broadcast_arrays(self.against(probability), probability)
         shape = lam.shape
         lam, flat = lam.ravel(), flat.ravel()
@@ -73,7 +80,7 @@ class LogGamma(ShapedStandard):
         negative = lam < 0
         for chosen, way in ((~negative, 1.0), (negative, -1.0)):
             if chosen.any():
-                out[chosen] = way * _core_inverse(np.abs(lam[chosen]), flat[chosen], lower=lower == (way > 0))
+                out[chosen] = way * invert(np.abs(lam[chosen]), flat[chosen], lower == (way > 0))
         return out.reshape(shape)
 
     def log_moment(self, power: Array) -> Array:
@@ -101,21 +108,27 @@ def _second_order(x: Array) -> Array:
     return np.where(near, series, ((1.0 + far) * np.log1p(far) - far) / (far * far))
 
 
-def _core_inverse(q: Array, probability: Array, *, lower: bool) -> Array:
-    """Return w with F(w) = probability, or S(w) = probability; one-dimensional, q >= 0."""
-    start = ndtri(probability) if lower else -ndtri(probability)
+def _rough_inverse(q: Array, probability: Array, lower: bool) -> Array:
+    """Return w with F(w) = probability (lower) or S(w) = probability, to a few digits; one-dimensional, q >= 0."""
+    w = ndtri(probability) if lower else -ndtri(probability)
     shaped = q > _NORMAL_START_BELOW
-    if shaped.any():
-        k, p = 1.0 / q[shaped] ** 2, probability[shaped]
-        x = gammaincinv(k, p) if lower else gammainccinv(k, p)
-        log_small = np.log(p) if lower else np.log1p(-p)
-        # At a life too small for a double F is x^k/Gamma(k + 1).
-        log_x = np.where(x > _NO_LIFE, np.log(np.maximum(x, _NO_LIFE)), (log_small + gammaln(k + 1.0)) / k)
-        start[shaped] = (log_x - np.log(k)) / q[shaped]
+    if not shaped.any():
+        return np.asarray(w)
+    k, p = 1.0 / q[shaped] ** 2, probability[shaped]
+    x = gammaincinv(k, p) if lower else gammainccinv(k, p)
+    log_small = np.log(p) if lower else np.log1p(-p)
+    # At a life too small for a double F is x^k/Gamma(k + 1).
+    log_x = np.where(x > _NO_LIFE, np.log(np.maximum(x, _NO_LIFE)), (log_small + gammaln(k + 1.0)) / k)
+    w[shaped] = (log_x - np.log(k)) / q[shaped]
+    return np.asarray(w)
+
+
+def _core_inverse(q: Array, probability: Array, lower: bool) -> Array:
+    """Return the same, right to the last digits: the rough one improved on the logarithm of the smaller tail."""
+    w = _rough_inverse(q, probability, lower)
     few = probability < 0.5
-    out = np.empty_like(start)
     for chosen, target, own in ((few, np.log(probability), True), (~few, np.log1p(-probability), False)):
         if chosen.any():
-            tail, qs = lower_tail if own == lower else upper_tail, q[chosen]
-            out[chosen] = solved(lambda w, qs=qs, tail=tail: tail(qs, w), target[chosen], start[chosen])  # type: ignore[misc]
-    return out
+            tail = partial(lower_tail if own == lower else upper_tail, q[chosen])
+            w[chosen] = solved(tail, target[chosen], w[chosen])
+    return w

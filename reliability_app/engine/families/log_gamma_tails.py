@@ -24,7 +24,7 @@ Branch = Callable[[Array, Array], Derivatives]
 # x over shape + 1 below which the series is used, and above which the continued fraction: both then end soon.
 _SERIES_BELOW, _FRACTION_ABOVE = 0.55, 1.8
 _MOST_TERMS = 2000
-_LAST_DIGIT, _SETTLED = 1e-17, 2e-16
+_LAST_DIGIT, _SETTLED = 1e-17, 6e-16
 _LOG_HALF = -np.log(2.0)
 
 
@@ -120,7 +120,7 @@ def _series(k: Array, log_x: Array) -> tuple[Array, Array]:
     for count in range(2, _MOST_TERMS):
         term = term * x / (k + count)
         beyond_one = beyond_one + term
-        if (term <= _LAST_DIGIT * beyond_one).all():
+        if not (term > _LAST_DIGIT * beyond_one).any():
             break
     return k * log_x - x - gammaln(k + 1.0) + np.log1p(beyond_one), beyond_one
 
@@ -142,7 +142,7 @@ def _upper_by_fraction(q: Array, w: Array) -> Derivatives:
         d = 1.0 / (coefficient * d + base)
         c = base + coefficient / c
         fraction = fraction * (c * d)
-        if (np.abs(c * d - 1.0) < _SETTLED).all():
+        if not (np.abs(c * d - 1.0) > _SETTLED).any():
             break
     density = log_gamma_density(q, w)
     rate = q / fraction

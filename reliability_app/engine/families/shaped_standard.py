@@ -36,6 +36,10 @@ class ShapedStandard(StandardDistribution):
         return self.shape.reshape(self.shape.shape + (1,) * (z.ndim - self.shape.ndim))
 
     @abstractmethod
+    def rough_quantile(self, fraction: Array) -> Array:
+        """Return the quantile to a few digits, quickly: a start for a search."""
+
+    @abstractmethod
     def log_cdf(self, z: Array) -> Derivatives:
         """Return ln F(z)."""
 
@@ -65,6 +69,6 @@ def solved(function: Callable[[Array], Derivatives], target: Array, start: Array
         # Where the function is flat to the last digit a step means nothing.
         step = np.clip(np.where(np.isfinite(step), step, 0.0), -10.0, 10.0)
         z = z + step
-        if (np.abs(step) <= _STEP_REACHED * (1.0 + np.abs(z))).all():
+        if not (np.abs(step) > _STEP_REACHED * (1.0 + np.abs(z))).any():
             break
     return z

@@ -181,10 +181,7 @@ class ChartPage(QWidget):
         """Show ages on a log or a linear axis."""
         if kind == self.age_scale:
             return
-        self._age_axis.set_kind(kind)
-        self._log_action.setChecked(kind == "log")
-        self._linear_action.setChecked(kind == "linear")
-        self._forget_drawings()
+        self._take_age_scale(kind)
         self._draw()
         self.reset_view()
         self.age_scale_changed.emit(kind)
@@ -305,6 +302,12 @@ class ChartPage(QWidget):
         current = self.current
         if current is not None:
             self.reading_line.dress(self._theme, self._theme.style(current.colour).colour, self.font())
+
+    def _take_age_scale(self, kind: AgeScaleKind) -> None:
+        self._age_axis.set_kind(kind)
+        self._log_action.setChecked(kind == "log")
+        self._linear_action.setChecked(kind == "linear")
+        self._forget_drawings()
 
     def _forget_drawings(self) -> None:
         """Have everything drawn anew: the scales have changed."""

@@ -35,8 +35,8 @@ class Range:
     high: float
 
     def holds(self, mark: ReadingMark | None) -> bool:
-        """True where a mark's point lies inside."""
-        if mark is None:
+        """True where a mark's point lies inside, or no view could hold it."""
+        if mark is None or not np.isfinite(mark.age):
             return True
         return self.left <= mark.age <= self.right and self.low <= mark.value <= self.high
 
@@ -149,7 +149,8 @@ def _with_mark(left: float, right: float, mark: ReadingMark | None, most: float)
     """Widen a range of ages by a reading, wherever it is, and by its bound as far as is reasonable."""
     if mark is None:
         return left, right
-    left, right = min(left, mark.age), max(right, mark.age)
+    if np.isfinite(mark.age):
+        left, right = min(left, mark.age), max(right, mark.age)
     if mark.along == "value":
         return left, right
     return _widened(left, right, [position for position, _, _ in mark.ends], most)

@@ -11,7 +11,8 @@ from numpy.typing import NDArray
 from PySide6.QtGui import QFont
 from PySide6.QtWidgets import QWidget
 
-from reliability_app.engine.paper import AgeScale, ProbabilityScale
+from reliability_app.engine.families import family
+from reliability_app.engine.paper import AgeScale, AgeScaleKind, ProbabilityScale
 from reliability_app.session.picture import SetPicture
 from reliability_app.windows.charts.chart_page import ChartPage, SetDrawing
 from reliability_app.windows.charts.chart_ranges import Range, paper_range
@@ -33,6 +34,8 @@ class PaperPage(ChartPage):
 
     def __init__(self, parent: QWidget | None = None) -> None:
         self._probability_axis = ProbabilityAxis(_USUAL_FAMILY)
+        # Chosen for the families of ln life (True) and of life itself: each fit is straight on its own kind of axis.
+        self._age_scales: dict[bool, AgeScaleKind] = {True: "log", False: "linear"}
         super().__init__(
             "Paper",
             self._probability_axis,
@@ -47,9 +50,14 @@ class PaperPage(ChartPage):
         return self._probability_axis.scale_of_family
 
     def _prepare(self) -> None:
-        if self.current is not None and self.current.family != self._probability.family_name:
-            self._probability_axis.set_family(self.current.family)
-            self._forget_drawings()
+        if self.current is None or self.current.family == self._probability.family_name:
+            return
+        was, now = (family(name).of_log_life for name in (self._probability.family_name, self.current.family))
+        self._probability_axis.set_family(self.current.family)
+        self._forget_drawings()
+        if was != now:
+            self._age_scales[was] = self.age_scale
+            self._take_age_scale(self._age_scales[now])
 
     def _new_drawing(self) -> SetDrawing:
         return SetOnPaper(self.view.plotItem.vb, self._probability, self._scale, row=len(self._drawings))

@@ -8,6 +8,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from reliability_app.engine.curves import Curve
+from reliability_app.engine.families import family
 from reliability_app.engine.paper import AgeScale, ProbabilityScale
 from reliability_app.session.document import HazardAsk, LifeAsk, ReliabilityAsk
 from reliability_app.session.picture import Reading, SetPicture
@@ -97,7 +98,8 @@ def age_at(picture: SetPicture, fraction: float) -> float:
     if picture.failure is None:
         raise ValueError("A picture without a fit has no age at which a fraction has failed.")
     x, z = _straightened(picture.failure, picture.family)
-    return float(np.exp(_along(z, x, float(ProbabilityScale(picture.family).to_scale(fraction)))))
+    place = _along(z, x, float(ProbabilityScale(picture.family).to_scale(fraction)))
+    return float(family(picture.family).life_scale.from_line(np.array(place)))
 
 
 def fraction_at(picture: SetPicture, age: float) -> float:
@@ -105,17 +107,18 @@ def fraction_at(picture: SetPicture, age: float) -> float:
     if picture.failure is None:
         raise ValueError("A picture without a fit has no fraction failed at an age.")
     x, z = _straightened(picture.failure, picture.family)
-    return float(ProbabilityScale(picture.family).from_scale(_along(x, z, float(np.log(age)))))
+    place = float(family(picture.family).life_scale.to_line(np.array(age)))
+    return float(ProbabilityScale(picture.family).from_scale(_along(x, z, place)))
 
 
 def value_at(curve: Curve, age: float) -> float:
-    """Return the value of a drawn curve at an age."""
-    return float(np.interp(np.log(age), np.log(curve.x), curve.y))
+    """Return the value of a drawn curve at an age, or at the nearest age at which it is drawn."""
+    return float(np.interp(np.log(max(age, curve.x[0])), np.log(curve.x), curve.y))
 
 
 def paper_mark(place: Place, probability: ProbabilityScale, age: AgeScale, life_unit: str) -> ReadingMark:
     """Return the mark of a reading on probability paper."""
-    position = float(age.to_scale(place.age))
+    position = _position(place.age, age)
     value = float(probability.to_scale(place.fraction))
     if place.fractions != (None, None):
         ends = [None if end is None else float(probability.to_scale(end)) for end in place.fractions]
@@ -129,14 +132,12 @@ def paper_mark(place: Place, probability: ProbabilityScale, age: AgeScale, life_
 
 def aged_mark(place: Place, value: float, age: AgeScale, life_unit: str, *, value_text: str) -> ReadingMark:
     """Return the mark of a reading whose bound, if any, is an age, at a height of `value`."""
-    ends = [None if end is None else float(age.to_scale(end)) for end in place.ages]
+    ends = [None if end is None else _position(end, age) for end in place.ages]
     texts = [
         "" if end is None else age_text(end, life_unit, toward=toward)
         for end, toward in zip(place.ages, SAFE_SIDES, strict=True)
     ]
-    return ReadingMark(
-        float(age.to_scale(place.age)), value, "age", ends[0], ends[1], place.age_text, value_text, *texts
-    )
+    return ReadingMark(_position(place.age, age), value, "age", ends[0], ends[1], place.age_text, value_text, *texts)
 
 
 def hazard_mark(picture: SetPicture | None, place: Place, age: AgeScale, life_unit: str) -> ReadingMark | None:
@@ -185,9 +186,14 @@ def _asked_hazard(reading: Reading, place: Place, age: AgeScale, life_unit: str)
     )
 
 
-def _straightened(failure: Curve, family: str) -> tuple[Floats, Floats]:
-    """Return ln age and z of a curve where both are finite."""
-    x, z = np.log(failure.x), ProbabilityScale(family).to_scale(failure.y)
+def _position(age: float, scale: AgeScale) -> float:
+    """Return where an age lies on an axis; on a log axis one of 0 or less lies to the left of everything."""
+    return float(scale.to_scale(max(age, 0.0) if scale.kind == "log" else age))
+
+
+def _straightened(failure: Curve, family_name: str) -> tuple[Floats, Floats]:
+    """Return place on the line of the family and z of a curve where both are finite."""
+    x, z = family(family_name).life_scale.to_line(failure.x), ProbabilityScale(family_name).to_scale(failure.y)
     inside = np.isfinite(x) & np.isfinite(z)
     return x[inside], z[inside]
 
@@ -196,13 +202,13 @@ def _age_at(picture: SetPicture, edge: Floats | None, fraction: float) -> float 
     """Return the age at which an edge of the band reaches a fraction, or None where it does not."""
     if edge is None or picture.failure is None:
         return None
-    scale = ProbabilityScale(picture.family)
-    x, z = np.log(picture.failure.x), scale.to_scale(edge)
+    scale, life_scale = ProbabilityScale(picture.family), family(picture.family).life_scale
+    x, z = life_scale.to_line(picture.failure.x), scale.to_scale(edge)
     inside = np.isfinite(z)
     x, z, wanted = x[inside], z[inside], float(scale.to_scale(fraction))
     if z.size < 2 or np.any(np.diff(z) <= 0.0) or not z[0] <= wanted <= z[-1]:
         return None
-    return float(np.exp(np.interp(wanted, z, x)))
+    return float(life_scale.from_line(np.asarray(np.interp(wanted, z, x))))
 
 
 def _along(x: Floats, y: Floats, wanted: float) -> float:

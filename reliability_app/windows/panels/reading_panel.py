@@ -82,7 +82,9 @@ class ReadingPanel(QWidget):
             self.sentence.setText(reason or "Paste or type the lives of some units to begin.")
             self.rests_on.setText("")
         else:
-            self.sentence.setText(reading_sentence(main, question.life_unit))
+            said, unit = reading_sentence(main, question.life_unit), question.life_unit
+            # A number and its unit stay on one line.
+            self.sentence.setText(said.replace(f" {unit}", f"\u00a0{unit}") if unit else said)
             self.rests_on.setText(f"({basis_text(question.basis, question.counts, main)})")
         self.parameters.setText(parameters_text(analysis.fit))
         self.parameters.setVisible(bool(self.parameters.text()))

@@ -96,6 +96,7 @@ class ReadingsTable(QTableView):
         header = self.horizontalHeader()
         header.setSectionResizeMode(QHeaderView.ResizeMode.ResizeToContents)
         header.setStretchLastSection(True)
+        header.setMinimumSectionSize(24)
         self.verticalHeader().setDefaultSectionSize(self.fontMetrics().height() + 6)
         self._add_actions()
         self.doubleClicked.connect(lambda index: self.main_chosen.emit(index.row()))

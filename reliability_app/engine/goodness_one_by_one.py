@@ -1,0 +1,78 @@
+"""The statistics of goodness for fits that are refitted one sample at a time: any family that `fit` knows.
+
+The batch of `refitting.py` is for families of location and spread alone. Here a sample is drawn as ages from the fitted
+quantiles, fitted anew by the same way as the data, and judged in normal scores: F(t) under its own fit turned into a
+standard normal quantile. Anderson-Darling depends on F(t) alone, so that it is the same statistic; the plot correlation
+is that of the scores with the normal quantiles at the plotting positions.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import replace
+from typing import TYPE_CHECKING
+
+import numpy as np
+from numpy.typing import NDArray
+
+from reliability_app.engine.batch_survival import BatchSteps, batch_steps
+from reliability_app.engine.families.normal import Normal
+from reliability_app.engine.fit_result import Fit
+from reliability_app.engine.fitted_scores import log_tails, normal_score
+from reliability_app.engine.life_data import LifeData
+from reliability_app.engine.refitting import FEWEST_FAILURES, life_data_of
+from reliability_app.engine.sample import sample_of
+from reliability_app.engine.simulation import Draws, draw_sample, plan_of
+
+if TYPE_CHECKING:
+    from reliability_app.engine.bounds import Proceed
+
+Array = NDArray[np.float64]
+
+NORMAL = Normal()
+REPEATS_ONE_BY_ONE = 199
+
+
+class FittedLives:
+    """The lives of a fit as a distribution to draw from, at their places on the line of its family."""
+
+    def __init__(self, found: Fit) -> None:
+        self.found = found
+
+    def quantile(self, fraction: Array) -> Array:
+        """Return the places of the lives at fractions of any shape; 0, which a draw can be, counts as the least."""
+        drawn = np.maximum(fraction, np.finfo(np.float64).tiny).ravel()
+        lives = np.asarray(self.found.life(drawn))
+        return self.found.family.life_scale.to_line(lives).reshape(fraction.shape)
+
+
+def data_like(found: Fit, *, repeats: int, seed: int, proceed: Proceed | None = None) -> Iterator[LifeData]:
+    """Give tests drawn at a fit under the plan of its data, one by one; those with too few failures are left out.
+
+    Raises
+    ------
+    BoundUnavailable
+        If the plan cannot be simulated.
+    """
+    life_scale = found.family.life_scale
+    plan = plan_of(found.data, life_scale)
+    for place in range(repeats):
+        if proceed is not None:
+            proceed()
+        sample, failures = draw_sample(plan, Draws.of(plan, 1, seed + place), FittedLives(found), a=0.0, b=1.0)
+        if failures[0] >= FEWEST_FAILURES:
+            yield life_data_of(sample, 0, life_scale)
+
+
+def scored_steps(found: Fit) -> BatchSteps:
+    """Return the Kaplan-Meier steps of a fit's data, a batch of one, with normal scores in the place of ages."""
+    sample = sample_of(found.data, found.family.life_scale)
+    steps = batch_steps(sample)
+    failed = steps.failures > 0
+    scores = np.zeros_like(steps.y)
+    scores[failed] = _scores(found, sample.to_age(steps.y[failed]))
+    return replace(steps, y=scores, end=_scores(found, np.array([found.data.last_observation])))
+
+
+def _scores(found: Fit, age: Array) -> Array:
+    return normal_score(*log_tails(found, age))
