@@ -15,7 +15,7 @@ from reliability_app.session.edits import AddSet
 from reliability_app.session.file_lock import FileInUse, FileLock
 from reliability_app.session.json_file import SUFFIX, save
 from reliability_app.session.messages import Messages
-from reliability_app.session.opening import open_file
+from reliability_app.session.opening import Opened, open_file
 from reliability_app.session.recovery import FoundCopy, RecoveryCopy
 from reliability_app.windows.set_bar import first_free, free_name
 from reliability_app.windows.settings import WindowSettings
@@ -84,28 +84,18 @@ class FileCommands(QObject):
 
     def open(self, path: Path) -> bool:
         """Open a session or a table in the place of what is shown; say why where that cannot be."""
-        if not self.may_drop_session():
-            return False
-        try:
-            opened = open_file(path)
-        except RigpaperError as trouble:
-            self._messages.say(Severity.SERIOUS, str(trouble))
-            self._settings.forget_recent(path.absolute())
+        opened = self._opened(path) if self.may_drop_session() else None
+        if opened is None:
             return False
         self._settings.note_recent(path)
         self._take_over(opened.session, path if opened.is_session else None)
-        if opened.remarks:
-            self._messages.say(Severity.NOTE, " ".join(opened.remarks))
+        self._say_remarks(opened)
         return True
 
     def open_copy(self, path: Path) -> bool:
         """Open a session without its file (a sample set): saving asks for a place of its own."""
-        if not self.may_drop_session():
-            return False
-        try:
-            opened = open_file(path)
-        except RigpaperError as trouble:
-            self._messages.say(Severity.SERIOUS, str(trouble))
+        opened = self._opened(path) if self.may_drop_session() else None
+        if opened is None:
             return False
         self._take_over(opened.session, None)
         if opened.session.notes:
@@ -120,16 +110,26 @@ class FileCommands(QObject):
 
     def add_sets(self, path: Path) -> None:
         """Add the sets of a session or a table, each as one undoable step."""
-        try:
-            opened = open_file(path)
-        except RigpaperError as trouble:
-            self._messages.say(Severity.SERIOUS, str(trouble))
+        opened = self._opened(path)
+        if opened is None:
             return
         for found in opened.session.sets:
             sets = self._session.sets
             colour = first_free([other.colour for other in sets])
             new = UnitSet(free_name(self._session, found.name), found.table, found.basis, colour, found.kept)
             self._undo.push_edit(self._session, AddSet(len(sets), new))
+        self._say_remarks(opened)
+
+    def _opened(self, path: Path) -> Opened | None:
+        """Read a file, or say why it cannot be read and forget it among the recent ones."""
+        try:
+            return open_file(path)
+        except RigpaperError as trouble:
+            self._messages.say(Severity.SERIOUS, str(trouble))
+            self._settings.forget_recent(path.absolute())
+            return None
+
+    def _say_remarks(self, opened: Opened) -> None:
         if opened.remarks:
             self._messages.say(Severity.NOTE, " ".join(opened.remarks))
 

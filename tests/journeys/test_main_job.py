@@ -44,21 +44,7 @@ def test_from_paste_to_answer_and_back_again(desk: Desk, qtbot: QtBot, tmp_path:
     # The Handbook's data give B10 164.02 h for the Weibull (recomputed from its estimates).
     assert desk.sentence.startswith("B10 life 164 h. With 95 % confidence at least")
     assert desk.life() == pytest.approx(164.0224, rel=1e-6)
-
-    drag(qtbot, desk.window.contents.paper, QPoint(0, -120))
-    desk.wait_for_answer()
-    dragged = desk.sentence
-    assert not dragged.startswith("B10 ")
-    assert desk.life() > 164.03
-    desk.key(Qt.Key.Key_Z, CONTROL)
-    desk.wait_for_answer()
-    assert desk.sentence.startswith("B10 life 164 h")
-    desk.key(Qt.Key.Key_Y, CONTROL)
-    desk.wait_for_answer()
-    assert desk.sentence == dragged
-    desk.key(Qt.Key.Key_Z, CONTROL)
-    desk.wait_for_answer()
-
+    drag_undo_and_redo(desk)
     for place in range(3):
         desk.window.contents.tabs.setCurrentIndex(place)
         assert desk.window.contents.pages[place].current is not None
@@ -69,33 +55,44 @@ def test_from_paste_to_answer_and_back_again(desk: Desk, qtbot: QtBot, tmp_path:
     assert file.exists()
     assert not desk.window.isWindowModified()
     desk.window.close()
+    come_back_and_add_failures(Desk(qtbot, new_window(qtbot, tmp_path / "again"), tmp_path), file)
 
-    again = new_window(qtbot, tmp_path / "again")
-    assert again.files.open(file)
-    back = Desk(qtbot, again, tmp_path)
+
+def drag_undo_and_redo(desk: Desk) -> None:
+    """Drag the reading line to another percent, take it back, bring it again, and leave it where it was."""
+    before = desk.life()
+    drag(desk.qtbot, desk.window.contents.paper, QPoint(0, -120))
+    desk.wait_for_answer()
+    dragged = desk.sentence
+    assert not dragged.startswith("B10 ")
+    assert desk.life() > 1.001 * before
+    for key, sentence in ((Qt.Key.Key_Z, "B10 life 164 h"), (Qt.Key.Key_Y, dragged), (Qt.Key.Key_Z, "B10 life 164 h")):
+        desk.key(key, CONTROL)
+        desk.wait_for_answer()
+        assert desk.sentence.startswith(sentence)
+
+
+def come_back_and_add_failures(back: Desk, file: Path) -> None:
+    """Open the file in a new window, type two more failures, and undo them."""
+    assert back.window.files.open(file)
     back.wait_for_answer()
-    assert back.sentence.startswith("B10 life 164 h")
     before = back.sentence
-
-    back.go(11, "life")
-    for life in ("420", "430"):
-        back.type(life)
-        back.key(Qt.Key.Key_Return)
-    back.go(11, "state")
-    for _ in range(2):
-        back.type("failed")
-        back.key(Qt.Key.Key_Return)
+    assert before.startswith("B10 life 164 h")
+    for column, texts in (("life", ("420", "430")), ("state", ("failed", "failed"))):
+        back.go(11, column)
+        for text in texts:
+            back.type(text)
+            back.key(Qt.Key.Key_Return)
     back.wait_for_answer()
     assert back.counts == "12 failed, 10 running, 0 unread"
     assert back.sentence != before
-    assert again.isWindowModified()
-
+    assert back.window.isWindowModified()
     for _ in range(4):
         back.key(Qt.Key.Key_Z, CONTROL)
     back.wait_for_answer()
     assert back.sentence == before
-    assert not again.isWindowModified()
-    again.close()
+    assert not back.window.isWindowModified()
+    back.window.close()
 
 
 def test_values_come_at_full_precision_from_an_office_clipboard(desk: Desk) -> None:
