@@ -12,7 +12,7 @@ from PySide6.QtGui import QGuiApplication
 from PySide6.QtWidgets import QApplication, QFileDialog, QLineEdit, QMessageBox
 from pytestqt.qtbot import QtBot
 
-from reliability_app.session.document import Session
+from reliability_app.session.document import Basis, Session, UnitSet
 from reliability_app.session.messages import Messages
 from reliability_app.session.recovery import RecoveryCopy
 from reliability_app.windows.main_window import MainWindow
@@ -100,7 +100,9 @@ def new_window(qtbot: QtBot, folder: Path) -> MainWindow:
     qtbot.addWidget(window, before_close_func=lambda window: window.undo.setClean())
     window.resize(1240, 780)
     window.show()
-    window.fill(Session(), Messages(), recovery=RecoveryCopy(folder / "recovery"))
+    # A bound that is there at once, so that a journey need not wait for calibrations; one journey is about those.
+    first = UnitSet(name="Set 1", basis=Basis(bound="likelihood"))
+    window.fill(Session(sets=[first]), Messages(), recovery=RecoveryCopy(folder / "recovery"))
     window.activateWindow()
     with qtbot.waitActive(window):
         pass

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from pathlib import Path
 
 import pytest
@@ -11,6 +12,7 @@ from PySide6.QtWidgets import QApplication, QMessageBox
 
 from reliability_app.application import ask_about_recovery
 from reliability_app.session.document import HazardAsk
+from reliability_app.session.edits import ChangeBasis
 from tests.journeys.conftest import CONTROL, Desk
 from tests.journeys.test_main_job import TABBED
 
@@ -119,3 +121,33 @@ def test_escape_never_deletes_recovered_work(desk: Desk, press: str, answer: str
 
     QTimer.singleShot(200, act)
     assert ask_about_recovery(desk.window, Path("rig.json"), "2026-01-01 10:00") == answer
+
+
+def test_a_calibrated_bound_comes_after_a_provisional_one(desk: Desk) -> None:
+    shown: list[tuple[bool, str]] = []
+    window = desk.window
+    window.answer_shown.connect(lambda: shown.append((window.analysis.is_provisional, desk.sentence)))
+    desk.paste(TABBED)
+    shown.clear()
+    bound = window.contents.basis.bound
+    bound.setFocus()
+    bound.setCurrentIndex(bound.findData("automatic"))
+    bound.activated.emit(bound.currentIndex())
+    desk.wait_for_answer()
+    assert [provisional for provisional, _ in shown] == [True, False]
+    assert shown[0][1] != shown[1][1]
+    assert "calibrated likelihood ratio bound (automatic)" in window.contents.reading.rests_on.text()
+    assert window.contents.reading.stop_button.isHidden()
+
+
+def test_a_calibration_can_be_stopped_and_its_late_answer_is_dropped(desk: Desk) -> None:
+    desk.paste(TABBED)
+    panel = desk.window.contents.reading
+    basis = desk.window.session.sets[0].basis
+    desk.window.push_edit(ChangeBasis(0, basis, replace(basis, bound="calibrated")))
+    desk.qtbot.waitUntil(lambda: panel.stop_button.isVisible(), timeout=30_000)
+    panel.stop_button.click()
+    desk.qtbot.wait(300)
+    assert not desk.window.analyst.is_busy
+    assert desk.window.analysis.is_provisional
+    assert "provisional" in panel.rests_on.text()

@@ -156,11 +156,19 @@ def failed_tip(picture: SetPicture, life_unit: str, at: int) -> str:
     rows = picture.point_rows[at] if at < len(picture.point_rows) else ()
     count = int(picture.point_quantity[at])
     many = "" if count == 1 else f"{count} "
-    said = f"{many}failed at {as_given(float(picture.point_age[at]))} {life_unit}".rstrip()
+    said = f"{many}failed {_when(picture, at)} {life_unit}".rstrip()
     place = f"plotted at {number_text(100.0 * float(picture.point_fraction[at]))} %"
     names = [name for name in picture.point_names[at] if name] if at < len(picture.point_names) else []
     who = ", ".join(names) if 0 < len(names) <= _MOST_ROWS_NAMED else picture.name
     return f"{who}: {said}, {place}{_rows_text(rows)}"
+
+
+def _when(picture: SetPicture, at: int) -> str:
+    """Return the age of a failure, or the ages between which it happened."""
+    begin, end = float(picture.point_begin[at]), float(picture.point_end[at])
+    if begin == end:
+        return f"at {as_given(end)}"
+    return f"between {as_given(begin)} and {as_given(end)}" if begin > 0 else f"by {as_given(end)}"
 
 
 def running_tip(picture: SetPicture, life_unit: str, at: int) -> str:

@@ -87,7 +87,6 @@ class ReadingPanel(QWidget):
             self.sentence.setText(said.replace(f" {unit}", f"\u00a0{unit}") if unit else said)
             self.rests_on.setText(f"({basis_text(question.basis, question.counts, main)})")
         self.parameters.setText(parameters_text(analysis.fit))
-        self.parameters.setVisible(bool(self.parameters.text()))
         self.new_ask.setPlaceholderText(example_asks(question.life_unit))
         self.copy_button.setEnabled(main is not None)
         self.table.show_analysis(analysis)
@@ -96,7 +95,7 @@ class ReadingPanel(QWidget):
     def show_progress(self, steps: int) -> None:
         """Show that the calibration of a provisional bound goes on: `steps` batches of simulated tests so far."""
         if self._analysis is not None and self._analysis.is_provisional:
-            self.progress.setText(f"Calibrating the bounds: {steps} batches of simulated tests so far")
+            self.progress.setText(f"Calibrating: {steps} batches of simulated tests")
             self._show_progress(True)
 
     def _stop(self) -> None:
@@ -178,10 +177,14 @@ class ReadingPanel(QWidget):
         layout.setContentsMargins(8, 6, 8, 6)
         layout.addLayout(top)
         layout.addWidget(self.rests_on)
-        layout.addWidget(self.parameters)
+        # Progress shares the line of the parameters and keeps its height, so that nothing moves when it comes and goes.
         slow = QHBoxLayout()
-        slow.addWidget(self.progress, 1)
+        slow.addWidget(self.parameters, 1)
+        slow.addWidget(self.progress)
         slow.addWidget(self.stop_button)
+        keep_place = self.stop_button.sizePolicy()
+        keep_place.setRetainSizeWhenHidden(True)
+        self.stop_button.setSizePolicy(keep_place)
         layout.addLayout(slow)
         layout.addWidget(halves, 1)
 
