@@ -155,7 +155,7 @@ def _candidate(
     except DataError as trouble:  # a family of ln life, and a life that is not positive
         return Candidate(chosen.name, chosen.title, None, str(trouble), None, None)
     if not found.converged:
-        return Candidate(chosen.name, chosen.title, found, found.outcome.caution.text, None, None)
+        return Candidate(chosen.name, chosen.title, found, found.cautions[0].text, None, None)
     goodness = goodness_of(found, repeats=repeats, seed=seed, proceed=proceed)
     return Candidate(chosen.name, chosen.title, found, "", goodness, float(found.life(fraction)))
 

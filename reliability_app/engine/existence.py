@@ -19,6 +19,7 @@ class Outcome(Enum):
     ONE_FAILURE_NOT_OUTLIVED = "one-failure-not-outlived"
     FAILURES_AT_ONE_AGE = "failures-at-one-age"
     FAILED_BEFORE_FIRST_LOOK = "failed-before-first-look"
+    NO_INTERIOR_MAXIMUM = "no-interior-maximum"
     NOT_CONVERGED = "not-converged"
 
     @property
@@ -43,6 +44,10 @@ _TEXTS = {
     Outcome.FAILED_BEFORE_FIRST_LOOK: (
         "Every unit was found failed at its first look, so no life distribution can be estimated: "
         "look earlier, or record ages at failure."
+    ),
+    Outcome.NO_INTERIOR_MAXIMUM: (
+        "The likelihood has no maximum within the family, it keeps rising towards one of its ends, so no estimate "
+        "exists: choose a family with fewer parameters."
     ),
     Outcome.NOT_CONVERGED: (
         "The fit did not converge, so no number is given. The units may not determine a location and a spread together "

@@ -15,8 +15,8 @@ WALD_NEEDS_FAILURES = 50
 LIKELIHOOD_NEEDS_FAILURES = 20
 _NOTICED_BELOW_ZERO = 1e-3
 # Percent of complete tests with so many failures in which the one-sided 95 % lower bound of B10 lay below the true one:
-# own simulation of 40,000 tests a row, the same within half a point for lognormal and Weibull lives (at complete data the
-# share depends on nothing but the number).
+# own simulation of 40,000 tests a row, the same within half a point for lognormal and Weibull lives (of complete lives
+# the share depends on nothing but the number).
 _LIKELIHOOD_HELD = {2: 71, 3: 81, 4: 85, 5: 87, 6: 88, 7: 89, 8: 90, 10: 90, 12: 91, 15: 92}
 _WALD_HELD = {2: 55, 3: 67, 4: 73, 5: 77, 6: 79, 7: 81, 8: 82, 10: 84, 12: 86, 15: 87, 20: 88, 30: 90}
 
@@ -71,8 +71,8 @@ def cautions_of_share_below_zero(share: float) -> tuple[Caution, ...]:
     if share < _NOTICED_BELOW_ZERO:
         return ()
     text = (
-        f"This family puts {100 * share:.2g} % of the lives below age 0, so readings at low percents come out too early "
-        "or negative; choose a family of ln life, such as lognormal or Weibull."
+        f"This family puts {100 * share:.2g} % of the lives below age 0, so readings at low percents come out too "
+        "early or negative; choose a family of ln life, such as lognormal or Weibull."
     )
     return (Caution("lives-below-zero", Severity.CAUTION, text),)
 
@@ -90,9 +90,10 @@ def cautions_of_bound(kind: str, data: LifeData) -> tuple[Caution, ...]:
 
 
 def _held(what: str, table: dict[int, int], failures: int) -> str:
-    """Say how much less than promised a kind of bound keeps, by the row of the table for this many failures or fewer."""
+    """Say how much less than promised a kind of bound keeps, by the row of the table for so many failures or fewer."""
     row = max(count for count in table if count <= max(failures, min(table)))
     return (
-        f"{what} from {failures} failures keeps less than it promises: in complete tests with {row} failures the one-sided "
-        f"95 % lower bound of B10 was measured to hold in {table[row]} %. A calibrated bound keeps its promise."
+        f"{what} from {failures} failures keeps less than it promises: in complete tests with {row} failures the "
+        f"one-sided 95 % lower bound of B10 was measured to hold in {table[row]} %. "
+        "A calibrated bound keeps its promise."
     )

@@ -165,7 +165,8 @@ class Fit:
     def density(self, age: ArrayLike) -> Number:
         """Return the probability density at `age`, per unit of age."""
         found, y = self._found(), self._y(age)
-        log_density = self.family.standard.log_density(found.a + found.b * y).value
+        with np.errstate(over="ignore"):  # a short tail: the density there is 0
+            log_density = self.family.standard.log_density(found.a + found.b * y).value
         return _like(age, found.b * np.exp(log_density + found.sample.log_slope_at(y)))
 
     def mean_life(self) -> float:

@@ -7,12 +7,14 @@ from numpy.typing import NDArray
 
 from reliability_app.engine.estimate import Estimate
 from reliability_app.engine.existence import Outcome, outcome_before_fitting
-from reliability_app.engine.families import Family, family
+from reliability_app.engine.families import Family, ShapedFamily, family
+from reliability_app.engine.families.shaped_family import with_threshold
 from reliability_app.engine.fit_result import Fit
 from reliability_app.engine.life_data import LifeData
 from reliability_app.engine.likelihood import Terms, log_likelihood
 from reliability_app.engine.newton import Maximum, maximise
 from reliability_app.engine.sample import Sample, sample_of
+from reliability_app.engine.shaped.shaped_fitting import fit_shaped
 
 Array = NDArray[np.float64]
 
@@ -22,7 +24,7 @@ _THIN_TO = 4_000
 _FURTHEST_START = 30.0
 
 
-def fit(data: LifeData, family_name: str) -> Fit:
+def fit(data: LifeData, family_name: str, *, threshold: bool = False) -> Fit:
     """Fit a family by maximum likelihood.
 
     Parameters
@@ -30,6 +32,8 @@ def fit(data: LifeData, family_name: str) -> Fit:
     data : LifeData
     family_name : str
         One of `FAMILY_NAMES`.
+    threshold : bool
+        Fit ln(life - threshold) in the place of ln life: Weibull, lognormal, exponential, loglogistic.
 
     Returns
     -------
@@ -39,11 +43,15 @@ def fit(data: LifeData, family_name: str) -> Fit:
     Raises
     ------
     UnknownName
-        If there is no such family.
+        If there is no such family, or it has no form with a threshold.
     DataError
         If the family is one of ln life, and some lives are not positive.
     """
     chosen = family(family_name)
+    if threshold:
+        chosen = with_threshold(chosen)
+    if isinstance(chosen, ShapedFamily):
+        return fit_shaped(data, chosen)
     data.check_beyond(chosen.life_scale.origin, chosen.title)
     outcome = outcome_before_fitting(data, chosen)
     if outcome is not Outcome.ESTIMATED:
@@ -99,7 +107,7 @@ def _starts(sample: Sample, chosen: Family) -> tuple[Array, Array]:
     failures = _failures(sample)
     share = failures / (failures + sample.running.total)
     a = chosen.standard.quantile(np.clip(0.5 * share, 1e-12, 0.5))
-    places = [y for y in (sample.failed.y, sample.running.y, sample.left.y, sample.between.middle) if y.size]
+    places = [y for y in (sample.failed.y, sample.running.y, sample.left.y, sample.between.nearest) if y.size]
     highest, sigma = max(float(y.max()) for y in places), chosen.fixed_sigma
     if sigma is not None:
         b = sample.spread / sigma

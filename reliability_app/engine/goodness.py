@@ -81,7 +81,10 @@ def goodness_of(
 ) -> Goodness:
     """Return how well a fit agrees with its units, with p-values simulated under the set's own plan.
 
-    Lives rounded so far that many coincide look worse than they are, because simulated lives do not coincide.
+    The p-values are exact for complete data and a fixed number of failures. For a fixed end of test and for units that
+    leave at ages of their own they err a little to the side of the family: in own simulations of 1,500 sets of 30 units
+    a true family had p <= 0.05 in 2 to 7 % of them, p <= 0.10 in 7 to 11 %. Lives rounded so far that many coincide
+    look worse than they are, because simulated lives do not coincide.
 
     Parameters
     ----------
@@ -97,8 +100,8 @@ def goodness_of(
     NoEstimate
         Without a fit.
     """
-    if found.estimate is None:
-        raise NoEstimate(found.outcome.caution.text)
+    if not found.converged:
+        raise NoEstimate(found.cautions[0].text)
     if found.data.is_found_failed.any():
         return Goodness(None, None, 0, _INTERVALS)
     distance, straightness = statistics_of(found)
@@ -205,7 +208,9 @@ def simulated_one_by_one(
         If the plan cannot be simulated, or hardly any sample could be fitted.
     """
     count = repeats or REPEATS_ONE_BY_ONE
-    refits = (fit(test, found.family.name) for test in data_like(found, repeats=count, seed=seed, proceed=proceed))
+    name, threshold = found.family.name, found.family.has_threshold
+    tests = data_like(found, repeats=count, seed=seed, proceed=proceed)
+    refits = (fit(test, name, threshold=threshold) for test in tests)
     statistics = np.array([statistics_of(refit) for refit in refits if refit.converged]).reshape(-1, 2)
     if len(statistics) < _LEAST_SHARE_FITTED * count:
         raise BoundUnavailable("Hardly any simulated sample could be fitted, so there is no reference for this family.")

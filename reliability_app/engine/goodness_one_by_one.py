@@ -20,9 +20,9 @@ from reliability_app.engine.families.normal import Normal
 from reliability_app.engine.fit_result import Fit
 from reliability_app.engine.fitted_scores import log_tails, normal_score
 from reliability_app.engine.life_data import LifeData
-from reliability_app.engine.refitting import FEWEST_FAILURES, life_data_of
+from reliability_app.engine.refitting import FEWEST_FAILURES, life_data_of, with_as_many_failures
 from reliability_app.engine.sample import sample_of
-from reliability_app.engine.simulation import Draws, draw_sample, plan_of
+from reliability_app.engine.simulation import Draws, PlanKind, draw_sample, plan_of
 
 if TYPE_CHECKING:
     from reliability_app.engine.bounds import Proceed
@@ -59,7 +59,11 @@ def data_like(found: Fit, *, repeats: int, seed: int, proceed: Proceed | None = 
     for place in range(repeats):
         if proceed is not None:
             proceed()
-        sample, failures = draw_sample(plan, Draws.of(plan, 1, seed + place), FittedLives(found), a=0.0, b=1.0)
+        draws = Draws.of(plan, 1, seed + place)
+        if plan.kind is PlanKind.FIXED_TIME:
+            end = float(life_scale.from_line(np.array(plan.end)))
+            draws = with_as_many_failures(draws, plan, float(found.failure_probability(end)))
+        sample, failures = draw_sample(plan, draws, FittedLives(found), a=0.0, b=1.0)
         if failures[0] >= FEWEST_FAILURES:
             yield life_data_of(sample, 0, life_scale)
 

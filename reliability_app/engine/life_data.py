@@ -23,7 +23,8 @@ class LifeData:
     Build it with `right_censored` or `from_intervals`; both validate. The invariant afterwards: all arrays have shape
     (n,), n >= 1, are not writable, and for each record
     failed: lower == upper; running: lower finite, upper = inf; found failed: lower < upper < inf;
-    0 <= entered < upper, where 0 says that the unit was watched from the beginning;
+    0 <= entered < upper, where 0 says that the unit was watched from the beginning, else entered <= lower: for a unit
+    found failed that entered after the given lower end, its entry is the lower end;
     quantity is a whole number >= 1.
 
     A unit found failed of which nothing was known before has lower = 0 (it failed after age 0) or lower = -inf (nothing
@@ -112,6 +113,8 @@ class LifeData:
         faults = _faults(lower, upper, counts, starts)
         if faults:
             raise DataError(faults)
+        # A unit that came under observation within its interval had not failed by then.
+        lower = np.where(starts > 0, np.maximum(lower, starts), lower)
         for array in (lower, upper, counts, starts):
             array.flags.writeable = False
         return cls(lower, upper, counts, starts)

@@ -100,16 +100,17 @@ class HazardMeasure(Measure):
     def terms(self, a: Array, b: Array) -> Terms:
         """Return the log hazard and its derivatives."""
         y = _column(self.y, a)
-        value, first, second = self.standard.log_hazard(a + b * y)
         inverse = 1.0 / b
-        return Terms(
-            np.log(b) + value,
-            first,
-            inverse + first * y,
-            second,
-            second * y,
-            second * y * y - inverse * inverse,
-        )
+        with np.errstate(over="ignore", invalid="ignore"):  # far out in a short tail the hazard is 0
+            value, first, second = self.standard.log_hazard(a + b * y)
+            return Terms(
+                np.log(b) + value,
+                first,
+                inverse + first * y,
+                second,
+                second * y,
+                second * y * y - inverse * inverse,
+            )
 
 
 class SlopeMeasure(Measure):

@@ -19,10 +19,13 @@ import numpy as np
 from numpy.typing import NDArray
 
 from reliability_app.engine.families.base import Derivatives, StandardDistribution
-from reliability_app.engine.families.interval import log_interval
+from reliability_app.engine.families.interval import IntervalDerivatives, log_interval
 from reliability_app.engine.sample import IntervalPart, Part, Sample
 
 Array = NDArray[np.float64]
+
+# Intervals whose half is longer than this, in the spread of the failures, are held by their ends.
+_WIDE = 1.0
 
 
 @dataclass(frozen=True, eq=False)
@@ -94,16 +97,31 @@ def _total(values: Array, weights: Array) -> Array:
 
 
 def _add_intervals(sums: Array, part: IntervalPart, standard: StandardDistribution, *, a: Array, b: Array) -> None:
-    middle, half, weight = part.middle, part.half, part.weight
-    gap = log_interval(standard, a + b * middle, b * half)
+    low, high = part.ends
+    gap = log_interval(standard, a + b * part.middle, b * part.half, ends=(a + b * low, a + b * high))
+    slope, across, bend = _in_middle(gap, part.middle, part.half)
+    wide = part.half > _WIDE
+    if wide.any():
+        of_ends = _in_ends(gap, low, high)
+        slope, across, bend = (np.where(wide, *both) for both in zip(of_ends, (slope, across, bend), strict=True))
+    for row, piece in enumerate((gap.value, gap.d_middle, slope, gap.d_middle_middle, across, bend)):
+        sums[row] += _total(piece, part.weight)
+
+
+def _in_middle(gap: IntervalDerivatives, middle: Array, half: Array) -> tuple[Array, Array, Array]:
+    """Return the derivatives d_b, d_ab, d_bb of intervals from their middles and half widths."""
     along, across = middle * gap.d_middle_middle, half * gap.d_middle_half
-    pieces = (
-        gap.value,
-        gap.d_middle,
-        middle * gap.d_middle + half * gap.d_half,
-        gap.d_middle_middle,
-        along + across,
-        middle * (along + 2.0 * across) + half * half * gap.d_half_half,
+    slope = middle * gap.d_middle + half * gap.d_half
+    return slope, along + across, middle * (along + 2.0 * across) + half * half * gap.d_half_half
+
+
+def _in_ends(gap: IntervalDerivatives, low: Array, high: Array) -> tuple[Array, Array, Array]:
+    """Return the same from the ends: what is far out at one end drops out, and the other keeps its digits."""
+    at_low, at_high = 0.5 * (gap.d_middle - gap.d_half), 0.5 * (gap.d_middle + gap.d_half)
+    mean, twice = 0.25 * (gap.d_middle_middle + gap.d_half_half), 0.5 * gap.d_middle_half
+    low_low, high_high, low_high = mean - twice, mean + twice, 0.25 * (gap.d_middle_middle - gap.d_half_half)
+    return (
+        high * at_high + low * at_low,
+        high * (high_high + low_high) + low * (low_low + low_high),
+        high * (high * high_high + low * low_high) + low * (low * low_low + high * low_high),
     )
-    for row, piece in enumerate(pieces):
-        sums[row] += _total(piece, weight)

@@ -17,7 +17,7 @@ from reliability_app.engine.life_scale import LifeScale
 from reliability_app.engine.likelihood import Terms, log_likelihood
 from reliability_app.engine.newton import Evaluate, Maximum, maximise
 from reliability_app.engine.sample import Sample
-from reliability_app.engine.simulation import CensoringPlan, Draws, draw_sample, plan_of
+from reliability_app.engine.simulation import CensoringPlan, Draws, PlanKind, draw_sample, plan_of
 
 if TYPE_CHECKING:  # the bounds draw their samples here
     from reliability_app.engine.bounds import Proceed
@@ -82,6 +82,9 @@ def samples_like(
 ) -> Iterator[DrawnSamples]:
     """Give samples drawn at an estimate under the plan of its data, piece by piece.
 
+    Where the test stopped at a fixed age each sample has as many failures as the data: their number says little about
+    the family, and a reference in which it varied would be too wide.
+
     Parameters
     ----------
     repeats : int, optional
@@ -107,7 +110,21 @@ def samples_like(
         if proceed is not None:
             proceed()
         draws = Draws.of(plan, min(piece, count - start), seed + start)
+        if plan.kind is PlanKind.FIXED_TIME:
+            end = estimate.a + estimate.b * (plan.end - estimate.sample.shift) / estimate.sample.spread
+            draws = with_as_many_failures(draws, plan, float(estimate.family.standard.cdf(np.array(end))))
         yield samples_at(estimate, plan, draws, a=estimate.a, b=estimate.b)
+
+
+def with_as_many_failures(draws: Draws, plan: CensoringPlan, share: float) -> Draws:
+    """Return draws for a fixed end of test by which just as many units fail as in the data.
+
+    The ratios of the first uniform order statistics to the next one are order statistics of a uniform sample of their
+    own; `share` of the model's lives lie before the end.
+    """
+    before, after = draws.life[:, : plan.failures], draws.life[:, plan.failures :]
+    life = np.concatenate([share * before / after[:, :1], np.full_like(after, 0.5 * (1.0 + share))], axis=1)
+    return Draws(life, draws.removal)
 
 
 def life_data_of(sample: Sample, row: int, life_scale: LifeScale) -> LifeData:

@@ -65,11 +65,28 @@ class Part:
 
 @dataclass(frozen=True, eq=False)
 class IntervalPart:
-    """Found-failed records: middle and half width of each interval in y, and weights, shape (rows, n)."""
+    """Found-failed records: middle and half width of each interval in y, and weights, shape (rows, n).
+
+    The narrowest intervals need middle and half width, the widest the two ends: `low` and `high`, where they are known
+    by themselves.
+    """
 
     middle: Array
     half: Array
     weight: Array
+    low: Array | None = None
+    high: Array | None = None
+
+    @property
+    def ends(self) -> tuple[Array, Array]:
+        """The lower and the upper ends in y."""
+        low = self.middle - self.half if self.low is None else self.low
+        return low, self.middle + self.half if self.high is None else self.high
+
+    @property
+    def nearest(self) -> Array:
+        """The point of each interval nearest to y = 0."""
+        return np.asarray(np.clip(0.0, *self.ends))
 
     @property
     def size(self) -> int:
@@ -80,7 +97,8 @@ class IntervalPart:
         """Return the chosen rows; a part that serves the whole batch stays whole."""
         if self.middle.shape[0] == 1:
             return self
-        return IntervalPart(self.middle[index], self.half[index], self.weight[index])
+        ends = (None if end is None else end[index] for end in (self.low, self.high))
+        return IntervalPart(self.middle[index], self.half[index], self.weight[index], *ends)
 
 
 _NOTHING = np.empty((1, 0))
@@ -176,8 +194,14 @@ def _between(data: LifeData, chosen: Mask, centre: tuple[float, float], life_sca
     lower, upper = data.lower[chosen], data.upper[chosen]
     shift, spread = centre
     half = life_scale.half_width(lower, upper)
-    middle = (life_scale.to_line(lower) + half - shift) / spread
-    return IntervalPart(middle[None], (half / spread)[None], data.quantity[chosen][None])
+    low, high = (life_scale.to_line(lower) - shift) / spread, (life_scale.to_line(upper) - shift) / spread
+    return IntervalPart(
+        middle=low[None] + half / spread,
+        half=(half / spread)[None],
+        weight=data.quantity[chosen][None],
+        low=low[None],
+        high=high[None],
+    )
 
 
 def _centre(failures: Array, data: LifeData, life_scale: LifeScale) -> tuple[float, float]:

@@ -37,10 +37,6 @@ class Cells:
         """How many there are."""
         return int(self.end.size)
 
-    def chosen(self, mask: Mask) -> Cells:
-        """Return some of the cells."""
-        return Cells(self.begin[mask], self.end[mask])
-
     def within(self, lower: Array, upper: Array) -> tuple[Integers, Integers]:
         """Return the first and the last cell inside each (lower, upper], or at the age itself where they are equal.
 
@@ -51,8 +47,8 @@ class Cells:
         return np.where(lower == upper, at_age, after), np.searchsorted(self.end, upper, side="right") - 1
 
     def at_risk_from(self, entered: Array) -> Integers:
-        """Return the first cell that lies after each age of entry."""
-        return np.searchsorted(self.end, entered, side="right")
+        """Return the first cell that lies after each age of entry; entry at 0 says that all are watched."""
+        return np.where(entered > 0, np.searchsorted(self.end, entered, side="right"), 0)
 
 
 def innermost_intervals(data: LifeData) -> Cells:
@@ -63,9 +59,8 @@ def innermost_intervals(data: LifeData) -> Cells:
     found failed (l, u], running (l, inf); a unit that entered late at v is watched on (v, inf) (Turnbull 1976,
     J. R. Statist. Soc. B 38, 290-295, as corrected for late entry by Frydman 1994, ibid. 56, 71-74; from memory).
     """
-    lower = known_lower(data)
     late = np.unique(data.entered[data.entered > 0])
-    age = np.concatenate([lower, data.upper, late])
+    age = np.concatenate([data.lower, data.upper, late])
     begins = np.where(data.is_failed, _BEGINS_AT, _BEGINS_AFTER)
     kind = np.concatenate([begins, np.full(data.upper.size + late.size, _ENDS_AT)])
     order = np.lexsort((kind, age))
@@ -73,11 +68,6 @@ def innermost_intervals(data: LifeData) -> Cells:
     # Equal ends stand together, so that the last begin before an end is the one that matters.
     here = np.flatnonzero(is_begin[:-1] & ~is_begin[1:])
     return Cells(age[here], age[here + 1])
-
-
-def known_lower(data: LifeData) -> Array:
-    """Return the age at which each unit is known to have run: a unit that entered later than seen ran till then."""
-    return np.maximum(data.lower, data.entered)
 
 
 @dataclass(frozen=True, eq=False)
@@ -145,7 +135,7 @@ class Records:
 def records_on(cells: Cells, data: LifeData) -> Records:
     """Return what the units of `data` say of its innermost intervals."""
     size, weight = cells.count, data.quantity
-    first, last = cells.within(known_lower(data), data.upper)
+    first, last = cells.within(data.lower, data.upper)
     start = cells.at_risk_from(data.entered)
     turns = np.bincount(start, weight, size + 1) - np.bincount(first, weight, size + 1)
     has_failed = ~data.is_running

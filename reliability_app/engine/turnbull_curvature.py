@@ -17,8 +17,9 @@ _MOST_TURNS = 2_000
 # A pretended share of a unit in every cell, which keeps the equations solvable where the increments of some cells
 # can be traded for each other.
 _PRETENDED = 1e-9
-_LEAST = 1.0
-# Records over at most so many held cells go into the preconditioner, which may hold at most so many numbers.
+_MOST_ROUNDS = 12
+# Records over at most so many held cells go into the preconditioner, which may hold at most so many numbers. In wider
+# bands the library shares tiny pieces of work among threads, which wait for each other on a busy machine.
 _WIDEST_BAND = 16
 _MOST_IN_BAND = 4_000_000
 
@@ -53,19 +54,55 @@ class Curvature:
         """Cells, and nodes beside the grounded one."""
         return int(self.near.size)
 
-    def newton_direction(self, slope: Array, records: Records, increment: Array, *, precision: float) -> Array:
-        """Return the step in the increments to the top of the quadratic that has this slope and curvature.
+    def step_to_top(self, slope: Array, increment: Array, passing: Array, *, precision: float) -> tuple[Array, bool]:
+        """Return the step to the top of the quadratic with this slope and curvature, increments held at 0 or above.
+
+        Cells that the free top would push below zero are set to zero and the rest solved anew, some rounds long.
+        Where the outcome does not lead upward the free step is returned, which does until it is cut at zero.
+
+        Returns
+        -------
+        step : ndarray, shape (cells,)
+        is_newton : bool
+            True where the free step keeps all cells above zero.
+        """
+        least = np.maximum(increment, 1.0 / np.maximum(passing, 1.0))
+        steady = Curvature(self.near + _PRETENDED / least**2, self.start, self.stop, self.far)
+        newton = steady._solve(slope, precision)
+        is_free = increment + newton >= 0
+        if is_free.all():
+            return newton, True
+        step = newton
+        for _ in range(_MOST_ROUNDS):
+            free = np.flatnonzero(is_free)
+            if not free.size:
+                break
+            step = np.where(is_free, 0.0, -increment)
+            step[free] = steady._among(free)._solve((slope - steady._pull(step))[free], precision)
+            is_below = increment + step < 0
+            if not is_below.any():
+                break
+            is_free &= ~is_below
+        step = np.maximum(step, -increment)
+        return (step if float(slope @ step) > 0 else newton), False
+
+    def _among(self, cells: Integers) -> Curvature:
+        """Return the curvature in some of the increments, the others held."""
+        start, stop = np.searchsorted(cells, self.start), np.searchsorted(cells, self.stop)
+        is_left = stop > start
+        return Curvature(self.near[cells], start[is_left], stop[is_left], self.far[is_left])
+
+    def _pull(self, step: Array) -> Array:
+        """Return how much a step in the increments takes from the slope."""
+        return np.asarray(np.cumsum(self._times(np.cumsum(step))[::-1])[::-1])
+
+    def _solve(self, slope: Array, precision: float) -> Array:
+        """Return the step in the increments to the free top.
 
         By conjugate gradients, preconditioned with what lies near the diagonal: a turn costs a few passes over the
         records, whereas the matrix of ten thousand cells would fill a gigabyte.
         """
-        least = np.maximum(increment, _LEAST / np.maximum(records.passing, 1.0))
-        steady = Curvature(self.near + _PRETENDED / least**2, self.start, self.stop, self.far)
-        rise = steady._solve(slope - np.append(slope[1:], 0.0), precision)
-        return np.diff(rise, prepend=0.0)
-
-    def _solve(self, right: Array, precision: float) -> Array:
-        factor = self._factor()
+        right, factor = slope - np.append(slope[1:], 0.0), self._factor()
         potential, rest = np.zeros_like(right), right.copy()
         search = dpbtrs(factor, rest)[0]
         length = first_length = float(rest @ search)
@@ -80,10 +117,10 @@ class Curvature:
             next_length = float(rest @ smoothed)
             search = smoothed + next_length / length * search
             length = next_length
-        return potential
+        return np.diff(potential, prepend=0.0)
 
     def _factor(self) -> Array:
-        """Return the Cholesky factor of the band around the diagonal, or of the diagonal itself where rounding forbids."""
+        """Return the Cholesky factor of the band around the diagonal, or of the diagonal where rounding forbids it."""
         span = self.stop - self.start
         width = int(min(span.max(initial=1), _WIDEST_BAND, max(1, _MOST_IN_BAND // self.size), self.size - 1))
         band = np.zeros((width + 1, self.size))

@@ -90,12 +90,9 @@ def _chain_lengths(resistance: Array, joints: Integers) -> Array:
 
 
 def _inverse(matrix: Array) -> Array:
+    """Return the inverse of a matrix that is symmetric and positive: its upper half, with anything below."""
     factor, trouble = dpotrf(matrix)
-    if trouble:
-        return np.full_like(matrix, np.nan)
-    inverse, _ = dpotri(factor)
-    upper = np.triu(inverse)
-    return np.asarray(upper + np.triu(upper, 1).T)
+    return np.full_like(matrix, np.nan) if trouble else np.asarray(dpotri(factor)[0])
 
 
 def _along_chains(covariance: Array, resistance: Array, joints: Integers) -> Array:
@@ -108,7 +105,9 @@ def _along_chains(covariance: Array, resistance: Array, joints: Integers) -> Arr
             found[begin:end] = covariance[at, at] + reach
             continue
         # A node in between is the mean of the joints, weighted by nearness, give or take what the chain itself allows.
-        share = reach[:-1] / reach[-1]
+        # Where the chain is torn there are untied nodes only.
+        with np.errstate(invalid="ignore"):
+            share = reach[:-1] / reach[-1]
         mixed = (1.0 - share) ** 2 * covariance[at, at] + share**2 * covariance[at + 1, at + 1]
         mixed += 2.0 * share * (1.0 - share) * covariance[at, at + 1]
         found[begin : end - 1] = mixed + reach[:-1] * (1.0 - share)

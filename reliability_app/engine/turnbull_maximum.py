@@ -2,14 +2,15 @@
 
 With h_k = -ln(1 - share of the units at cell k that fail in it) a unit that failed in the cells a..b, watched from cell
 e on, contributes ln(1 - exp(-(h_a + ... + h_b))) - (h_e + ... + h_(a-1)), and one still running the last sum only. Each
-term is concave in h, with late entry as without, so that every point that meets the Kuhn-Tucker conditions is a maximum:
+term is concave in h, with late entry as without, so that any point that meets the Kuhn-Tucker conditions is a maximum:
 
     slope of cell k = sum over records that contain it of weight/(exp(x) - 1) - units passing it
     slope = 0 where h_k > 0, slope <= 0 where h_k = 0
 
-Cells of no mass are left out: the search starts from a fewest set of cells that serves every record, lets in between any
-two the cell that promises most, takes Newton steps on those and drops what they push to zero (the constrained Newton
-method, Wang 2007, J. R. Statist. Soc. B 69, 185-198, from memory; here on the concave scale, which needs no sum to one).
+Cells of no mass are left out: the search starts from a fewest set of cells that serves every record, lets in between
+any two the cell that promises most, steps to the top of the quadratic over those and drops what comes out at zero (the
+constrained Newton method of Wang 2007, J. R. Statist. Soc. B 69, 185-198, cited from memory; here on the concave scale
+of the hazards, which need not sum to one).
 """
 
 from __future__ import annotations
@@ -30,9 +31,11 @@ _MOST_STEPS = 400
 _MOST_HALVINGS = 60
 # A cell whose increment would come out below this is left empty: less than a tenth of a unit in 10^10.
 _LEAST_INCREMENT = 1e-11
-# Squared length of the last Newton step in its own metric; what it leaves over is of the order of this itself.
+# Squared length of the last Newton step in its own metric; what it leaves to be done is of the order of this itself.
 _CLOSE_ENOUGH = 1e-12
+# What a cell that is let in holds at first, in units.
 _SEED = 1e-6
+# How exactly the equations of a step are solved: while cells come in, and at the end.
 _ROUGHLY, _FINELY = 1e-2, 1e-6
 _ENOUGH_GAIN = 1e-4
 # What rounding can do to a sum of logarithms, as a share of the sum of their sizes.
@@ -125,12 +128,11 @@ def _improve(records: Records, increment: Array) -> bool:
     held = np.flatnonzero(increment > 0)
     part = records.among(held)
     before = increment[held]
-    slope, curvature = _slope(part, before), Curvature.of(part, before)
-    direction = curvature.newton_direction(slope, part, before, precision=_ROUGHLY if entering.size else _FINELY)
-    decrement = float(slope @ direction)
-    after = _searched(part, before, direction, slope)
-    increment[held] = after
-    return bool(not entering.size and (after > 0).all() and decrement < _CLOSE_ENOUGH)
+    slope = _slope(part, before)
+    precision = _ROUGHLY if entering.size else _FINELY
+    step, is_newton = Curvature.of(part, before).step_to_top(slope, before, part.passing, precision=precision)
+    increment[held] = _searched(part, before, step, slope)
+    return bool(not entering.size and is_newton and float(slope @ step) < _CLOSE_ENOUGH)
 
 
 def _promising(records: Records, increment: Array) -> Integers:
@@ -150,20 +152,18 @@ def _promising(records: Records, increment: Array) -> Integers:
     stretch = np.cumsum(~is_empty)[candidates]
     best = np.lexsort((candidates, -slope[candidates], stretch))
     is_first = np.concatenate([[True], np.diff(stretch[best]) > 0])
-    return candidates[best][is_first]
+    return np.asarray(candidates[best][is_first])
 
 
-def _searched(records: Records, before: Array, direction: Array, slope: Array) -> Array:
-    """Return the first of before + direction, half of it, ... that gains enough, held at zero or above."""
+def _searched(records: Records, before: Array, step: Array, slope: Array) -> Array:
+    """Return the first of before + step, half of it, ... that gains enough, cut at zero."""
     level = _value(records, before)
     allowance = _ROUNDING * (1.0 + records.total + abs(level) + float(records.passing @ before))
-    length = 1.0
-    for _ in range(_MOST_HALVINGS):
-        after = np.maximum(before + length * direction, 0.0)
-        gain = _value(records, after) - level
-        if gain >= _ENOUGH_GAIN * float(slope @ (after - before)) - allowance:
+    for halvings in range(_MOST_HALVINGS):
+        after = np.maximum(before + 0.5**halvings * step, 0.0)
+        promised = max(float(slope @ (after - before)), 0.0)
+        if _value(records, after) - level >= _ENOUGH_GAIN * promised - allowance:
             return after
-        length *= 0.5
     return before
 
 

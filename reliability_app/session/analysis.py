@@ -8,15 +8,15 @@ from dataclasses import dataclass, field, replace
 from reliability_app.engine import Curve, Fit, LifeData, fit
 from reliability_app.engine.bounds import Proceed, check_bound
 from reliability_app.engine.cautions import Caution, Severity, worst_first
-from reliability_app.engine.errors import BoundUnavailable, RigpaperError
+from reliability_app.engine.errors import BoundUnavailable, NoEstimate, RigpaperError
 from reliability_app.session.document import Ask, Basis, LifeAsk, Session
-from reliability_app.session.drawing_up import NO_POINTS, Curves, Points, draw_curves, draw_points, draw_steps
+from reliability_app.session.drawing_up import NO_POINTS, Curves, Points, draw_curves, draw_marks
 from reliability_app.session.family_caution import held_against, rivals_for
 from reliability_app.session.picture import Reading, SetPicture
 from reliability_app.session.quick_reading import STAND_IN, is_slow, read_off_band
 from reliability_app.session.taking_readings import take_reading
 from reliability_app.session.unit_table import Counts, ReadUnits
-from reliability_app.session.wording import STANDING_CAUTION, repeated_caution, unread_caution
+from reliability_app.session.wording import STANDING_CAUTION, repeated_caution, undrawn_caution, unread_caution
 
 MAXIMUM_LIKELIHOOD = "maximum likelihood"
 
@@ -168,10 +168,13 @@ def _marks(data: LifeData | None, units: ReadUnits, cautions: list[Caution]) -> 
     if data is None:
         return NO_POINTS, None
     try:
-        return draw_points(data, units), draw_steps(data)
-    except BoundUnavailable as trouble:
+        points, steps = draw_marks(data, units)
+    except NoEstimate as trouble:
         cautions.append(Caution("points-not-drawn", Severity.CAUTION, str(trouble)))
         return NO_POINTS, None
+    if points.undrawn:
+        cautions.append(undrawn_caution(points.undrawn))
+    return points, steps
 
 
 def _picture(
@@ -183,7 +186,10 @@ def _picture(
         family=question.basis.family,
         point_age=points.age,
         point_fraction=points.fraction,
+        point_begin=points.begin,
+        point_end=points.end,
         point_quantity=points.quantity,
+        point_is_shared=points.is_shared,
         point_rows=points.rows,
         point_names=tuple(tuple(question.names.get(row, "") for row in rows) for rows in points.rows),
         running_age=points.running_age,

@@ -1,14 +1,17 @@
-"""Draws up a set's picture: plotting positions, running units, curves with bands, Kaplan-Meier steps."""
+"""Draws up a set's picture: plotting positions, running units, curves with bands, steps of the survival estimate."""
 
 from __future__ import annotations
 
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
 
-from reliability_app.engine import Curve, Fit, LifeData, kaplan_meier, plotting_positions
+from reliability_app.engine import Curve, Fit, LifeData
+from reliability_app.engine.empirical import PlottingPositions, midpoints, survival_steps
 from reliability_app.engine.fit_curves import hazard_curve, probability_curves, step_curve
+from reliability_app.engine.turnbull_cells import Cells
 from reliability_app.session.document import Basis, HazardAsk
 from reliability_app.session.taking_readings import bound_side
 from reliability_app.session.unit_table import ReadUnits
@@ -26,14 +29,23 @@ _LEAST_SHARE, _MOST_SHARE = 1e-4, 1.0 - 1e-6
 
 @dataclass(frozen=True, eq=False)
 class Points:
-    """Marks of the failures (one an age) and of the running units (one an age)."""
+    """Marks of the failures (one a step of the survival estimate) and of the running units (one an age).
+
+    The failures of a mark happened between `begin` and `end`, which are equal where the age is known; its rows are
+    all that may have failed there, and it is shared where one of them may have failed at another mark too. `undrawn`
+    counts the failed units for which there is no place on the paper.
+    """
 
     age: Floats
     fraction: Floats
+    begin: Floats
+    end: Floats
     quantity: Integers
+    is_shared: NDArray[np.bool_]
     rows: tuple[tuple[int, ...], ...]
     running_age: Floats
     running_quantity: Integers
+    undrawn: int = 0
 
 
 @dataclass(frozen=True, eq=False)
@@ -45,31 +57,51 @@ class Curves:
     survival: Curve
 
 
-NO_POINTS = Points(np.empty(0), np.empty(0), np.empty(0, np.int64), (), np.empty(0), np.empty(0, np.int64))
+_NONE, _NO_COUNT = np.empty(0), np.empty(0, np.int64)
+NO_POINTS = Points(_NONE, _NONE, _NONE, _NONE, _NO_COUNT, np.empty(0, np.bool_), (), _NONE, _NO_COUNT)
 
 
-def draw_points(data: LifeData, units: ReadUnits) -> Points:
-    """Return the marks of the units; raises BoundUnavailable while some are found failed."""
-    positions = plotting_positions(data)
-    failed, running = data.is_failed, data.is_running
-    place = np.searchsorted(positions.age, data.lower[failed])
-    rows: list[list[int]] = [[] for _ in positions.age]
-    for at, record in zip(place.tolist(), np.flatnonzero(failed).tolist(), strict=True):
-        rows[at].append(units.rows[record])
+def draw_marks(data: LifeData, units: ReadUnits) -> tuple[Points, Curve]:
+    """Return the marks of the units, and the steps of the survival estimate up to the last observation.
+
+    Raises
+    ------
+    NoEstimate
+        If Turnbull's estimate did not settle.
+    """
+    steps = survival_steps(data)
+    positions = midpoints(steps)
+    record, mark = _contributions(data, positions)
+    bounds = np.searchsorted(mark, np.arange(positions.age.size + 1))
+    table_rows = np.asarray(units.rows)[record].tolist()
+    running = data.is_running
     running_age, running_quantity = _summed(data.lower[running], data.quantity[running])
-    return Points(
+    times_drawn = np.bincount(record, minlength=data.lower.size)
+    points = Points(
         age=positions.age,
         fraction=positions.fraction,
-        quantity=_summed(data.lower[failed], data.quantity[failed])[1],
-        rows=tuple(tuple(listed) for listed in rows),
+        begin=positions.begin,
+        end=positions.end,
+        # With overlapping intervals a mark is expected to be so many units, to the nearest whole number.
+        quantity=np.maximum(np.rint(positions.failures), 1.0).astype(np.int64),
+        is_shared=np.bincount(mark, times_drawn[record] > 1, positions.age.size) > 0,
+        rows=tuple(tuple(table_rows[first:last]) for first, last in pairwise(bounds.tolist())),
         running_age=running_age,
         running_quantity=running_quantity,
+        undrawn=int(data.quantity[~running & (times_drawn == 0)].sum()),
     )
+    return points, step_curve(steps, data.last_observation)
 
 
-def draw_steps(data: LifeData) -> Curve:
-    """Return the Kaplan-Meier steps up to the last observation."""
-    return step_curve(kaplan_meier(data), data.last_observation)
+def _contributions(data: LifeData, positions: PlottingPositions) -> tuple[Integers, Integers]:
+    """Return each pair of a failed record and a mark at which it may have failed, mark by mark."""
+    failed = np.flatnonzero(~data.is_running)
+    first, last = Cells(positions.begin, positions.end).within(data.lower[failed], data.upper[failed])
+    many = np.maximum(last - first + 1, 0)
+    record = np.repeat(failed, many)
+    mark = np.arange(record.size) - np.repeat(np.cumsum(many) - many, many) + np.repeat(first, many)
+    order = np.lexsort((record, mark))
+    return record[order], mark[order]
 
 
 def draw_curves(fitted: Fit, basis: Basis, *, kind: str) -> Curves:

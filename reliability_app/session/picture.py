@@ -64,10 +64,14 @@ class SetPicture:
         The family of the basis; it decides the paper.
     point_age, point_fraction : ndarray of float, shape (n,)
         Plotting positions: age and fraction failed.
+    point_begin, point_end : ndarray of float, shape (n,)
+        The ages between which the units of a point failed; equal where the age is known.
     point_quantity : ndarray of int, shape (n,)
-        Units that failed at each point.
+        Units that failed at each point; to the nearest whole number where intervals overlap.
+    point_is_shared : ndarray of bool, shape (n,)
+        Where a unit of the point may have failed at another point as well.
     point_rows : tuple of tuple of int
-        For each point the rows of the unit table it stands for.
+        For each point the rows of the unit table it stands for: all whose units may have failed there.
     point_names : tuple of tuple of str
         For each point the names of those rows' units; empty where a unit has none.
     running_age, running_quantity : ndarray, shape (m,)
@@ -75,7 +79,8 @@ class SetPicture:
     failure, hazard, survival : Curve or None
         Over age: fraction failed, hazard rate, fraction running; None without an estimate.
     steps : Curve or None
-        The Kaplan-Meier estimate of the fraction running, from age 0 and 1.0; None without units.
+        The estimate of the fraction running without a family (Kaplan-Meier's, or Turnbull's where units were found
+        failed), from age 0 and 1.0; None without units.
     reading : Reading or None
         The main reading, a B-life with its bound.
     """
@@ -85,7 +90,10 @@ class SetPicture:
     family: str
     point_age: Floats
     point_fraction: Floats
+    point_begin: Floats
+    point_end: Floats
     point_quantity: Integers
+    point_is_shared: NDArray[np.bool_]
     point_rows: tuple[tuple[int, ...], ...]
     point_names: tuple[tuple[str, ...], ...]
     running_age: Floats

@@ -196,6 +196,13 @@ def unread_caution(rows: int) -> Caution:
     return Caution("rows-unread", Severity.CAUTION, f"{what}: the marked cells of the table of units say why.")
 
 
+def undrawn_caution(units: int) -> Caution:
+    """Return the caution that failures came after the estimate without a family had fallen to 0."""
+    what = "1 failed unit has" if units == 1 else f"{units} failed units have"
+    why = "all units watched at some earlier age had failed, so that the estimate without a family is 0 from there"
+    return Caution("points-not-drawn", Severity.CAUTION, f"{what} no mark on the paper: {why}; the fit counts them.")
+
+
 def verdict_sentence(verdict: Verdict, life_unit: str) -> str:
     """Return what can be said of the choice of family: Lognormal and Weibull fit alike; B1 life is 61.0 h or 41.9 h."""
     if not verdict.alike:

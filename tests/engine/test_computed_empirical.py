@@ -11,7 +11,6 @@ import pytest
 
 from reliability_app.engine import kaplan_meier, plotting_positions
 from reliability_app.engine.empirical import benard_rank, median_rank
-from reliability_app.engine.errors import BoundUnavailable
 from tests.reference.reference_data import SET_NAMES, figures, reference_set, units_of
 
 WITH_STEPS = [name for name in SET_NAMES if "kaplan_meier" in reference_set(name)]
@@ -74,12 +73,3 @@ def test_midpoints_of_a_complete_set_are_those_of_its_ranks(name: str) -> None:
     expected = reference_set(name)["plotting_positions"]["midpoint"]
     points = plotting_positions(units_of(name).life_data(), method="kaplan_meier_midpoint")
     assert points.fraction == pytest.approx(expected, rel=1e-8)
-
-
-@pytest.mark.parametrize("name", ["syn07a_interval_equal", "turbine"])
-def test_intervals_are_refused_not_guessed(name: str) -> None:
-    data = units_of(name).life_data()
-    with pytest.raises(BoundUnavailable):
-        kaplan_meier(data)
-    with pytest.raises(BoundUnavailable):
-        plotting_positions(data)

@@ -13,7 +13,7 @@ import numpy as np
 import pytest
 from numpy.typing import NDArray
 
-from reliability_app.engine.families import FAMILY_NAMES, family
+from reliability_app.engine.families import LOCATION_SCALE_NAMES, family
 from reliability_app.engine.families.interval import log_interval
 
 DIGITS = 60
@@ -210,7 +210,7 @@ def reference_of(name: str) -> Reference:
 
 
 @pytest.mark.parametrize("function", ["log_density", "log_survival", "log_cdf"])
-@pytest.mark.parametrize("name", FAMILY_NAMES)
+@pytest.mark.parametrize("name", LOCATION_SCALE_NAMES)
 def test_value_and_derivatives_hold_in_both_tails(name: str, function: str) -> None:
     exact: Function = getattr(reference_of(name), function)
     got = getattr(family(name).standard, function)(POINTS)
@@ -221,7 +221,35 @@ def test_value_and_derivatives_hold_in_both_tails(name: str, function: str) -> N
         assert_close(got.second, [mpmath.diff(exact, z, 2) for z in points], 1e-10, POINTS)
 
 
-@pytest.mark.parametrize("name", FAMILY_NAMES)
+@pytest.mark.parametrize("name", LOCATION_SCALE_NAMES)
+def test_the_log_hazard_holds_in_both_tails(name: str) -> None:
+    exact = reference_of(name)
+    got = family(name).standard.log_hazard(POINTS)
+    with mpmath.workdps(DIGITS):
+        points = [mpmath.mpf(float(z)) for z in POINTS]
+
+        def log_hazard(z: mpmath.mpf) -> mpmath.mpf:
+            return exact.log_density(z) - exact.log_survival(z)
+
+        # ln h may pass through 0, and its slope may vanish, where an absolute error counts.
+        assert_close(got.value, [log_hazard(z) for z in points], 1e-12, POINTS, floor=0.1)
+        assert_close(got.first, [mpmath.diff(log_hazard, z) for z in points], 1e-12, POINTS, floor=0.1)
+        assert_close(got.second, [mpmath.diff(log_hazard, z, 2) for z in points], 1e-10, POINTS, floor=0.1)
+
+
+@pytest.mark.parametrize("name", LOCATION_SCALE_NAMES)
+def test_tails_too_short_for_any_number_are_quiet(name: str) -> None:
+    far, standard = np.array([-2000.0, 2000.0]), family(name).standard
+    assert standard.cdf(far).tolist() == [0.0, 1.0]
+    assert standard.survival(far).tolist() == [1.0, 0.0]
+    with np.errstate(over="ignore"):
+        assert np.all(np.exp(standard.log_density(far).value) == 0.0)
+    value = standard.log_hazard(far).value
+    assert not np.isnan(value).any()
+    assert value[0] < -600.0
+
+
+@pytest.mark.parametrize("name", LOCATION_SCALE_NAMES)
 def test_far_upper_tail(name: str) -> None:
     """Beyond z = 8: a normal survival of 1e-316, a smallest-extreme-value survival of exp(-2.7e11)."""
     exact, standard = reference_of(name), family(name).standard
@@ -235,7 +263,7 @@ def test_far_upper_tail(name: str) -> None:
             assert_close(got.second, [mpmath.diff(formula, z, 2) for z in points], 1e-10, far)
 
 
-@pytest.mark.parametrize("name", FAMILY_NAMES)
+@pytest.mark.parametrize("name", LOCATION_SCALE_NAMES)
 def test_quantile_inverts_the_distribution_in_both_tails(name: str) -> None:
     fractions = np.array([1e-300, 1e-100, 1e-30, 1e-12, 1e-6, 0.001, 0.01, 0.1, 0.3, 0.5, 0.7, 0.9, 0.999])
     fractions = np.append(fractions, [1 - 1e-9, 1 - 2.0**-50])
@@ -262,7 +290,7 @@ def interval_reference(exact: Reference, middle: float, half: float) -> list[mpm
     return [mpmath.log(mass), d_m, d_h, difference - d_m**2, total - d_m * d_h, difference - d_h**2]
 
 
-@pytest.mark.parametrize("name", FAMILY_NAMES)
+@pytest.mark.parametrize("name", LOCATION_SCALE_NAMES)
 def test_probability_of_an_interval_from_tiny_to_wide_and_in_far_tails(name: str) -> None:
     exact = reference_of(name)
     # The long tail of the largest extreme value is the upper one.

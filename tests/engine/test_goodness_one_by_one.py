@@ -59,8 +59,12 @@ def test_samples_are_drawn_under_the_plan_of_the_data() -> None:
     tests = list(data_like(found, repeats=300, seed=3, proceed=None))
     assert all(test.unit_count == 10 for test in tests)
     assert all((test.lower[test.is_running] == pytest.approx(1200.0)) for test in tests)
-    failed = np.mean([test.failed_count for test in tests])
-    assert failed == pytest.approx(10 * found.failure_probability(1200.0), abs=4 * np.sqrt(10 * 0.2 / 300))
+    # Where the test stopped at a fixed age, each sample has as many failures as the data.
+    assert {test.failed_count for test in tests} == {SHAPES["stopped"].failed_count}
+    earliest = np.mean([test.lower.min() <= 612.0 for test in tests])
+    share = found.failure_probability(612.0) / found.failure_probability(1200.0)
+    expected = 1 - (1 - share) ** SHAPES["stopped"].failed_count
+    assert earliest == pytest.approx(expected, abs=4 * np.sqrt(expected * (1 - expected) / 300))
 
 
 def test_the_seed_decides_it_and_work_no_longer_wanted_ends() -> None:

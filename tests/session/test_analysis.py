@@ -150,11 +150,17 @@ def test_moving_the_main_reading_gives_what_a_fresh_analysis_gives() -> None:
     assert (moved.estimate, moved.lower) == (fresh.estimate, fresh.lower)
 
 
-def test_found_failed_units_are_fitted_and_the_missing_points_are_said() -> None:
+def test_found_failed_units_are_fitted_and_drawn() -> None:
     rows = [*NIST_ROWS, {"life": "100", "until": "200", "state": "found failed"}]
     analysis = analysed(rows)
     assert analysis.main is not None
-    assert "points-not-drawn" in codes(analysis)
+    assert "points-not-drawn" not in codes(analysis)
+    # The new unit joins the failure at 187 h, the only one between 100 h and 200 h.
+    assert analysis.picture.point_age.tolist() == list(NIST_FAILURES)
+    assert analysis.picture.point_rows[1] == (1, 11)
+    assert analysis.picture.point_quantity[1] == 2
+    # By hand: 1 of 21 units failed at 54 h, 2 at 187 h, so that 3/21 have failed after it and 1/21 before.
+    assert analysis.picture.point_fraction[1] == pytest.approx(2 / 21, abs=1e-10)
 
 
 def test_automatic_bounds_are_calibrated_and_a_quick_analysis_is_provisional() -> None:

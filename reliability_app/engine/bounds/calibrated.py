@@ -86,6 +86,8 @@ class Calibrator:
             if proceed is not None:
                 proceed()
             roots = self.simulated_roots(measure, *point_at(root), sign)
+            if not roots.size:
+                raise BoundUnavailable("No simulated test can be fitted with this value, so it cannot be calibrated.")
             return float(np.quantile(roots, 1.0 - tail)) - root
 
         return _find_root(excess, -float(ndtri(tail)) if first is None else first)

@@ -14,10 +14,11 @@ from reliability_app.engine.families.logistic_family import LOGISTIC
 from reliability_app.engine.families.loglogistic import LOGLOGISTIC
 from reliability_app.engine.families.lognormal import LOGNORMAL
 from reliability_app.engine.families.normal_family import NORMAL
+from reliability_app.engine.families.shaped_family import SHAPED_CATALOGUE, ShapedFamily
 from reliability_app.engine.families.smallest_extreme_value_family import SMALLEST_EXTREME_VALUE
 from reliability_app.engine.families.weibull import WEIBULL
 
-CATALOGUE: tuple[Family, ...] = (
+LOCATION_SCALE_CATALOGUE: tuple[Family, ...] = (
     LOGNORMAL,
     WEIBULL,
     EXPONENTIAL,
@@ -28,6 +29,8 @@ CATALOGUE: tuple[Family, ...] = (
     LARGEST_EXTREME_VALUE,
     LOGISTIC,
 )
+CATALOGUE: tuple[Family, ...] = (*LOCATION_SCALE_CATALOGUE, *SHAPED_CATALOGUE)
+LOCATION_SCALE_NAMES: tuple[str, ...] = tuple(entry.name for entry in LOCATION_SCALE_CATALOGUE)
 FAMILY_NAMES: tuple[str, ...] = tuple(entry.name for entry in CATALOGUE)
 
 
@@ -42,9 +45,12 @@ def family(name: str) -> Family:
 __all__ = [
     "CATALOGUE",
     "FAMILY_NAMES",
+    "LOCATION_SCALE_CATALOGUE",
+    "LOCATION_SCALE_NAMES",
     "Derivatives",
     "Family",
     "Rule",
+    "ShapedFamily",
     "StandardDistribution",
     "family",
 ]

@@ -150,6 +150,16 @@ class Family:
             return float(np.exp(mu + self.standard.log_moment(np.array(sigma))))
 
     @property
+    def has_threshold(self) -> bool:
+        """True for a family of ln(life - threshold), which goes by the name of that of ln life."""
+        return False
+
+    @property
+    def parameter_names(self) -> tuple[str, ...]:
+        """The customary parameters in customary order."""
+        return tuple(self.rules)
+
+    @property
     def parameter_count(self) -> int:
         """The number of parameters estimated."""
-        return len(self.rules)
+        return len(self.parameter_names)

@@ -30,14 +30,20 @@ class IntervalDerivatives(NamedTuple):
     d_half_half: Array
 
 
-def log_interval(standard: StandardDistribution, middle: Array, half: Array) -> IntervalDerivatives:
-    """Return the log probability of intervals, and its derivatives; all half widths positive."""
+def log_interval(
+    standard: StandardDistribution, middle: Array, half: Array, ends: tuple[Array, Array] | None = None
+) -> IntervalDerivatives:
+    """Return the log probability of intervals, and its derivatives; all half widths positive.
+
+    `ends` are the two ends themselves, where they are known better than middle and half width tell: of an interval that
+    is wide beside its distance from the middle of the distribution.
+    """
     at_middle = standard.log_density(middle)
     widest = _NARROW / (np.abs(at_middle.first) + 1.0)
     narrow = half < widest
     if narrow.all():
         return _integrated(standard, at_middle, middle, half)
-    subtracted = _subtracted(standard, middle, half)
+    subtracted = _subtracted(standard, *(ends or (middle - half, middle + half)), middle < 0.0)
     if not narrow.any():
         return subtracted
     # The wide intervals are given a width that does no harm while the narrow ones are integrated.
@@ -63,10 +69,10 @@ def _integrated(
     return _assembled(value, ratios, (low, high), slope=slope, curvature=curvature)
 
 
-def _subtracted(standard: StandardDistribution, middle: Array, half: Array) -> IntervalDerivatives:
+def _subtracted(
+    standard: StandardDistribution, low: Array, high: Array, left: NDArray[np.bool_]
+) -> IntervalDerivatives:
     """Take the difference in the smaller tail, with the ratios of density to probability from that tail's hazard."""
-    low, high = middle - half, middle + half
-    left = middle < 0.0
     below, above = _tail(standard, low, left), _tail(standard, high, left)
     larger, drop = np.where(left, above.value, below.value), -np.abs(above.value - below.value)
     share = -np.expm1(drop)

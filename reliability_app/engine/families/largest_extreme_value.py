@@ -28,6 +28,11 @@ class LargestExtremeValue(StandardDistribution):
         """Return ln F(z) = -exp(-z)."""
         return _turned(_MIRRORED.log_survival(-z))
 
+    def log_hazard(self, z: Array) -> Derivatives:
+        """Return ln(f(z)/S(z)); minus infinity where exp(-z) overflows."""
+        with np.errstate(over="ignore"):
+            return super().log_hazard(z)
+
     def cdf(self, z: Array) -> Array:
         """Return F(z)."""
         return _MIRRORED.survival(-z)

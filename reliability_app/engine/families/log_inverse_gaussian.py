@@ -24,7 +24,7 @@ _HALF_LOG_TWO_PI = 0.5 * np.log(2.0 * np.pi)
 _NODES, _WEIGHTS = np.polynomial.legendre.leggauss(12)
 # Where y is nearer to x than this part of its size, M(x) - M(y) is integrated from the slope of M.
 _NARROW = 0.5
-# Without drift the median of life/shape is 1/0.455, the reciprocal of the median of chi-square with 1 degree of freedom.
+# Without drift shape/life is chi-square with 1 degree of freedom; this is its median.
 _MEDIAN = 0.4549364231195724
 
 
@@ -64,7 +64,7 @@ class LogInverseGaussian(ShapedStandard):
         return self._tail(z, -1.0)
 
     def _tail(self, z: Array, side: float) -> Derivatives:
-        """Return the upper (side 1) or lower (side -1) tail: the smaller one from its ratio to f, the other as the rest."""
+        """Return the upper (side 1) or lower (side -1) tail: a small one from its ratio to f, else from the other."""
         q, s, u = self._at(z)
         density = self.log_density(z)
         with np.errstate(over="ignore", under="ignore", invalid="ignore", divide="ignore"):

@@ -29,6 +29,10 @@ class Logistic(StandardDistribution):
         survival = expit(-z)
         return Derivatives(-np.logaddexp(0.0, -z), survival, -survival * expit(z))
 
+    def log_hazard(self, z: Array) -> Derivatives:
+        """Return ln(f(z)/S(z)), which is ln F(z): the hazard of the logistic is its distribution function."""
+        return self.log_cdf(z)
+
     def cdf(self, z: Array) -> Array:
         """Return F(z)."""
         return np.asarray(expit(z))

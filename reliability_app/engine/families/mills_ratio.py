@@ -16,7 +16,7 @@ _FRACTION_TERMS = 30
 
 def mills_ratio(s: Array) -> Array:
     """Return Phi(-s)/phi(s)."""
-    return _ROOT_HALF_PI * np.asarray(erfcx(s * _ROOT_HALF))
+    return np.asarray(_ROOT_HALF_PI * erfcx(s * _ROOT_HALF))
 
 
 def mills_remainder(s: Array) -> Array:

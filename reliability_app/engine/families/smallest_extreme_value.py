@@ -12,6 +12,7 @@ _SERIES = (1 / 12, -1 / 720, 1 / 30240, -1 / 1209600, 1 / 47900160, -691 / 13076
 _SERIES_BELOW = 0.5
 _FIRST_ORDER_BELOW = 1e-8
 _SUBTRACTION_LOSES_BELOW = 1e-2
+_LARGEST = 1e300
 
 
 class SmallestExtremeValue(StandardDistribution):
@@ -35,21 +36,28 @@ class SmallestExtremeValue(StandardDistribution):
 
     def log_cdf(self, z: Array) -> Derivatives:
         """Return ln F(z); the slope is g = x/expm1(x) with x = exp z, the curvature g (1 - x - g)."""
-        x = np.exp(z)
-        tail = np.exp(-x)
-        with np.errstate(divide="ignore", invalid="ignore"):
+        with np.errstate(over="ignore", divide="ignore", invalid="ignore"):
+            x = np.minimum(np.exp(z), _LARGEST)
+            tail = np.exp(-x)
             value = np.where(x < _FIRST_ORDER_BELOW, z - 0.5 * x, np.log(-np.expm1(-x)))
             value = np.where(tail < 0.5, np.log1p(-tail), value)
             slope = np.where(x > 0.0, x * tail / -np.expm1(-x), 1.0)
         return Derivatives(value, slope, slope * _one_minus_x_minus_slope(x, slope))
 
+    def log_hazard(self, z: Array) -> Derivatives:
+        """Return ln(f(z)/S(z)) = z."""
+        zero = np.zeros_like(z)
+        return Derivatives(z, zero + 1.0, zero)
+
     def cdf(self, z: Array) -> Array:
         """Return F(z)."""
-        return -np.expm1(-np.exp(z))
+        with np.errstate(over="ignore"):
+            return -np.expm1(-np.exp(z))
 
     def survival(self, z: Array) -> Array:
         """Return S(z)."""
-        return np.exp(-np.exp(z))
+        with np.errstate(over="ignore"):
+            return np.exp(-np.exp(z))
 
     def quantile(self, fraction: Array) -> Array:
         """Return z with F(z) = fraction."""

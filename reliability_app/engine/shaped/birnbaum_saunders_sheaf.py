@@ -1,10 +1,10 @@
 """Birnbaum-Saunders: with v = 2 sinh((ln life - ln scale)/2), v/shape is standard normal.
 
-kappa is ln scale on the standardised line, a = 0, and b is 1/shape times the root mean square of v over the failures, by
-which v is divided. Because v/shape = A sqrt(life) - B/sqrt(life) with
-A = 1/(shape sqrt(scale)), B = sqrt(scale)/shape, the log-likelihood is concave in (A, B) (unless units entered late), so
-it has one maximum, and the problem at every kappa has one too. A problem at a fixed shape may have two: the density of
-ln life has two peaks where the shape is above 2 (Rieck & Nedelman 1991, Technometrics 33, 51-60, cited from memory).
+kappa is ln scale on the standardised line, a = 0, and b is 1/shape times the root mean square of v over the failures,
+by which v is divided. Because v/shape = A sqrt(life) - B/sqrt(life) with A = 1/(shape sqrt(scale)) and
+B = sqrt(scale)/shape, the log-likelihood is concave in (A, B) (unless units entered late), so it has one maximum, and
+the problem at every kappa has one too. A problem at a fixed shape may have two: the density of ln life has two peaks
+where the shape is above 2 (Rieck & Nedelman 1991, Technometrics 33, 51-60, cited from memory).
 """
 
 from __future__ import annotations
@@ -37,8 +37,16 @@ class BirnbaumSaundersSheaf(Sheaf):
     a_is_pinned = True
     coordinates = (Coordinate("shape", True), Coordinate("scale", True))
     ends = (
-        End("scale-runs-down", "the scale falls to 0, where half of the units are given no life at all"),
-        End("scale-runs-up", "the scale grows without end, where half of the units never fail"),
+        End(
+            "scale-runs-down",
+            "the scale falls to 0, where half of the units are given no life at all",
+            "a family of ln life, such as lognormal or Weibull",
+        ),
+        End(
+            "scale-runs-up",
+            "the scale grows without end, where half of the units never fail",
+            "a family of ln life, such as lognormal or Weibull",
+        ),
     )
 
     def __init__(self, data: LifeData, raw: RawSample | None = None) -> None:
@@ -61,6 +69,10 @@ class BirnbaumSaundersSheaf(Sheaf):
     def records(self) -> int:
         """The records that an evaluation sums over."""
         return self.raw.records
+
+    def thinned(self, most: int) -> BirnbaumSaundersSheaf:
+        """Return the family laid over a smaller sample."""
+        return BirnbaumSaundersSheaf(self.data, self.raw.thinned(most))
 
     def grid(self) -> Array:
         """Return places of ln scale: close over the units, wide beyond."""
@@ -105,16 +117,16 @@ class BirnbaumSaundersSheaf(Sheaf):
     def _size(self, kappa: Array) -> Array:
         """Return the root mean square over the failures of 2 sinh((ln age - ln scale)/2)."""
         v = 2.0 * np.sinh(0.5 * self._x(self._sized_by, kappa[..., None]))
-        return np.sqrt(np.mean(np.square(v), axis=-1))
+        return np.asarray(np.sqrt(np.mean(np.square(v), axis=-1)))
 
     def to_y(self, age: Array, kappa: Array) -> Array:
         """Return 2 sinh((ln age - ln scale)/2), over its root mean square."""
-        return 2.0 * np.sinh(0.5 * self._x(age, kappa)) / self._size(kappa)
+        return np.asarray(2.0 * np.sinh(0.5 * self._x(age, kappa)) / self._size(kappa))
 
     def log_slope_at(self, age: Array, kappa: Array) -> Array:
         """Return ln(dy/d age)."""
         x = np.abs(self._x(age, kappa))
-        return 0.5 * x + np.log1p(np.exp(-x)) - np.log(2.0 * age * self._size(kappa))
+        return np.asarray(0.5 * x + np.log1p(np.exp(-x)) - np.log(2.0 * age * self._size(kappa)))
 
     def life_reading(self, y: Array, kappa: Array) -> Derivatives:
         """Return ln age at a place on the line, with derivatives in y."""

@@ -15,19 +15,20 @@ from numpy.typing import NDArray
 from reliability_app.engine.errors import BoundUnavailable
 from reliability_app.engine.shaped.jets import likelihood_jet
 from reliability_app.engine.shaped.measures import ShapedMeasure
-from reliability_app.engine.shaped.outline import Edge, Outline
-from reliability_app.engine.shaped.searching import searched
+from reliability_app.engine.shaped.outline import EXACT, Edge, Outline, edge_of
+from reliability_app.engine.shaped.searching import closer
 from reliability_app.engine.shaped.shaped_estimate import ShapedEstimate, measure_jet
 from reliability_app.engine.shaped.sheaf import Sheaf
 
 Array = NDArray[np.float64]
 Mask = NDArray[np.bool_]
 
-_MOST_STEPS = 30
+_MOST_STEPS = 15
 _DROP_REACHED = 1e-9
 _PARALLEL_REACHED = 1e-8
-_WORSE_BY = 1e-6
+_WORSE_BY, _BETTER_BY = 1e-6, 1e-2
 _SHORTEST = 0.1
+_TRIED_AGAIN = 2
 
 
 class Best(NamedTuple):
@@ -38,31 +39,80 @@ class Best(NamedTuple):
     ray: NDArray[np.intp]
     closed: Mask
 
+    def at(self, places: NDArray[np.intp]) -> Best:
+        """Return the best points for the chosen measures."""
+        return Best(self.value[places], self.slice[places], self.ray[places], self.closed[places])
+
 
 def extremes(estimate: ShapedEstimate, measure: ShapedMeasure, outline: Outline, sign: float) -> Array:
     """Return the lower (sign -1) or upper (sign 1) ends, shape (measure.size,); infinite where the region is open.
 
+    An end that lies where the likelihood begins to rise without limit is NaN.
+
     Raises
     ------
     BoundUnavailable
-        Where an end lies where the likelihood begins to rise without limit.
+        Where all ends lie there.
     """
+    if measure.of_kappa_alone:
+        return _at_edge(estimate, measure, outline, sign)
     best = best_on(measure, outline, sign)
     value = np.where(best.closed, best.value, sign * np.inf)
     at_low, at_high = best.slice == 0, best.slice == outline.kappa.size - 1
     for at, edge in ((at_low, outline.low), (at_high, outline.high)):
         if edge.end is not None and at.any():
             if edge.is_ridge or not edge.end.is_limit:
-                raise BoundUnavailable(_no_bound(edge))
-            if measure.diverges_at_ends:
+                if at.all():
+                    raise BoundUnavailable(_no_bound(edge))
+                value[at] = np.nan
+            elif measure.diverges_at_ends:
                 value[at] = sign * np.inf
     on_open = (at_low & (outline.low.end is not None)) | (at_high & (outline.high.end is not None))
     for chosen, fixed in ((~on_open, False), (on_open, True)):
         places = np.flatnonzero(chosen & np.isfinite(value))
         if places.size:
-            part = Best(*(column[places] for column in best))
+            part = best.at(places)
             value[places] = _refined(estimate, measure.at(places), outline, part, sign=sign, kappa_is_fixed=fixed)
     return value
+
+
+def extremes_near(estimate: ShapedEstimate, measure: ShapedMeasure, root: float, sign: float) -> Array:
+    """Return the same ends for a large sample, whose region is nearly an ellipsoid, from the ends of that.
+
+    Raises
+    ------
+    BoundUnavailable
+        Where Newton's method does not settle from there.
+    """
+    sheaf, free = estimate.sheaf, list(estimate.sheaf.free)
+    slopes = estimate.gradient(measure)
+    along = slopes @ estimate.free_covariance
+    size = np.sqrt(np.sum(along * slopes, axis=1, keepdims=True))
+    start = np.tile(estimate.point, (measure.size, 1))
+    start[:, free] += sign * root * along / size
+    target = estimate.log_likelihood - 0.5 * root * root
+    point, settled = _by_newton(sheaf, measure, sheaf.put_right(start), target, kappa_is_fixed=False)
+    if not settled.all():
+        raise BoundUnavailable(
+            "The likelihood-ratio bound was not reached in this large sample: choose the Wald bound, "
+            "which differs little."
+        )
+    return measure.terms(point[:, 0], point[:, 1], point[:, 2]).value
+
+
+def _at_edge(estimate: ShapedEstimate, measure: ShapedMeasure, outline: Outline, sign: float) -> Array:
+    """Return the end of a measure that follows from kappa: it lies where the region ends in kappa."""
+    kappa = np.array([outline.low.kappa, outline.high.kappa])
+    one = np.ones(2)
+    values = measure.terms(0.0 * one, one, kappa).value
+    side = -1 if sign * (values[0] - values[1]) > 0 else 1
+    edge = outline.low if side < 0 else outline.high
+    if edge.end is None:
+        exact = edge_of(estimate, outline.target, side, accuracy=EXACT)
+        return measure.terms(np.zeros(1), np.ones(1), np.array([exact.kappa])).value
+    if edge.is_ridge or not edge.end.is_limit:
+        raise BoundUnavailable(_no_bound(edge))
+    return np.array([sign * np.inf])
 
 
 def _no_bound(edge: Edge) -> str:
@@ -98,9 +148,25 @@ def _refined(
     # Newton's method may run to another stationary point; the outline's own extreme is then better.
     good = settled & inside & (sign * (value - best.value) >= -_WORSE_BY * (1.0 + np.abs(best.value)))
     for place in np.flatnonzero(~good).tolist():
-        one = measure.at(np.array([place]))
-        value[place] = searched(estimate, one, outline, (int(best.slice[place]), int(best.ray[place])), sign)
+        at = int(best.slice[place]), int(best.ray[place])
+        value[place] = _by_search(sheaf, measure.at(np.array([place])), outline, at, sign, kappa_is_fixed)
     return np.asarray(value)
+
+
+def _by_search(
+    sheaf: Sheaf, measure: ShapedMeasure, outline: Outline, at: tuple[int, int], sign: float, kappa_is_fixed: bool
+) -> float:
+    """Draw the outline about its best point more finely, until Newton's method settles on it or to the last digits."""
+    found = -np.inf
+    for told, (point, value) in enumerate(closer(sheaf, measure, outline, at, sign)):
+        found = sign * value
+        if told >= _TRIED_AGAIN:
+            continue
+        exact, settled = _by_newton(sheaf, measure, point[None], outline.target, kappa_is_fixed=kappa_is_fixed)
+        refined = sign * float(measure.terms(exact[:, 0], exact[:, 1], exact[:, 2]).value[0])
+        if settled[0] and -_WORSE_BY <= (refined - found) / (1.0 + abs(found)) <= _BETTER_BY:
+            return sign * refined
+    return sign * found
 
 
 def _by_newton(
@@ -128,7 +194,8 @@ def _by_newton(
             )
             if settled.all():
                 break
-            step = _lagrange_step(likelihood.gradient, bend + multiplier[:, None, None] * likelihood.hessian, across, gap)
+            bend = bend + multiplier[:, None, None] * likelihood.hessian
+            step = _lagrange_step(likelihood.gradient, bend, across, gap)
         step = np.where(np.isfinite(step) & ~settled[:, None], step, 0.0)
         point[:, free] += _held_back(point, step, free)[:, None] * step
         point = sheaf.put_right(point)

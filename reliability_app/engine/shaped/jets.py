@@ -16,7 +16,7 @@ from reliability_app.engine.likelihood import Terms
 from reliability_app.engine.shaped.sheaf import Sheaf
 
 Array = NDArray[np.float64]
-# terms(a, b, kappa, places): values and derivatives in (a, b) at points of shape (stencil, m), of the functions `places`.
+# terms(a, b, kappa): values and derivatives in (a, b) at points of shape (stencil, m), of m functions or one.
 PointTerms = Callable[[Array, Array, Array], Terms]
 
 _OFFSETS = np.arange(-3.0, 4.0)

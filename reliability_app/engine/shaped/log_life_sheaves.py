@@ -25,6 +25,7 @@ _LAMBDA_POINTS = 41
 _SHAPE_STEP = 0.7
 _LEAST_Q = 1e-3
 _DIFFERENCE = 0.03
+_INSTEAD = "another family, such as lognormal or Weibull"
 
 
 class LogLifeSheaf(Sheaf):
@@ -46,6 +47,10 @@ class LogLifeSheaf(Sheaf):
         sample = self.sample
         return sample.failed.size + sample.running.size + sample.left.size + sample.between.size + sample.entered.size
 
+    def thinned(self, most: int) -> LogLifeSheaf:
+        """Return the family laid over a smaller sample."""
+        return type(self)(self.data, self.sample.thinned(most))
+
     @abstractmethod
     def standard(self, kappa: Array) -> ShapedStandard:
         """Return the standard distribution at kappa."""
@@ -64,7 +69,7 @@ class LogLifeSheaf(Sheaf):
 
     def log_slope_at(self, age: Array, kappa: Array) -> Array:
         """Return ln(dy/d age)."""
-        return -np.log(age) - np.log(self.sample.spread) + 0.0 * kappa
+        return np.asarray(-np.log(age) - np.log(self.sample.spread) + 0.0 * kappa)
 
     def life_reading(self, y: Array, kappa: Array) -> Derivatives:  # noqa: ARG002 - the same at every kappa
         """Return ln age."""
@@ -96,11 +101,14 @@ class GeneralizedGammaSheaf(LogLifeSheaf):
     ends = (
         End(
             "lambda-runs-down",
-            "lambda falls without end, where the family turns into the Pareto distribution that starts at the first failure",
+            "lambda falls without end, where the family turns into a Pareto distribution that starts at the first "
+            "failure",
+            "one of its special cases: lognormal, Weibull or gamma",
         ),
         End(
             "lambda-runs-up",
-            "lambda grows without end, where the family turns into the power distribution that ends at the last life",
+            "lambda grows without end, where the family turns into a power distribution that ends at the last life",
+            "one of its special cases: lognormal, Weibull or gamma",
         ),
     )
 
@@ -180,8 +188,8 @@ class GammaSheaf(_TiedSheaf):
     coordinates = (Coordinate("shape", True), Coordinate("scale", True))
     most_q = 30.0
     ends = (
-        End("shape-runs-up", "the shape grows without end and all lives become alike"),
-        End("shape-runs-down", "the shape falls to 0 and the scale grows without end"),
+        End("shape-runs-up", "the shape grows without end and all lives become alike", _INSTEAD),
+        End("shape-runs-down", "the shape falls to 0 and the scale grows without end", _INSTEAD),
     )
 
     def standard(self, kappa: Array) -> LogGamma:
@@ -207,10 +215,11 @@ class InverseGaussianSheaf(_TiedSheaf):
     coordinates = (Coordinate("mean", True), Coordinate("shape", True, stays_finite=True))
     most_q = 1e4
     ends = (
-        End("shape-runs-up", "the shape grows without end and all lives become alike"),
+        End("shape-runs-up", "the shape grows without end and all lives become alike", _INSTEAD),
         End(
             "mean-runs-up",
             "the mean grows without end, where the family turns into the first passage of a motion without drift",
+            _INSTEAD,
         ),
     )
 

@@ -42,6 +42,11 @@ class ShapedMeasure(ABC):
         """True where the measure runs to infinity with kappa, so that an open end leaves no bound."""
         return False
 
+    @property
+    def of_kappa_alone(self) -> bool:
+        """True where the measure follows from kappa whatever a and b are."""
+        return False
+
 
 @dataclass(frozen=True, eq=False)
 class ShapedLife(ShapedMeasure):
@@ -161,6 +166,12 @@ class ShapedCoordinate(ShapedMeasure):
     def diverges_at_ends(self) -> bool:
         """True but for a coordinate that says otherwise."""
         return not self.sheaf.coordinates[self.place].stays_finite
+
+    @property
+    def of_kappa_alone(self) -> bool:
+        """True where neither location nor slope enters."""
+        _, *of_both = self.sheaf.parts(np.zeros(1))[self.place]
+        return all(isinstance(part, float) and part == 0.0 for part in of_both)
 
     def terms(self, a: Array, b: Array, kappa: Array) -> Terms:
         """Return base + of_location (-a/b) + of_slope ln b."""

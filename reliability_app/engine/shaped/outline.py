@@ -10,6 +10,7 @@ from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
+from scipy.optimize import brentq
 
 from reliability_app.engine.shaped.profile import Profile, profile
 from reliability_app.engine.shaped.rays import Rays, ray_ends
@@ -23,8 +24,10 @@ _SLICES_OF_PAIR, _SLICES_OF_THREE = 33, 17
 _MOST_RAYS, _FEWEST_RAYS = 24, 8
 _EVALUATIONS = 400_000
 _RAY_ACCURACY = 1e-5
-_EDGE_STEPS = 40
-_EDGE_REACHED = 1e-12
+# An edge is found to this part of a step of the profile's grid; to the last digits where it is itself a bound.
+_ROUGH, EXACT = 1e-3, 1e-12
+_EDGE_REACHED = 1e-14
+_FAR = 10.0
 
 
 @dataclass(frozen=True, eq=False)
@@ -55,6 +58,8 @@ class Outline:
     Attributes
     ----------
     kappa : ndarray, shape (slices,)
+    angle : ndarray, shape (rays,)
+        The direction of each ray on the slice's own ellipse.
     a, b : ndarray, shape (slices, rays)
     closed : ndarray of bool, shape (slices, rays)
         False where a slice runs to the edge b = 0 without ending.
@@ -64,6 +69,7 @@ class Outline:
     """
 
     kappa: Array
+    angle: Array
     a: Array
     b: Array
     closed: Mask
@@ -81,12 +87,11 @@ def outline_of(estimate: ShapedEstimate, root: float) -> Outline:
     peak = estimate.point
     a = np.interp(kappa, [low.kappa, peak[2], high.kappa], [low.a, peak[0], high.a])
     b = np.exp(np.interp(kappa, [low.kappa, peak[2], high.kappa], np.log([low.b, peak[1], high.b])))
-    tops = profile(sheaf, kappa, (a, b))
-    tops = _only(tops, tops.value > target)
-    rays = _rays(sheaf, tops, target)
-    a, b, closed = ray_ends(sheaf, rays, accuracy=_RAY_ACCURACY)
-    shape = (tops.kappa.size, -1)
-    return Outline(tops.kappa, a.reshape(shape), b.reshape(shape), closed.reshape(shape), low, high, target)
+    tops = profile(sheaf, kappa, (a, b)).above(target)
+    angle = angles_for(sheaf)
+    a, b, closed = ray_ends(sheaf, rays_from(sheaf, tops, angle, target), accuracy=_RAY_ACCURACY)
+    shape = (tops.kappa.size, angle.size)
+    return Outline(tops.kappa, angle, a.reshape(shape), b.reshape(shape), closed.reshape(shape), low, high, target)
 
 
 def _slices_between(low: Edge, high: Edge, count: int) -> Array:
@@ -100,48 +105,39 @@ def _slices_between(low: Edge, high: Edge, count: int) -> Array:
     return np.asarray(low.kappa + (high.kappa - low.kappa) * places)
 
 
-def _only(tops: Profile, chosen: Mask) -> Profile:
-    curvature = tuple(column[chosen] for column in tops.curvature)
-    return Profile(tops.kappa[chosen], tops.a[chosen], tops.b[chosen], tops.value[chosen], curvature)
-
-
-def _rays(sheaf: Sheaf, tops: Profile, target: float) -> Rays:
-    """Return rays from the top of each slice, one standard error long, evenly spaced in direction."""
-    steps = _pair_steps(tops, _ray_count(sheaf)) if len(sheaf.free) == 3 else _single_steps(sheaf, tops)
-    root = np.sqrt(2.0 * (tops.value - target))
-    every = [np.repeat(column, steps.shape[1]) for column in (tops.a, tops.b, tops.kappa, tops.value, root)]
-    a, b, kappa, top, roots = every
-    return Rays(a, b, kappa, steps[..., 0].ravel(), steps[..., 1].ravel(), top, roots)
-
-
-def _pair_steps(tops: Profile, count: int) -> Array:
-    """Return steps of shape (slices, count, 2) that go round the slices' own ellipses."""
-    angles = np.arange(count) * (2.0 * np.pi / count)
-    aa, ab, bb = tops.curvature
-    # Cholesky factor of the inverse of ((aa, ab), (ab, bb)).
-    determinant = np.maximum(aa * bb - ab * ab, 1e-300)
-    first = np.sqrt(bb / determinant)
-    second = -ab / (determinant * first)
-    third = 1.0 / np.sqrt(bb)
-    cos, sin = np.cos(angles), np.sin(angles)
-    return np.stack([first[:, None] * cos, second[:, None] * cos + third[:, None] * sin], axis=-1)
-
-
-def _single_steps(sheaf: Sheaf, tops: Profile) -> Array:
-    """Return the two steps down and up what is free of a and b."""
-    error = 1.0 / np.sqrt(tops.curvature[2 if sheaf.a_is_pinned else 0])
-    both = np.stack([-error, error], axis=-1)
-    zero = np.zeros_like(both)
-    return np.stack([zero, both] if sheaf.a_is_pinned else [both, zero], axis=-1)
-
-
-def _ray_count(sheaf: Sheaf) -> int:
+def angles_for(sheaf: Sheaf) -> Array:
+    """Return the directions of the rays of a slice: round the ellipse, or down and up where one of a, b is pinned."""
+    if len(sheaf.free) < 3:
+        return np.array([np.pi, 0.0])
     affordable = _EVALUATIONS // (_SLICES_OF_THREE * max(sheaf.records, 1))
-    return int(np.clip(affordable, _FEWEST_RAYS, _MOST_RAYS))
+    count = int(np.clip(affordable, _FEWEST_RAYS, _MOST_RAYS))
+    return np.asarray(np.arange(count) * (2.0 * np.pi / count), dtype=np.float64)
 
 
-def edge_of(estimate: ShapedEstimate, target: float, side: int) -> Edge:
-    """Return where the region ends below (side -1) or above (side 1) the estimate in kappa."""
+def rays_from(sheaf: Sheaf, tops: Profile, angle: Array, target: float) -> Rays:
+    """Return rays from the top of each slice in some directions, one standard error of the slice long."""
+    aa, ab, bb = (column[:, None] for column in tops.curvature)
+    cos, sin = np.cos(angle), np.sin(angle)
+    if sheaf.a_is_pinned:
+        step_b = cos / np.sqrt(bb)
+        step_a = np.zeros_like(step_b)
+    elif sheaf.b_is_pinned:
+        step_a = cos / np.sqrt(aa)
+        step_b = np.zeros_like(step_a)
+    else:
+        # Cholesky factor of the inverse of ((aa, ab), (ab, bb)).
+        determinant = np.maximum(aa * bb - ab * ab, 1e-300)
+        first = np.sqrt(bb / determinant)
+        step_a, step_b = first * cos, -ab / (determinant * first) * cos + sin / np.sqrt(bb)
+    root = np.sqrt(2.0 * (tops.value - target))
+    starts = (tops.a, tops.b, tops.kappa)
+    a, b, kappa = (np.repeat(column, angle.size) for column in starts)
+    top, roots = (np.repeat(column, angle.size) for column in (tops.value, root))
+    return Rays(a, b, kappa, step_a.ravel(), step_b.ravel(), top, roots)
+
+
+def edge_of(estimate: ShapedEstimate, target: float, side: int, *, accuracy: float = _ROUGH) -> Edge:
+    """Return where the region ends below (side -1) or above (side 1) the estimate in kappa; a point inside it."""
     seen, peak = estimate.seen, estimate.point
     beyond = np.flatnonzero(side * (seen.kappa - peak[2]) > 0)[::side]
     inside = peak
@@ -149,7 +145,7 @@ def edge_of(estimate: ShapedEstimate, target: float, side: int) -> Edge:
     for place in beyond.tolist():
         value = float(seen.value[place])
         if value < target:
-            return _edge_between(estimate, target, inside, seen.points[place])
+            return _edge_between(estimate, target, inside, seen.points[place], accuracy)
         if value > estimate.log_likelihood and not estimate.sheaf.ends[side > 0].is_limit:
             # The likelihood has begun to rise without limit: the region ends where it was lowest.
             return Edge(inside[2], inside[0], inside[1], estimate.sheaf.ends[side > 0], is_ridge=True)
@@ -159,25 +155,23 @@ def edge_of(estimate: ShapedEstimate, target: float, side: int) -> Edge:
     return Edge(last[2], last[0], last[1], estimate.sheaf.ends[side > 0])
 
 
-def _edge_between(estimate: ShapedEstimate, target: float, inside: Array, outside: Array) -> Edge:
-    """Find where the profile takes the value `target` by a bracketed secant on the signed root."""
+def _edge_between(estimate: ShapedEstimate, target: float, inside: Array, outside: Array, accuracy: float) -> Edge:
+    """Find where the profile takes the value `target`, by the signed root, which is nearly linear in kappa."""
     sheaf, top = estimate.sheaf, estimate.log_likelihood
-    wanted = np.sqrt(2.0 * (top - target))
-    low, high = inside[2], outside[2]
-    at_low, at_high = _signed_root(top, float(profile(sheaf, inside[2:], (inside[:1], inside[1:2])).value[0])), np.inf
-    start, kappa = inside, 0.5 * (low + high)
-    for _ in range(_EDGE_STEPS):
+    wanted = float(np.sqrt(2.0 * (top - target)))
+    nearest = [inside]
+
+    def excess(kappa: float) -> float:
+        start = nearest[-1]
         here = profile(sheaf, np.array([kappa]), (start[:1], start[1:2]))
         root = _signed_root(top, float(here.value[0]))
         if root <= wanted:
-            low, at_low, start = kappa, root, here.points[0]
-        else:
-            high, at_high = kappa, root
-        if abs(root - wanted) <= _EDGE_REACHED * wanted or abs(high - low) <= _EDGE_REACHED * (1.0 + abs(low)):
-            break
-        share = (wanted - at_low) / (at_high - at_low) if np.isfinite(at_high) else 0.5
-        kappa = low + (high - low) * float(np.clip(share, 0.02, 0.98))
-    return Edge(low, start[0], start[1], None)
+            nearest.append(here.points[0])
+        return min(root, _FAR * wanted) - wanted
+
+    brentq(excess, inside[2], outside[2], xtol=accuracy * abs(outside[2] - inside[2]), rtol=_EDGE_REACHED)
+    last = max(nearest, key=lambda point: abs(point[2] - estimate.point[2]))
+    return Edge(last[2], last[0], last[1], None)
 
 
 def _signed_root(top: float, value: float) -> float:

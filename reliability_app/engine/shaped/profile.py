@@ -25,7 +25,7 @@ _PROFILE_TOLERANCE = 1e-7
 class Profile:
     """The highest points of the problems at some values of kappa, each array of shape (points,).
 
-    `value` is minus infinity where none was reached. `bent` holds minus the second derivatives d_aa, d_ab, d_bb.
+    `value` is minus infinity where none was reached. `curvature` holds minus the second derivatives d_aa, d_ab, d_bb.
     """
 
     kappa: Array
@@ -39,14 +39,19 @@ class Profile:
         """Return (a, b, kappa), shape (points, 3)."""
         return np.stack([self.a, self.b, self.kappa], axis=-1)
 
+    def above(self, target: float) -> Profile:
+        """Return the points whose log-likelihood is above `target`."""
+        chosen = self.value > target
+        aa, ab, bb = (column[chosen] for column in self.curvature)
+        return Profile(self.kappa[chosen], self.a[chosen], self.b[chosen], self.value[chosen], (aa, ab, bb))
+
 
 @dataclass(frozen=True, eq=False)
 class Peak:
-    """A joint maximum: the point (a, b, kappa), the log-likelihood there with its derivatives, how it was reached."""
+    """A joint maximum: the point (a, b, kappa), the log-likelihood there, how it was reached."""
 
     point: Array
     value: float
-    hessian: Array
     gradient_norm: float
     decrement: float
     steps: int
@@ -122,7 +127,7 @@ def climb(sheaf: Sheaf, start: Array) -> Peak | None:
             norm = float(np.linalg.norm(here.of(free).gradient))
             value = float(here.value[0]) + 0.5 * decrement
             point = sheaf.put_right(point)
-            return Peak(point, value, here.hessian[0], norm, decrement, steps) if is_peak else None
+            return Peak(point, value, norm, decrement, steps) if is_peak else None
         moved = _moved(sheaf, point, step, here)
         if moved is None:
             return None

@@ -40,8 +40,8 @@ def ray_ends(sheaf: Sheaf, rays: Rays, *, accuracy: float) -> tuple[Array, Array
     """
     slices = sheaf.slices(rays.kappa)
     with np.errstate(divide="ignore"):
-        edge = np.where(rays.step_b < 0, (1.0 - _NEAREST_TO_ZERO) * rays.b / -rays.step_b, np.inf)
-    radius = np.minimum(rays.root, edge)
+        edge = np.where(rays.step_b < 0, rays.b / -rays.step_b, np.inf)
+    radius = np.minimum(rays.root, 0.5 * edge)
     inside, outside = np.zeros_like(radius), edge.copy()
     closed = np.ones(radius.size, dtype=bool)
     active = np.flatnonzero(rays.root > 0)
@@ -56,14 +56,14 @@ def ray_ends(sheaf: Sheaf, rays: Rays, *, accuracy: float) -> tuple[Array, Array
             slope = -(terms.d_a * step_a + terms.d_b * step_b) / reached
             moved = at + (root - reached) / slope
         short = reached < root
-        closed[active[short & (at >= edge[active])]] = False
+        settled = np.abs(reached - root) <= accuracy * root
+        closed[active[short & (at >= (1.0 - _NEAREST_TO_ZERO) * edge[active])]] = False
         inside[active[short]] = at[short]
         outside[active[~short]] = at[~short]
         low, high = inside[active], outside[active]
         halfway = np.where(np.isfinite(high), 0.5 * (low + high), 2.0 * at + 1e-300)
-        usable = np.isfinite(moved) & (moved > low) & (moved <= high)
-        radius[active] = np.where(usable, moved, halfway)
-        settled = np.abs(radius[active] - at) <= accuracy * at
+        usable = np.isfinite(moved) & (moved > low) & (moved < high)
+        radius[active] = np.where(settled, at, np.where(usable, moved, halfway))
         active = active[~settled & closed[active]]
         if not active.size:
             break

@@ -9,7 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from reliability_app.engine.likelihood import Terms
-from reliability_app.engine.shaped.jets import jet
+from reliability_app.engine.shaped.jets import jet, likelihood_jet
 from reliability_app.engine.shaped.measures import ShapedCoordinate, ShapedMeasure
 from reliability_app.engine.shaped.profile import Peak, Profile
 from reliability_app.engine.shaped.sheaf import Sheaf
@@ -55,15 +55,16 @@ class ShapedEstimate:
     @cached_property
     def free_covariance(self) -> Array:
         """Inverse observed information of what is free of (a, b, kappa)."""
-        free = list(self.sheaf.free)
-        return np.asarray(np.linalg.inv(-self.peak.hessian[np.ix_(free, free)]))
+        # Taken anew: the climb ends with a step, and a flat maximum is not as curved a step away.
+        here = likelihood_jet(self.sheaf, self.point[None]).of(self.sheaf.free)
+        return np.asarray(np.linalg.inv(-here.hessian[0]))
 
     @cached_property
     def covariance(self) -> Array:
         """Inverse observed information of the named coordinates."""
         measures = [ShapedCoordinate(self.sheaf, place) for place in range(len(self.sheaf.coordinates))]
         slopes = np.concatenate([self.gradient(measure) for measure in measures])
-        return slopes @ self.free_covariance @ slopes.T
+        return np.asarray(slopes @ self.free_covariance @ slopes.T)
 
     def value(self, measure: ShapedMeasure) -> Array:
         """Return a measure at the estimate, shape (size,)."""
@@ -76,7 +77,7 @@ class ShapedEstimate:
     def errors(self, measure: ShapedMeasure) -> Array:
         """Return the standard errors of a measure by the delta method, shape (size,)."""
         slopes = self.gradient(measure)
-        return np.sqrt(np.einsum("ij,jk,ik->i", slopes, self.free_covariance, slopes))
+        return np.asarray(np.sqrt(np.einsum("ij,jk,ik->i", slopes, self.free_covariance, slopes)))
 
 
 def measure_jet(measure: ShapedMeasure, point: Array, sheaf: Sheaf) -> tuple[Array, Array, Array]:

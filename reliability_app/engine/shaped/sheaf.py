@@ -73,17 +73,20 @@ class Coordinate:
         True where the parameter itself falls as the coordinate rises (a shape that is 1/sigma).
     stays_finite : bool
         True where the coordinate has a limit at an end of the range of kappa that the likelihood can leave open.
+    called : str
+        The name of the coordinate where it is not that of the parameter.
     """
 
     name: str
     is_logarithm: bool
     falls: bool = False
     stays_finite: bool = False
+    called: str = ""
 
     @property
     def title(self) -> str:
         """The name of the coordinate itself."""
-        return f"ln {self.name}" if self.is_logarithm else self.name
+        return self.called or (f"ln {self.name}" if self.is_logarithm else self.name)
 
     def parameter(self, value: Array) -> Array:
         """Return the parameter at a value of the coordinate."""
@@ -101,12 +104,15 @@ class End:
         For the caution that names it.
     text : str
         What happens there, to follow "The likelihood keeps rising as ": one clause without a full stop.
+    advice : str
+        What to choose instead, to follow "choose ": without a full stop.
     is_limit : bool
         True where the family has a limit there that the range of kappa reaches, so that a bound may lie on it.
     """
 
     code: str
     text: str
+    advice: str
     is_limit: bool = True
 
 
@@ -139,6 +145,10 @@ class Sheaf(ABC):
     @abstractmethod
     def records(self) -> int:
         """The records that an evaluation sums over."""
+
+    @abstractmethod
+    def thinned(self, most: int) -> Sheaf:
+        """Return the family laid over every k-th record of the large kinds: a quick first look at a large sample."""
 
     @property
     def free(self) -> tuple[int, ...]:

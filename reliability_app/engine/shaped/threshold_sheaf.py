@@ -1,6 +1,6 @@
 """Families with a threshold: ln(life - threshold) has a location and a spread.
 
-The threshold is followed from minus infinity to the first failure through g = 1/(first failure - threshold), on the line
+The threshold is followed from minus infinity to the first failure by g = 1/(first failure - threshold), on the line
 
     v = ln(1 + g (life - first failure))/g,
 
@@ -52,7 +52,12 @@ class ThresholdSheaf(Sheaf):
     def coordinates(self) -> tuple[Coordinate, ...]:
         """mu and ln sigma by the names that the family has for them, and the threshold."""
         named = tuple(
-            Coordinate(name, rule.is_logarithmic, falls=rule is Rule.ONE_OVER_SIGMA)
+            Coordinate(
+                name,
+                rule.is_logarithmic,
+                falls=rule is Rule.ONE_OVER_SIGMA,
+                called="mu" if rule.is_of_mu else "ln sigma",
+            )
             for name, rule in sorted(self.family.rules.items(), key=lambda entry: not entry[1].is_of_mu)
         )
         return (*named, Coordinate("threshold", False))
@@ -61,15 +66,16 @@ class ThresholdSheaf(Sheaf):
     def ends(self) -> tuple[End, End]:
         """A threshold at minus infinity, and one at the first failure."""
         limit = _LIMITS.get(self.family.name)
-        far = "the threshold falls without end"
+        far, instead = "the threshold falls without end", "the family without a threshold"
         if limit is not None:
             far += f", where the family turns into the {limit} family of life itself"
+            instead = f"that family, or {instead}"
         near = "the threshold nears the first failure"
         if not self.b_is_pinned:
             near += ", where it has no upper limit"
         return (
-            End("threshold-runs-down", far, is_limit=limit is not None),
-            End("threshold-at-first-failure", near, is_limit=False),
+            End("threshold-runs-down", far, instead, is_limit=limit is not None),
+            End("threshold-at-first-failure", near, "the family without a threshold", is_limit=False),
         )
 
     @property
@@ -81,6 +87,10 @@ class ThresholdSheaf(Sheaf):
     def records(self) -> int:
         """The records that an evaluation sums over."""
         return self.raw.records
+
+    def thinned(self, most: int) -> ThresholdSheaf:
+        """Return the family laid over a smaller sample."""
+        return ThresholdSheaf(self.data, self.family, self.raw.thinned(most))
 
     def grid(self) -> Array:
         """Return values of kappa from (nearly) minus infinity to nearly the first failure."""

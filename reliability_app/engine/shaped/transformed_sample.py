@@ -135,13 +135,19 @@ class RawSample:
     def _between(
         self, to_y: Callable[[Array], Array], half_width: Callable[[Array, Array], Array]
     ) -> tuple[IntervalPart, Part]:
-        """Return the intervals, and those of them that begin where no life can be so short as units found by their end."""
+        """Return the intervals; those that begin where no life can be so short as units found failed by their end."""
         low, high = to_y(self.lower), to_y(self.upper)
         whole = np.isfinite(low)
         with np.errstate(invalid="ignore"):
             half = np.where(whole, half_width(self.lower, self.upper), 1.0)
-        middle = np.where(whole, low + half, 0.0)
-        intervals = IntervalPart(middle, half, np.where(whole, self.between_quantity, 0.0))
+        low_end, high_end = np.where(whole, low, -1.0), np.where(whole, high, 1.0)
+        intervals = IntervalPart(
+            middle=np.where(whole, low_end + half, 0.0),
+            half=half,
+            weight=np.where(whole, self.between_quantity, 0.0),
+            low=low_end,
+            high=high_end,
+        )
         return intervals, Part(np.where(whole, 0.0, high), np.where(whole, 0.0, self.between_quantity))
 
 

@@ -155,7 +155,7 @@ def failed_tip(picture: SetPicture, life_unit: str, at: int) -> str:
     """Return what is said of a plotting position."""
     rows = picture.point_rows[at] if at < len(picture.point_rows) else ()
     count = int(picture.point_quantity[at])
-    many = "" if count == 1 else f"{count} "
+    many = f"about {count} " if picture.point_is_shared[at] else "" if count == 1 else f"{count} "
     said = f"{many}failed {_when(picture, at)} {life_unit}".rstrip()
     place = f"plotted at {number_text(100.0 * float(picture.point_fraction[at]))} %"
     names = [name for name in picture.point_names[at] if name] if at < len(picture.point_names) else []

@@ -252,3 +252,26 @@ def test_a_change_elsewhere_leaves_an_entry_under_way_alone(rig):
     rig.type("7")
     rig.key(Key.Key_Return)
     assert rig.table.text(0, "life") == "777"
+
+
+def test_signs_in_the_life_column_fill_until_and_state(rig):
+    for text in ("200-400", "<200", ">1500", "1500+"):
+        rig.go(rig.table.row_count, "life")
+        rig.type(text)
+        rig.key(Key.Key_Return)
+    assert rig.texts == [
+        {"life": "200", "until": "400", "state": "found failed"},
+        {"life": "0", "until": "200", "state": "found failed"},
+        {"life": "1500", "state": "running"},
+        {"life": "1500", "state": "running"},
+    ]
+    assert rig.grid.counts_line.counts_text == "0 failed, 2 running, 2 found failed, 0 unread"
+
+
+def test_until_and_entered_are_typed_in_columns_of_their_own(rig):
+    for column, text in (("life", "200"), ("until", "400"), ("entered", "50")):
+        rig.go(0, column)
+        rig.type(text)
+        rig.key(Key.Key_Return)
+    data = rig.table.life_data()
+    assert (data.lower[0], data.upper[0], data.entered[0]) == (200, 400, 50)

@@ -1,0 +1,75 @@
+"""Bounds of an estimate with a further parameter: Wald and likelihood ratio, and the refusal of the others by name."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+
+import numpy as np
+from numpy.typing import NDArray
+from scipy.special import ndtri
+
+from reliability_app.engine.errors import BoundUnavailable
+from reliability_app.engine.shaped.extremes import extremes, extremes_near
+from reliability_app.engine.shaped.measures import ShapedMeasure
+from reliability_app.engine.shaped.outline import Outline, outline_of
+from reliability_app.engine.shaped.shaped_estimate import ShapedEstimate
+
+Array = NDArray[np.float64]
+
+# A band is computed at this many of its places and joined.
+_BAND = 24
+# With more records than this an outline is too slow to draw, and nearly an ellipsoid.
+_LARGE = 20_000
+
+
+@dataclass(frozen=True, eq=False)
+class ShapedBounder:
+    """Finds ends of bounds; outlines once drawn serve every later question."""
+
+    estimate: ShapedEstimate
+    title: str
+    _outlines: dict[float, Outline] = field(default_factory=dict)
+
+    def resolved(self, kind: str) -> str:
+        """Return the kind that "automatic" stands for: the likelihood ratio."""
+        return "likelihood" if kind == "automatic" else kind
+
+    def end(self, measure: ShapedMeasure, kind: str, tail: float, sign: float) -> Array:
+        """Return the lower (sign -1) or upper (sign 1) ends with probability `tail` beyond, shape (measure.size,).
+
+        Raises
+        ------
+        BoundUnavailable
+            For a kind that does not exist for these families, and where the likelihood gives no bound.
+        """
+        kind = self.resolved(kind)
+        if kind not in ("likelihood", "wald"):
+            raise BoundUnavailable(
+                f"Bounds of kind {kind!r} are not known for the {self.title} family: choose the likelihood bound."
+            )
+        if self.estimate.is_edge:
+            raise BoundUnavailable(
+                "The threshold is estimated at the first failure itself, where neither the Wald nor the "
+                "likelihood-ratio bound holds: no bound can be given; choose the family without a threshold."
+            )
+        root = -float(ndtri(tail))
+        if kind == "wald":
+            return self.estimate.value(measure) + sign * root * self.estimate.errors(measure)
+        with np.errstate(over="ignore", invalid="ignore", divide="ignore", under="ignore"):
+            if self.estimate.sheaf.records > _LARGE:
+                return extremes_near(self.estimate, measure, root, sign)
+            return extremes(self.estimate, measure, self.outline(root), sign)
+
+    def band_end(self, measure: ShapedMeasure, kind: str, tail: float, sign: float) -> Array:
+        """Return the same to the accuracy of a picture, quickly for many functions at once."""
+        if self.resolved(kind) != "likelihood" or measure.size <= _BAND:
+            return self.end(measure, kind, tail, sign)
+        every = np.arange(measure.size)
+        some = np.unique(np.linspace(0, measure.size - 1, _BAND).round().astype(np.intp))
+        return np.asarray(np.interp(every, some, self.end(measure.at(some), kind, tail, sign)))
+
+    def outline(self, root: float) -> Outline:
+        """Return the outline of the likelihood region at a signed root."""
+        if root not in self._outlines:
+            self._outlines[root] = outline_of(self.estimate, root)
+        return self._outlines[root]
