@@ -9,9 +9,10 @@ Biometrika 63, 465-474), "Tests based on EDF statistics for randomly censored no
 unknown" (2019, abstract read) into this one; for one common end of test it is Pettitt & Stephens' (1976, Biometrika 63,
 291-298, from memory). For complete data the integral runs on to F = 1 and is the classical statistic.
 
-Plot correlation: the correlation of ln life with the quantiles of the family at the plotting positions, which measures
-how straight the points lie on the paper (Filliben 1975, Technometrics 17, 111-117; for censored data Chen 1984,
-Biometrika 71, 315-322; from memory); the positions are the mid-points of the Kaplan-Meier steps.
+Plot correlation: the correlation of ln life (or life itself) with the quantiles of the family at the plotting
+positions, which measures how straight the points lie on the paper (Filliben 1975, Technometrics 17, 111-117; for
+censored data Chen 1984, Biometrika 71, 315-322; from memory); the positions are the mid-points of the Kaplan-Meier
+steps.
 """
 
 from __future__ import annotations

@@ -1,7 +1,8 @@
 """What can be asked of a fit, each as a smooth function of (a, b) with its derivatives.
 
-With y the standardised logarithm of an age, z = a + b y. The measures are chosen on the scale on which a Wald bound is
-formed: the logarithm of a life, z for a probability, the logarithm of a hazard, the logarithm of 1/sigma.
+With y the standardised place of an age on the line of the family (ln life, or life itself), z = a + b y. The measures
+are chosen on the scale on which a Wald bound is formed: that line for a life, z for a probability, the logarithm of a
+hazard, the logarithm of 1/sigma.
 """
 
 from __future__ import annotations
@@ -37,7 +38,7 @@ class Measure(ABC):
 
 @dataclass(frozen=True, eq=False)
 class LifeMeasure(Measure):
-    """y at which z is reached: (z - a)/b, the standardised logarithm of a life; z = 0 gives mu."""
+    """y at which z is reached: (z - a)/b, the standardised place of a life; z = 0 gives mu."""
 
     z: Array
 
@@ -51,7 +52,7 @@ class LifeMeasure(Measure):
         return LifeMeasure(self.z[places])
 
     def terms(self, a: Array, b: Array) -> Terms:
-        """Return the standardised ln life and its derivatives."""
+        """Return the standardised place and its derivatives."""
         y = (_column(self.z, a) - a) / b
         zero = np.zeros_like(y)
         inverse = 1.0 / b + zero

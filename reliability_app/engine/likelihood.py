@@ -2,7 +2,7 @@
 
 With z = a + b y the log-likelihood of one sample is the sum of quantity times
 
-    failed         ln b + ln f(z)         (and - ln life, the Jacobian of the logarithm)
+    failed         ln b + ln f(z)         (and, for a family of ln life, - ln life: the Jacobian of the logarithm)
     running        ln S(z)
     found failed   ln(F(z_high) - F(z_low)), at the first look ln F(z_high)
     entered late   - ln S(z_entered)

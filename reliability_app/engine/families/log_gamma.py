@@ -25,6 +25,8 @@ Inverse = Callable[[Array, Array, bool], Array]
 _NORMAL_START_BELOW = 1e-3
 _SMALL_X, _X_TERMS = 0.1, 16
 _NO_LIFE = 1e-300
+# Beyond this, tails and the squares of hazards leave the range of doubles.
+_MOST_U = 300.0
 
 
 class LogGamma(ShapedStandard):
@@ -34,7 +36,7 @@ class LogGamma(ShapedStandard):
         """Return ln f(z)."""
         lam = self.against(z)
         q, way = np.abs(lam), np.where(lam < 0, -1.0, 1.0)
-        value, first, second = log_gamma_density(q, way * z)
+        value, first, second = log_gamma_density(q, _within_reach(q, way * z))
         return Derivatives(value, way * first, second)
 
     def log_survival(self, z: Array) -> Derivatives:
@@ -53,7 +55,8 @@ class LogGamma(ShapedStandard):
         negative = lam < 0
         for chosen, tail, way in ((~negative, own, 1.0), (negative, mirrored, -1.0)):
             if chosen.any():
-                value, first, second = tail(np.abs(lam[chosen]), way * flat[chosen])
+                q = np.abs(lam[chosen])
+                value, first, second = tail(q, _within_reach(q, way * flat[chosen]))
                 for column, part in zip(out, (value, way * first, second), strict=True):
                     column[chosen] = part
         shape = np.broadcast_shapes(self.against(z).shape, z.shape)
@@ -95,6 +98,12 @@ class LogGamma(ShapedStandard):
         further = stirling_remainder(q / np.sqrt(1.0 + x)) - stirling_remainder(q + 0.0 * x)
         value = power * power * _second_order(x) - 0.5 * np.log1p(x) + further
         return np.where(exists, value, np.inf)
+
+
+def _within_reach(q: Array, w: Array) -> Array:
+    """Return w, or where exp(q w) would overflow the greatest w where it does not: no life is told from that."""
+    with np.errstate(divide="ignore"):
+        return np.minimum(w, _MOST_U / q)
 
 
 def _second_order(x: Array) -> Array:

@@ -26,6 +26,8 @@ _NODES, _WEIGHTS = np.polynomial.legendre.leggauss(12)
 _NARROW = 0.5
 # Without drift shape/life is chi-square with 1 degree of freedom; this is its median.
 _MEDIAN = 0.4549364231195724
+# Beyond this, tails and the squares of hazards leave the range of doubles.
+_MOST_U = 300.0
 
 
 def spread_of(q: Array) -> Array:
@@ -53,7 +55,7 @@ class LogInverseGaussian(ShapedStandard):
         """Return q, s and u."""
         q = self.against(z)
         s = spread_of(q)
-        return q, s, s * z - centre_of(q)
+        return q, s, np.clip(s * z - centre_of(q), -_MOST_U, _MOST_U)
 
     def log_survival(self, z: Array) -> Derivatives:
         """Return ln S(z)."""

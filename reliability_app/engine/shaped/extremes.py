@@ -13,21 +13,19 @@ import numpy as np
 from numpy.typing import NDArray
 
 from reliability_app.engine.errors import BoundUnavailable
-from reliability_app.engine.shaped.jets import likelihood_jet
+from reliability_app.engine.shaped.lagrange import lagrange_points
 from reliability_app.engine.shaped.measures import ShapedMeasure
 from reliability_app.engine.shaped.outline import EXACT, Edge, Outline, edge_of
 from reliability_app.engine.shaped.searching import closer
-from reliability_app.engine.shaped.shaped_estimate import ShapedEstimate, measure_jet
+from reliability_app.engine.shaped.shaped_estimate import ShapedEstimate
 from reliability_app.engine.shaped.sheaf import Sheaf
 
 Array = NDArray[np.float64]
 Mask = NDArray[np.bool_]
 
-_MOST_STEPS = 15
-_DROP_REACHED = 1e-9
-_PARALLEL_REACHED = 1e-8
 _WORSE_BY, _BETTER_BY = 1e-6, 1e-2
-_SHORTEST = 0.1
+# Steps and trespasses in kappa, in parts of the region's own width in it.
+_LONGEST, _BEYOND, _ON_EDGE = 0.2, 0.05, 1e-12
 _TRIED_AGAIN = 2
 
 
@@ -44,10 +42,13 @@ class Best(NamedTuple):
         return Best(self.value[places], self.slice[places], self.ray[places], self.closed[places])
 
 
-def extremes(estimate: ShapedEstimate, measure: ShapedMeasure, outline: Outline, sign: float) -> Array:
+def extremes(
+    estimate: ShapedEstimate, measure: ShapedMeasure, outline: Outline, sign: float, *, searched: bool = True
+) -> Array:
     """Return the lower (sign -1) or upper (sign 1) ends, shape (measure.size,); infinite where the region is open.
 
-    An end that lies where the likelihood begins to rise without limit is NaN.
+    An end that lies where the likelihood begins to rise without limit is NaN. Without `searched` the slow way is left
+    out: where it would be needed an end is exact in (a, b) and only as near in kappa as the outline's own slices.
 
     Raises
     ------
@@ -58,22 +59,34 @@ def extremes(estimate: ShapedEstimate, measure: ShapedMeasure, outline: Outline,
         return _at_edge(estimate, measure, outline, sign)
     best = best_on(measure, outline, sign)
     value = np.where(best.closed, best.value, sign * np.inf)
-    at_low, at_high = best.slice == 0, best.slice == outline.kappa.size - 1
+    at_low, at_high = (_is_at(edge, outline.kappa[best.slice], outline) for edge in (outline.low, outline.high))
     for at, edge in ((at_low, outline.low), (at_high, outline.high)):
-        if edge.end is not None and at.any():
-            if edge.is_ridge or not edge.end.is_limit:
-                if at.all():
-                    raise BoundUnavailable(_no_bound(edge))
-                value[at] = np.nan
-            elif measure.diverges_at_ends:
-                value[at] = sign * np.inf
-    on_open = (at_low & (outline.low.end is not None)) | (at_high & (outline.high.end is not None))
-    for chosen, fixed in ((~on_open, False), (on_open, True)):
+        if at.all() and not _is_limit(edge):
+            raise BoundUnavailable(_no_bound(edge))
+        if not _is_limit(edge):
+            value[at] = np.nan
+        elif measure.diverges_at_ends:
+            value[at] = sign * np.inf
+    for chosen, fixed in ((~(at_low | at_high), False), (at_low | at_high, True)):
         places = np.flatnonzero(chosen & np.isfinite(value))
         if places.size:
             part = best.at(places)
-            value[places] = _refined(estimate, measure.at(places), outline, part, sign=sign, kappa_is_fixed=fixed)
+            chosen_ones = measure.at(places)
+            value[places] = _completed(
+                estimate.sheaf, chosen_ones, outline, part, sign=sign, fixed=fixed, searched=searched
+            )
     return value
+
+
+def _is_at(edge: Edge, kappa: Array, outline: Outline) -> Mask:
+    """Return where the best points lie on an open edge itself."""
+    near = np.abs(kappa - edge.kappa) <= _ON_EDGE * (outline.high.kappa - outline.low.kappa)
+    return near & (edge.end is not None)
+
+
+def _is_limit(edge: Edge) -> bool:
+    """True where a bound may lie on an open edge."""
+    return edge.end is not None and edge.end.is_limit and not edge.is_ridge
 
 
 def extremes_near(estimate: ShapedEstimate, measure: ShapedMeasure, root: float, sign: float) -> Array:
@@ -91,7 +104,7 @@ def extremes_near(estimate: ShapedEstimate, measure: ShapedMeasure, root: float,
     start = np.tile(estimate.point, (measure.size, 1))
     start[:, free] += sign * root * along / size
     target = estimate.log_likelihood - 0.5 * root * root
-    point, settled = _by_newton(sheaf, measure, sheaf.put_right(start), target, kappa_is_fixed=False)
+    point, settled = lagrange_points(sheaf, measure, sheaf.put_right(start), target)
     if not settled.all():
         raise BoundUnavailable(
             "The likelihood-ratio bound was not reached in this large sample: choose the Wald bound, "
@@ -110,7 +123,7 @@ def _at_edge(estimate: ShapedEstimate, measure: ShapedMeasure, outline: Outline,
     if edge.end is None:
         exact = edge_of(estimate, outline.target, side, accuracy=EXACT)
         return measure.terms(np.zeros(1), np.ones(1), np.array([exact.kappa])).value
-    if edge.is_ridge or not edge.end.is_limit:
+    if not _is_limit(edge):
         raise BoundUnavailable(_no_bound(edge))
     return np.array([sign * np.inf])
 
@@ -135,22 +148,39 @@ def best_on(measure: ShapedMeasure, outline: Outline, sign: float) -> Best:
 
 
 def _refined(
-    estimate: ShapedEstimate, measure: ShapedMeasure, outline: Outline, best: Best, *, sign: float, kappa_is_fixed: bool
-) -> Array:
-    sheaf = estimate.sheaf
+    sheaf: Sheaf, measure: ShapedMeasure, outline: Outline, best: Best, *, sign: float, kappa_is_fixed: bool
+) -> tuple[Array, Mask]:
+    """Return what Newton's method makes of the best points, and where it is as good as they are."""
     start = np.stack(
         [outline.a[best.slice, best.ray], outline.b[best.slice, best.ray], outline.kappa[best.slice]], axis=-1
     )
-    point, settled = _by_newton(sheaf, measure, start, outline.target, kappa_is_fixed=kappa_is_fixed)
+    span = outline.high.kappa - outline.low.kappa
+    point, settled = lagrange_points(
+        sheaf, measure, start, outline.target, kappa_is_fixed=kappa_is_fixed, longest=_LONGEST * span
+    )
     value = measure.terms(point[:, 0], point[:, 1], point[:, 2]).value
-    reach = 1e-6 + 0.05 * (outline.high.kappa - outline.low.kappa)
+    reach = 1e-6 + _BEYOND * span
     inside = (point[:, 2] >= outline.low.kappa - reach) & (point[:, 2] <= outline.high.kappa + reach)
-    # Newton's method may run to another stationary point; the outline's own extreme is then better.
+    # It may run to another stationary point; the outline's own extreme is then better.
     good = settled & inside & (sign * (value - best.value) >= -_WORSE_BY * (1.0 + np.abs(best.value)))
-    for place in np.flatnonzero(~good).tolist():
-        at = int(best.slice[place]), int(best.ray[place])
-        value[place] = _by_search(sheaf, measure.at(np.array([place])), outline, at, sign, kappa_is_fixed)
-    return np.asarray(value)
+    return value, good
+
+
+def _completed(
+    sheaf: Sheaf, measure: ShapedMeasure, outline: Outline, best: Best, *, sign: float, fixed: bool, searched: bool
+) -> Array:
+    """Return the ends from the best points of the outline: by Newton's method, else by search or within the slices."""
+    value, good = _refined(sheaf, measure, outline, best, sign=sign, kappa_is_fixed=fixed)
+    lost = np.flatnonzero(~good)
+    if searched:
+        for place in lost.tolist():
+            at = int(best.slice[place]), int(best.ray[place])
+            value[place] = _by_search(sheaf, measure.at(np.array([place])), outline, at, sign, fixed)
+    elif lost.size:
+        part = best.at(lost)
+        within, good = _refined(sheaf, measure.at(lost), outline, part, sign=sign, kappa_is_fixed=True)
+        value[lost] = np.where(good, within, part.value)
+    return value
 
 
 def _by_search(
@@ -162,72 +192,8 @@ def _by_search(
         found = sign * value
         if told >= _TRIED_AGAIN:
             continue
-        exact, settled = _by_newton(sheaf, measure, point[None], outline.target, kappa_is_fixed=kappa_is_fixed)
+        exact, settled = lagrange_points(sheaf, measure, point[None], outline.target, kappa_is_fixed=kappa_is_fixed)
         refined = sign * float(measure.terms(exact[:, 0], exact[:, 1], exact[:, 2]).value[0])
         if settled[0] and -_WORSE_BY <= (refined - found) / (1.0 + abs(found)) <= _BETTER_BY:
             return sign * refined
     return sign * found
-
-
-def _by_newton(
-    sheaf: Sheaf, measure: ShapedMeasure, start: Array, target: float, *, kappa_is_fixed: bool
-) -> tuple[Array, Mask]:
-    """Solve the Lagrange conditions from `start`, shape (size, 3); returns the points and which of them settled."""
-    free = [place for place in sheaf.free if not (kappa_is_fixed and place == 2)]
-    inner = [sheaf.free.index(place) for place in free]
-    point = start.copy()
-    settled = np.zeros(len(point), dtype=bool)
-    multiplier: Array | None = None
-    for _ in range(_MOST_STEPS):
-        with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
-            likelihood = likelihood_jet(sheaf, point).of(tuple(free))
-            _, slope, bend = measure_jet(measure, point, sheaf)
-            slope, bend = slope[:, inner], bend[:, inner][:, :, inner]
-            gap = likelihood.value - target
-            steepness = np.sum(likelihood.gradient**2, axis=1)
-            # By least squares, from point to point: this keeps Newton's method on course from a rough start.
-            multiplier = -np.sum(slope * likelihood.gradient, axis=1) / steepness
-            across = slope + multiplier[:, None] * likelihood.gradient
-            size = np.linalg.norm(slope, axis=1)
-            settled = (np.abs(gap) <= _DROP_REACHED * (1.0 + abs(target))) & (
-                np.linalg.norm(across, axis=1) <= _PARALLEL_REACHED * size
-            )
-            if settled.all():
-                break
-            bend = bend + multiplier[:, None, None] * likelihood.hessian
-            step = _lagrange_step(likelihood.gradient, bend, across, gap)
-        step = np.where(np.isfinite(step) & ~settled[:, None], step, 0.0)
-        point[:, free] += _held_back(point, step, free)[:, None] * step
-        point = sheaf.put_right(point)
-    return point, settled
-
-
-def _lagrange_step(gradient: Array, bend: Array, across: Array, gap: Array) -> Array:
-    """Return the Newton step for across = 0 and gap = 0."""
-    size, free = gradient.shape
-    matrix = np.zeros((size, free + 1, free + 1))
-    matrix[:, :free, :free] = bend
-    matrix[:, :free, free] = gradient
-    matrix[:, free, :free] = gradient
-    right = -np.concatenate([across, gap[:, None]], axis=1)
-    # Scaled rows and columns: the coordinates differ by orders of magnitude.
-    scale = 1.0 / np.sqrt(np.maximum(np.abs(np.diagonal(bend, axis1=1, axis2=2)), 1e-300))
-    scale = np.concatenate([scale, np.ones((size, 1))], axis=1)
-    matrix = matrix * scale[:, :, None] * scale[:, None, :]
-    good = np.isfinite(matrix).all(axis=(1, 2)) & np.isfinite(right).all(axis=1)
-    good[good] = np.linalg.cond(matrix[good]) < 1e15
-    step = np.full((size, free), np.nan)
-    if good.any():
-        solved = np.linalg.solve(matrix[good], (right * scale)[good][..., None])[..., 0] * scale[good]
-        step[good] = solved[:, :free]
-    return step
-
-
-def _held_back(point: Array, step: Array, free: list[int]) -> Array:
-    """Return the share of each step that leaves b above a tenth of what it was."""
-    if 1 not in free:
-        return np.ones(len(point))
-    of_b = step[:, free.index(1)]
-    with np.errstate(divide="ignore", invalid="ignore"):
-        room = np.where(of_b < 0, (1.0 - _SHORTEST) * point[:, 1] / -of_b, np.inf)
-    return np.minimum(1.0, room)

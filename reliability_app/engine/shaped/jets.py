@@ -66,7 +66,8 @@ def likelihood_jet(sheaf: Sheaf, point: Array) -> Jet:
     """Return the log-likelihood with its derivatives at points of shape (m, 3)."""
 
     def terms(a: Array, b: Array, kappa: Array) -> Terms:
-        flat = sheaf.slices(kappa.ravel()).evaluate(a.ravel(), b.ravel())
+        with np.errstate(over="ignore", invalid="ignore", divide="ignore", under="ignore"):
+            flat = sheaf.slices(kappa.ravel()).evaluate(a.ravel(), b.ravel())
         return Terms(*(column.reshape(kappa.shape) for column in flat.columns()))
 
     return jet(sheaf, terms, point)

@@ -19,6 +19,7 @@ _MOST_STEPS, _MOST_HALVINGS = 60, 40
 _ROUNDING = 1e-12
 _CREST = 1e-11
 _PROFILE_TOLERANCE = 1e-7
+_MOST_EVALUATIONS = 300
 
 
 @dataclass(frozen=True, eq=False)
@@ -61,12 +62,20 @@ def profile(sheaf: Sheaf, kappa: Array, start: tuple[Array, Array] | None = None
     """Return the profile at some values of kappa, shape (points,), climbing from starts (a, b) if given."""
     slices = sheaf.slices(kappa)
     a, b = sheaf.starts(kappa) if start is None else sheaf.placed(*start, kappa)
+    tried = 0
 
     def evaluate(rows: NDArray[np.intp], at_a: Array, at_b: Array) -> Terms:
+        nonlocal tried
+        tried += 1
+        if tried > _MOST_EVALUATIONS:
+            # What has not been reached by now is given up: nothing is accepted any more.
+            return Terms(*np.full((6, rows.size), np.nan))
         part = slices if rows.size == kappa.size else slices.rows(rows)
         return part.evaluate(at_a, at_b)
 
-    top = maximise(evaluate, a, b, failures=np.full(kappa.shape, sheaf.failures), b_is_fixed=sheaf.b_is_pinned)
+    failures = np.full(kappa.shape, sheaf.failures)
+    with np.errstate(over="ignore", invalid="ignore", divide="ignore", under="ignore"):
+        top = maximise(evaluate, a, b, failures=failures, b_is_fixed=sheaf.b_is_pinned)
     value = np.where(top.converged & np.isfinite(top.terms.value), top.terms.value, -np.inf)
     a, b = sheaf.placed(top.a, top.b, kappa)
     return Profile(kappa, a, b, value, (-top.terms.d_aa, -top.terms.d_ab, -top.terms.d_bb))
@@ -74,15 +83,16 @@ def profile(sheaf: Sheaf, kappa: Array, start: tuple[Array, Array] | None = None
 
 def peaks_of(sheaf: Sheaf, seen: Profile) -> tuple[Peak, ...]:
     """Return the joint maxima that the profile shows inside its range, highest first."""
+    climbed = (_climb_within(sheaf, seen, at) for at in crests_of(seen))
+    return tuple(sorted((peak for peak in climbed if peak is not None), key=lambda peak: -peak.value))
+
+
+def crests_of(seen: Profile) -> list[int]:
+    """Return the places inside the range where the profile is higher than beside, by more than rounding."""
     value = seen.value
     inner = np.arange(1, value.size - 1)
-    crests = inner[(value[inner] >= value[inner - 1]) & (value[inner] > value[inner + 1])]
-    found = []
-    for at in crests.tolist():
-        peak = _climb_within(sheaf, seen, at) if _stands_out(value, at) else None
-        if peak is not None:
-            found.append(peak)
-    return tuple(sorted(found, key=lambda peak: -peak.value))
+    higher = inner[(value[inner] >= value[inner - 1]) & (value[inner] > value[inner + 1])]
+    return [at for at in higher.tolist() if _stands_out(value, at)]
 
 
 def _stands_out(value: Array, at: int) -> bool:

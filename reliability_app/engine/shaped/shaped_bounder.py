@@ -19,7 +19,7 @@ Array = NDArray[np.float64]
 # A band is computed at this many of its places and joined.
 _BAND = 24
 # With more records than this an outline is too slow to draw, and nearly an ellipsoid.
-_LARGE = 20_000
+_LARGE, _MANY_FAILURES = 20_000, 2_000
 
 
 @dataclass(frozen=True, eq=False)
@@ -42,6 +42,9 @@ class ShapedBounder:
         BoundUnavailable
             For a kind that does not exist for these families, and where the likelihood gives no bound.
         """
+        return self._end(measure, kind, tail, sign, searched=True)
+
+    def _end(self, measure: ShapedMeasure, kind: str, tail: float, sign: float, *, searched: bool) -> Array:
         kind = self.resolved(kind)
         if kind not in ("likelihood", "wald"):
             raise BoundUnavailable(
@@ -54,19 +57,35 @@ class ShapedBounder:
             )
         root = -float(ndtri(tail))
         if kind == "wald":
-            return self.estimate.value(measure) + sign * root * self.estimate.errors(measure)
+            return self._wald(measure, sign * root)
         with np.errstate(over="ignore", invalid="ignore", divide="ignore", under="ignore"):
             if self.estimate.sheaf.records > _LARGE:
                 return extremes_near(self.estimate, measure, root, sign)
-            return extremes(self.estimate, measure, self.outline(root), sign)
+            return extremes(self.estimate, measure, self.outline(root), sign, searched=searched)
+
+    def _wald(self, measure: ShapedMeasure, reach: float) -> Array:
+        """Return the measure moved by some standard errors; NaN where it is infinite at the estimate."""
+        value = self.estimate.value(measure)
+        out = np.full_like(value, np.nan)
+        there = np.flatnonzero(np.isfinite(value))
+        if not there.size:
+            raise BoundUnavailable("By this fit no unit can fail so early, so the Wald bound does not exist here.")
+        out[there] = value[there] + reach * self.estimate.errors(measure.at(there))
+        return out
 
     def band_end(self, measure: ShapedMeasure, kind: str, tail: float, sign: float) -> Array:
-        """Return the same to the accuracy of a picture, quickly for many functions at once."""
+        """Return the same to the accuracy of a picture, quickly for many functions at once.
+
+        In a large sample with many failures that is the Wald band, which no eye can tell from the likelihood's own.
+        """
+        sheaf = self.estimate.sheaf
+        if self.resolved(kind) == "likelihood" and sheaf.records > _LARGE and sheaf.failures > _MANY_FAILURES:
+            return self.end(measure, "wald", tail, sign)
         if self.resolved(kind) != "likelihood" or measure.size <= _BAND:
             return self.end(measure, kind, tail, sign)
         every = np.arange(measure.size)
         some = np.unique(np.linspace(0, measure.size - 1, _BAND).round().astype(np.intp))
-        return np.asarray(np.interp(every, some, self.end(measure.at(some), kind, tail, sign)))
+        return np.asarray(np.interp(every, some, self._end(measure.at(some), kind, tail, sign, searched=False)))
 
     def outline(self, root: float) -> Outline:
         """Return the outline of the likelihood region at a signed root."""

@@ -19,9 +19,10 @@ _HIGHER_BY = 1e-6
 def no_maximum(sheaf: Sheaf, seen: Profile, title: str) -> Caution:
     """Say towards which end the likelihood keeps rising where it has no maximum inside."""
     value = seen.value
-    rising = [value[0] >= value[1], value[-1] >= value[-2]]
-    ends = [end for end, rises in zip(sheaf.ends, rising, strict=True) if rises] or list(sheaf.ends)
-    named = ends[0] if len(ends) == 1 else max(ends, key=lambda end: end.is_limit)
+    sides = ((sheaf.ends[0], value[0], value[1]), (sheaf.ends[1], value[-1], value[-2]))
+    rising = sorted((not end.is_limit, -at_end, end.code, end) for end, at_end, before in sides if at_end >= before)
+    ends = [side[-1] for side in rising]
+    named = ends[0]
     text = (
         f"The likelihood has no maximum within the {title} family: it keeps rising as {' and as '.join(_texts(ends))}. "
         f"No estimate exists; choose {named.advice}."

@@ -87,5 +87,6 @@ def measure_jet(measure: ShapedMeasure, point: Array, sheaf: Sheaf) -> tuple[Arr
         columns = np.broadcast_arrays(*measure.terms(a, b, kappa).columns())
         return Terms(*columns)
 
-    found = jet(sheaf, terms, point).of(sheaf.free)
+    with np.errstate(over="ignore", invalid="ignore", divide="ignore", under="ignore"):
+        found = jet(sheaf, terms, point).of(sheaf.free)
     return found.value, found.gradient, found.hessian

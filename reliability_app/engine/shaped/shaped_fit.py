@@ -168,12 +168,12 @@ class ShapedFit(Fit):
     def density(self, age: ArrayLike) -> Number:
         """Return the probability density at `age`, per unit of age."""
         found, ages = self._shaped(), _ages(age)
-        a, b, kappa = found.point
+        _, b, kappa = found.point
         z = self._z_at(ages)
         inside = np.isfinite(z)
         value = self._standard(z).log_density(np.where(inside, z, 0.0)).value
         slope = found.sheaf.log_slope_at(ages, np.full_like(ages, kappa))
-        return _like(age, np.where(inside, b * np.exp(value + np.where(inside, slope, 0.0)), 0.0) + 0.0 * a)
+        return _like(age, np.where(inside, b * np.exp(value + np.where(inside, slope, 0.0)), 0.0))
 
     def mean_life(self) -> float:
         """Return the mean life of the fitted distribution; infinite where its tail is too heavy for one."""
@@ -217,7 +217,8 @@ class ShapedFit(Fit):
     def hazard_curve(self, ages: Array, *, confidence: float, side: str, kind: str) -> Curve:
         """Return the hazard rate over age; `side` is that of the hazard."""
         band = self._band(ShapedHazard(self._shaped().sheaf, ages), (kind, side, confidence))
-        edges = (None if edge is None else np.exp(edge) for edge in band)
+        with np.errstate(over="ignore"):
+            edges = [None if edge is None else np.exp(edge) for edge in band]
         return Curve(ages, np.asarray(self.hazard(ages)), *edges)
 
     @cached_property

@@ -12,7 +12,7 @@ from reliability_app.engine.families.shaped_family import ShapedFamily, without_
 from reliability_app.engine.life_data import LifeData
 from reliability_app.engine.shaped.birnbaum_saunders_sheaf import BirnbaumSaundersSheaf
 from reliability_app.engine.shaped.log_life_sheaves import GammaSheaf, GeneralizedGammaSheaf, InverseGaussianSheaf
-from reliability_app.engine.shaped.profile import Peak, Profile, climb, peaks_of, profile
+from reliability_app.engine.shaped.profile import Peak, Profile, climb, crests_of, peaks_of, profile
 from reliability_app.engine.shaped.shaped_cautions import no_maximum
 from reliability_app.engine.shaped.shaped_estimate import ShapedEstimate
 from reliability_app.engine.shaped.shaped_fit import ShapedFit
@@ -53,6 +53,9 @@ def fit_shaped(data: LifeData, chosen: ShapedFamily) -> ShapedFit:
         return ShapedFit(data, chosen, outcome, None, shaped=found)
     if edge is not None:
         return ShapedFit(data, chosen, outcome, None, shaped=ShapedEstimate(sheaf, edge, seen, is_edge=True))
+    if crests_of(seen):
+        # A maximum that is no smooth one, such as at a threshold that meets the beginning of an interval.
+        return ShapedFit(data, chosen, Outcome.NOT_CONVERGED, None)
     reason = no_maximum(sheaf, seen, chosen.title)
     return ShapedFit(data, chosen, Outcome.NO_INTERIOR_MAXIMUM, None, no_estimate=reason)
 
