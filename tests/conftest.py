@@ -16,18 +16,3 @@ def pytest_configure():
     missing = find_missing(["offscreen"]) if sys.platform == "linux" else None
     if missing is not None:
         raise pytest.UsageError(f"The tests cannot run. {missing.sentence}")
-
-
-@pytest.hookimpl(trylast=True)
-def pytest_sessionfinish(session, exitstatus):
-    session.config.stash_exit = int(exitstatus)
-
-
-@pytest.hookimpl(trylast=True)
-def pytest_unconfigure(config):
-    # PySide may destroy a widget after Python has ended and crash a run whose result is known already.
-    status = getattr(config, "stash_exit", None)
-    if status is not None and not hasattr(config, "workerinput"):
-        sys.stdout.flush()
-        sys.stderr.flush()
-        os._exit(status)

@@ -4,6 +4,7 @@ import gc
 
 import pytest
 from PySide6.QtCore import QCoreApplication, QEvent
+from PySide6.QtGui import QGuiApplication
 
 
 def pytest_collection_modifyitems(items):
@@ -19,4 +20,6 @@ def nothing_left_behind():
     # Widgets given to deleteLater() go only with the event loop, which no test runs on its own.
     if QCoreApplication.instance() is not None:
         QCoreApplication.sendPostedEvents(None, QEvent.Type.DeferredDelete)
+        # The platform without a screen keeps what was copied in a static of Qt's, which goes after Python has ended.
+        QGuiApplication.clipboard().clear()
     gc.collect()
