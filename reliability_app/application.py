@@ -8,15 +8,23 @@ from __future__ import annotations
 
 import sys
 import threading
+import traceback
+from functools import partial
 from importlib import import_module
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from PySide6.QtCore import QObject, QTimer
 from PySide6.QtWidgets import QApplication, QMessageBox, QWidget
 
+from reliability_app.session.number_style import choose_number_style
 from reliability_app.windows.main_window import APPLICATION_TITLE, MainWindow
 from reliability_app.windows.settings import WindowSettings
+from reliability_app.windows.text_size import apply_text_step
 from reliability_app.windows.theme import apply_scheme
+
+if TYPE_CHECKING:  # what costs time to import comes with the contents, after the first paint
+    from reliability_app.windows.file_commands import FileCommands
 
 HEAVY_LIBRARIES = ("numpy", "scipy.special", "scipy.optimize", "pyqtgraph")
 _LOOK_AGAIN_MS = 10
@@ -30,6 +38,8 @@ def run_window(file: Path | None) -> int:
     application.setDesktopFileName("rigpaper")
     settings = WindowSettings()
     apply_scheme(application, settings.scheme)
+    apply_text_step(settings.text_step)
+    choose_number_style(settings.number_style)
     window = MainWindow(settings)
     window.show()
     start = Start(window, file)
@@ -54,16 +64,19 @@ class Start(QObject):
         if self._imports.is_alive():
             QTimer.singleShot(_LOOK_AGAIN_MS, self._look)
             return
-        self._fill()
+        try:
+            self._fill()
+        except Exception as trouble:  # nobody else could say it yet, and the frame would wait for ever
+            traceback.print_exception(trouble)
+            self._window.say_why_empty(f"Rigpaper cannot start ({type(trouble).__name__}: {trouble}): install it anew.")
 
     def _fill(self) -> None:
-        from reliability_app.session.document import Session
         from reliability_app.session.messages import Messages
         from reliability_app.windows.crash import install_last_resort
 
         window = self._window
-        window.fill(Session(), Messages())
-        install_last_resort(window.files.keep_recovery_copy, window.messages)
+        window.fill(window.settings.new_session(), Messages())
+        install_last_resort(partial(rescue, window.files), window.messages)
         if not self._recovered() and self._file is not None:
             window.files.open(self._file)
 
@@ -80,6 +93,15 @@ class Start(QObject):
             if answer == "delete":
                 copy.remove()
         return False
+
+
+def rescue(files: FileCommands) -> str:
+    """Keep the unsaved work after a fault of the program, and say what was kept."""
+    if not files.has_unsaved_work:
+        return "All your work is saved; start Rigpaper anew if anything looks wrong."
+    if files.keep_recovery_copy():
+        return "Your work was kept in a recovery copy: save it, and start Rigpaper anew."
+    return "Your work could not be kept in a recovery copy: save it now, and start Rigpaper anew."
 
 
 def ask_about_recovery(window: QWidget, original: Path | None, written: str) -> str:

@@ -51,6 +51,9 @@ _FURTHER: Mapping[str, Mapping[str, str]] = {
 }
 _FONT_FOLDERS = ("/usr/share/fonts", "/usr/local/share/fonts", "~/.local/share/fonts", "~/.fonts")
 _FONT_SUFFIXES = {".ttf", ".otf", ".ttc", ".pfb"}
+_INSTALL_PYSIDE = (
+    f"PySide6 is not installed for this Python. Install it with: {sys.executable} -m pip install PySide6-Essentials"
+)
 _GO_TO_A_SCREEN = "Start Rigpaper from a desktop session, or over ssh with -X."
 
 
@@ -76,10 +79,7 @@ def display_reason(environment: Mapping[str, str] = os.environ) -> str | None:
     Where several screen systems are offered (Wayland and X11) one that works is enough: Qt tries each.
     """
     if not _pyside_is_installed():
-        return (
-            "No window: PySide6 is not installed for this Python. "
-            f"Install it with: {sys.executable} -m pip install PySide6-Essentials"
-        )
+        return f"No window: {_INSTALL_PYSIDE}"
     if sys.platform != "linux":
         return None
     platforms = platforms_to_try(environment)
@@ -87,6 +87,14 @@ def display_reason(environment: Mapping[str, str] = os.environ) -> str | None:
         return f"No window: neither DISPLAY nor WAYLAND_DISPLAY names a screen. {_GO_TO_A_SCREEN}"
     reasons = [_platform_reason(platform, environment) for platform in platforms]
     return None if None in reasons else reasons[0]
+
+
+def drawing_reason() -> str | None:
+    """Say why no picture can be drawn here, in a sentence with the remedy; None when one can. No screen is needed."""
+    if not _pyside_is_installed():
+        return f"No picture: {_INSTALL_PYSIDE}"
+    missing = find_missing(["offscreen"]) if sys.platform == "linux" else None
+    return None if missing is None else f"No picture: {missing.sentence}"
 
 
 def platforms_to_try(environment: Mapping[str, str] = os.environ) -> tuple[str, ...]:

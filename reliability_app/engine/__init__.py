@@ -8,10 +8,12 @@ from reliability_app.engine.families import FAMILY_NAMES
 from reliability_app.engine.fit_result import Fit
 from reliability_app.engine.fitting import fit
 from reliability_app.engine.life_data import LifeData
+from reliability_app.engine.methods import METHODS, methods_for
 from reliability_app.engine.turnbull import turnbull
 
 __all__ = [
     "FAMILY_NAMES",
+    "METHODS",
     "Caution",
     "Curve",
     "Fit",
@@ -20,6 +22,7 @@ __all__ = [
     "Severity",
     "fit",
     "kaplan_meier",
+    "methods_for",
     "nelson_aalen",
     "plotting_positions",
     "turnbull",

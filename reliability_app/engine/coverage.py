@@ -14,16 +14,18 @@ import numpy as np
 from numpy.typing import NDArray
 from scipy.special import ndtri
 
-from reliability_app.engine.bounds.calibrated import Calibrator, Proceed
+from reliability_app.engine.bounds.calibrated import Calibrator, Proceed, share_at_least
 from reliability_app.engine.bounds.constrained import curve_of, maximise_along
+from reliability_app.engine.bounds.profile import profiled_at
 from reliability_app.engine.bounds.wald import wald_end
 from reliability_app.engine.errors import BoundUnavailable
 from reliability_app.engine.fit_result import Fit
 from reliability_app.engine.fitting import fit
 from reliability_app.engine.life_data import LifeData
 from reliability_app.engine.life_measures import LifeMeasure
-from reliability_app.engine.refitting import FEWEST_FAILURES, life_data_of
-from reliability_app.engine.simulation import Draws, draw_sample, plan_of
+from reliability_app.engine.methods import MAXIMUM_LIKELIHOOD
+from reliability_app.engine.refitting import FEWEST_FAILURES
+from reliability_app.engine.simulation import Draws, drawn_tests, plan_of
 
 Array = NDArray[np.float64]
 
@@ -81,19 +83,24 @@ def coverage_of_life(
     NoEstimate
         Without a fit.
     BoundUnavailable
-        If the plan cannot be simulated, or hardly any simulated test would see three failures.
+        If hardly any simulated test would see three failures, or the fit is one by another method.
     """
-    score = found.family.standard.quantile(np.array([fraction]))
+    if found.method != MAXIMUM_LIKELIHOOD:
+        raise BoundUnavailable(f"A plan is simulated for fits by {MAXIMUM_LIKELIHOOD} only: choose that method.")
+    score, estimate = found.family.standard.quantile(np.array([fraction])), found.bounder.estimate
+    true_place = estimate.mu + estimate.sigma * float(score[0])
     held = dict.fromkeys(JUDGED_KINDS, 0)
     used = 0
     for place, test in enumerate(simulated_tests(found, 4 * tests, seed)):
         if proceed is not None:
             proceed()
-        refitted = fit(test, found.family.name)
+        refitted = fit(test, found.family.name, shape=found.given_shape)
         if not refitted.converged:
             continue
-        # The tests are in scores, in which the true place of the life is the score itself.
-        judged = judge(refitted, score, float(score[0]), confidences=(confidence,), batch=inner_tests, seed=place)
+        try:
+            judged = judge(refitted, score, true_place, confidences=(confidence,), batch=inner_tests, seed=place)
+        except BoundUnavailable:  # of this test no calibrated bound would be given
+            continue
         for kind in JUDGED_KINDS:
             held[kind] += judged[kind, confidence, side]
         used += 1
@@ -107,15 +114,14 @@ def coverage_of_life(
 
 
 def simulated_tests(found: Fit, tests: int, seed: int) -> Iterator[LifeData]:
-    """Give tests drawn at the fit under its data's plan, placed by score; those with too few failures left out."""
-    life_scale = found.family.life_scale
+    """Give tests drawn at the fit under its data's plan; those with too few failures are left out."""
+    life_scale, estimate = found.family.life_scale, found.bounder.estimate
     plan = plan_of(found.data, life_scale)
     draws = Draws.of(plan, tests, seed)
-    estimate = found.bounder.estimate
     a, b = -estimate.mu / estimate.sigma, 1.0 / estimate.sigma
-    sample, failures = draw_sample(plan, draws, found.family.standard, a=a, b=b)
-    for place in np.flatnonzero(failures >= FEWEST_FAILURES).tolist():
-        yield life_data_of(sample, place, life_scale)
+    for test, failures in drawn_tests(plan, draws, found.family.standard, life_scale, a=a, b=b):
+        if failures >= FEWEST_FAILURES:
+            yield test
 
 
 def judge(
@@ -138,16 +144,17 @@ def judge(
     a, b, top = _constrained(found, measure, truth)
     observed = float(np.sqrt(max(2.0 * (float(estimate.terms.value[0]) - top), 0.0)) * np.sign(value - truth))
     plan = plan_of(found.data, found.family.life_scale)
-    roots = Calibrator(estimate, plan, Draws.of(plan, batch, seed)).simulated_roots(measure, a, b, -1.0)
+    calibrator = Calibrator(estimate, plan, Draws.of(plan, batch, seed))
+    roots = calibrator.simulated_roots(measure, a, b, -1.0)
     answer = {}
     for side, sign in (("lower", -1.0), ("upper", 1.0)):
         for confidence in confidences:
             normal = float(ndtri(confidence))
             end = float(wald_end(estimate, measure, normal, sign)[0])
-            limit = float(np.quantile(-sign * roots, confidence))
+            beyond = share_at_least(-sign * roots, -sign * observed)
             answer["wald", confidence, side] = bool(sign * (end - truth) >= 0)
             answer["likelihood", confidence, side] = bool(-sign * observed <= normal)
-            answer["calibrated", confidence, side] = bool(-sign * observed <= limit)
+            answer["calibrated", confidence, side] = beyond > 1.0 - confidence
     return answer
 
 
@@ -157,6 +164,9 @@ def _constrained(found: Fit, measure: LifeMeasure, value: float) -> tuple[float,
     if estimate.b_is_fixed:
         a = float(measure.z[0]) - value * estimate.b
         return a, estimate.b, float(estimate.evaluate(np.array([a]), np.array([estimate.b])).value[0])
+    if not estimate.is_concave:
+        top, a, b = profiled_at(estimate, measure, value)
+        return a, b, top
     curve = curve_of(measure, value)
     start = np.array([curve.start(estimate.a, estimate.b)])
     held = maximise_along(lambda _, a, b: estimate.evaluate(a, b), curve, start)

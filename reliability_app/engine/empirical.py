@@ -159,27 +159,6 @@ def survival_steps(data: LifeData, *, confidence: float = 0.95) -> SurvivalSteps
     return (turnbull if data.is_found_failed.any() else kaplan_meier)(data, confidence=confidence)
 
 
-def removal_steps(data: LifeData) -> tuple[Array, Array]:
-    """Return the product-limit estimate of the age at which units leave the test still running.
-
-    Failures end the watch on a unit before it leaves; at equal ages failures come first.
-
-    Returns
-    -------
-    age, share : ndarray, shape (ages,)
-        Ages at which units left, rising, and the share that would still be under test just after each.
-    """
-    running = data.is_running
-    age, where = np.unique(data.lower[running], return_inverse=True)
-    left = np.bincount(where, weights=data.quantity[running], minlength=age.size).astype(np.float64)
-    failed = data.is_failed
-    order = np.argsort(data.lower[failed], kind="stable")
-    failed_by = np.concatenate([[0.0], np.cumsum(data.quantity[failed][order])])
-    beyond = failed_by[-1] - failed_by[np.searchsorted(data.lower[failed][order], age, side="right")]
-    at_risk = _total_from(data.lower[running], data.quantity[running], age) + beyond
-    return age, np.cumprod(1.0 - left / at_risk).astype(np.float64)
-
-
 def plotting_positions(data: LifeData, *, method: str = "kaplan_meier_midpoint") -> PlottingPositions:
     """Return where the failures are drawn.
 

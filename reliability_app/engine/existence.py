@@ -9,6 +9,7 @@ import numpy as np
 from reliability_app.engine.cautions import Caution, Severity
 from reliability_app.engine.families.base import Family
 from reliability_app.engine.life_data import LifeData
+from reliability_app.engine.life_scale import LifeScale
 
 
 class Outcome(Enum):
@@ -30,8 +31,8 @@ class Outcome(Enum):
 
 _TEXTS = {
     Outcome.NO_FAILURE: (
-        "No unit has failed, so no life distribution can be estimated: run on until units fail, "
-        "or state only what the time survived so far shows."
+        "No unit has failed, so no life distribution can be estimated: run on until units fail, or give a Weibull "
+        "shape (or take the exponential family) to see what the time survived so far shows."
     ),
     Outcome.ONE_FAILURE_NOT_OUTLIVED: (
         "There is one failure and no unit ran longer, so the spread of the lives cannot be estimated: "
@@ -66,11 +67,19 @@ def outcome_before_fitting(data: LifeData, family: Family) -> Outcome:
     failures = ~data.is_running
     if not failures.any():
         return Outcome.NO_FAILURE
-    if not (data.lower > family.life_scale.origin).any():
+    if not data.lower.max() > family.life_scale.origin:
         return Outcome.FAILED_BEFORE_FIRST_LOOK
     if family.fixed_sigma is not None:
         return Outcome.ESTIMATED
-    if data.lower.max() <= data.upper[failures].min():
+    if _is_at_most(data.lower.max(), data.upper.min(), family.life_scale):
         single = float(np.sum(data.quantity[failures])) == 1.0
         return Outcome.ONE_FAILURE_NOT_OUTLIVED if single else Outcome.FAILURES_AT_ONE_AGE
     return Outcome.ESTIMATED
+
+
+def _is_at_most(age: float, other: float, life_scale: LifeScale) -> bool:
+    """Return whether an age is at most another, but for rounding: it would be taken for the spread of the lives."""
+    if age <= other:
+        return True
+    place, limit = (float(life_scale.to_line(np.array(at))) for at in (age, other))
+    return place - limit <= life_scale.rounding(limit)

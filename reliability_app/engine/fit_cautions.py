@@ -5,7 +5,9 @@ from __future__ import annotations
 from collections.abc import Callable
 
 from reliability_app.engine.cautions import Caution, Severity
+from reliability_app.engine.families import Family
 from reliability_app.engine.life_data import LifeData
+from reliability_app.engine.question import Bound
 
 AgeText = Callable[[float], str]
 
@@ -77,8 +79,39 @@ def cautions_of_share_below_zero(share: float) -> tuple[Caution, ...]:
     return (Caution("lives-below-zero", Severity.CAUTION, text),)
 
 
-def cautions_of_bound(kind: str, data: LifeData) -> tuple[Caution, ...]:
-    """Return the caution for a kind of bound that promises more than it keeps in a small sample."""
+def caution_of_assumed_shape(family: Family) -> Caution:
+    """Return the caution for a family whose shape was not estimated from the data."""
+    if family.given_shape is None:
+        text = (
+            "The bound rests on a constant hazard, which these data cannot show; give a Weibull shape to see what "
+            "another hazard would leave of it."
+        )
+    else:
+        text = (
+            f"Everything read here rests on the shape {family.given_shape:g} that was given, not estimated, and holds "
+            "only as far as it is right; compare with a smaller and a greater shape."
+        )
+    return Caution("shape-assumed", Severity.CAUTION, text)
+
+
+def cautions_of_bound(bound: Bound, data: LifeData, subject: str = "This reading") -> tuple[Caution, ...]:
+    """Return the cautions for a bound that promises more than it keeps in a small sample, or stands in for another."""
+    return _cautions_of_stand_in(bound, subject) + _cautions_of_small_sample(bound.kind, data)
+
+
+def _cautions_of_stand_in(bound: Bound, subject: str) -> tuple[Caution, ...]:
+    if bound.instead_of is None or bound.kind != "likelihood":
+        return ()
+    # What to choose instead has been chosen already.
+    why = str(bound.instead_of).split(": choose ")[0].rstrip(".")
+    text = (
+        f"{subject}: the bound is that of the likelihood ratio, not calibrated, and may promise too much in small "
+        f"samples; {why[:1].lower()}{why[1:]}."
+    )
+    return (Caution("not-calibrated", Severity.CAUTION, text, subject),)
+
+
+def _cautions_of_small_sample(kind: str, data: LifeData) -> tuple[Caution, ...]:
     failures = data.failed_count + data.found_failed_count
     if kind == "wald" and failures < WALD_NEEDS_FAILURES:
         return (Caution("wald-small-sample", Severity.CAUTION, _held("A Wald bound", _WALD_HELD, failures)),)
@@ -95,5 +128,5 @@ def _held(what: str, table: dict[int, int], failures: int) -> str:
     return (
         f"{what} from {failures} failures keeps less than it promises: in complete tests with {row} failures the "
         f"one-sided 95 % lower bound of B10 was measured to hold in {table[row]} %. "
-        "A calibrated bound keeps its promise."
+        "A calibrated bound comes nearer to its promise."
     )

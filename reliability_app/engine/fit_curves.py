@@ -2,20 +2,27 @@
 
 from __future__ import annotations
 
+from contextlib import suppress
+
 import numpy as np
 from numpy.typing import NDArray
 
 from reliability_app.engine.bounds import check_bound
 from reliability_app.engine.bounds.kinds import OPPOSITE_SIDE, tail_of
 from reliability_app.engine.curves import Curve
-from reliability_app.engine.empirical import SurvivalSteps, mark_age
+from reliability_app.engine.density_measure import DensityMeasure
+from reliability_app.engine.empirical import HazardSteps, SurvivalSteps, mark_age
 from reliability_app.engine.errors import BoundUnavailable
-from reliability_app.engine.fit_result import Fit, reading_ends
+from reliability_app.engine.fit_result import Fit
 from reliability_app.engine.life_measures import Measure
+from reliability_app.engine.methods import MAXIMUM_LIKELIHOOD
+from reliability_app.engine.question import sided_ends
 from reliability_app.engine.shaped.shaped_fit import ShapedFit
 from reliability_app.engine.turnbull import TurnbullSteps
 
 Array = NDArray[np.float64]
+
+_HALF = 0.5
 
 
 def probability_curves(fit: Fit, ages: Array, *, confidence: float, side: str, kind: str) -> tuple[Curve, Curve]:
@@ -25,9 +32,9 @@ def probability_curves(fit: Fit, ages: Array, *, confidence: float, side: str, k
         return _drawable(both[0]), _drawable(both[1])
     standard, z = fit.family.standard, fit.score(ages)
     band = _band_of(fit, fit.score_measure(ages), kind=kind, side=side, confidence=confidence)
-    failure = reading_ends(lambda sign: standard.cdf(band[sign]), ages, side, lowest=-1.0) if band else (None, None)
+    failure = sided_ends(lambda sign: standard.cdf(band[sign]), side, lowest=-1.0) if band else (None, None)
     survival = (
-        reading_ends(lambda sign: standard.survival(band[sign]), ages, OPPOSITE_SIDE[side], lowest=1.0)
+        sided_ends(lambda sign: standard.survival(band[sign]), OPPOSITE_SIDE[side], lowest=1.0)
         if band
         else (None, None)
     )
@@ -45,8 +52,58 @@ def hazard_curve(fit: Fit, ages: Array, *, confidence: float, side: str, kind: s
     band = _band_of(fit, fit.hazard_measure(ages), kind=kind, side=side, confidence=confidence)
     if not band:
         return Curve(ages, values)
-    ends = reading_ends(lambda sign: to_hazard(band[sign]), ages, side, lowest=-1.0)
+    ends = sided_ends(lambda sign: to_hazard(band[sign]), side, lowest=-1.0)
     return Curve(ages, values, *(_finite(end) for end in ends))
+
+
+def density_curve(fit: Fit, ages: Array, *, confidence: float, kind: str) -> Curve:
+    """Return the probability density over age with a two-sided band of kind "likelihood" or "wald".
+
+    No side of a density is the safe one. There is no band where units entered late, for a family with one or
+    with three parameters or a further shape, nor for a fit that is not the maximum of the likelihood.
+    """
+    values = np.asarray(fit.density(ages))
+    if isinstance(fit, ShapedFit) or fit.method != MAXIMUM_LIKELIHOOD or fit.estimate is None:
+        return _drawable(Curve(ages, values))
+    if kind == "likelihood" and not fit.estimate.is_concave:
+        return _drawable(Curve(ages, values))
+    if fit.estimate.b_is_fixed:
+        # With b given the density may be greatest inside the range of a.
+        return _drawable(Curve(ages, values))
+    y, log_slope = fit.estimate.sample.to_y(ages), fit.estimate.sample.log_slope_at(fit.estimate.sample.to_y(ages))
+    band = _band_of(fit, DensityMeasure(y, fit.family.standard), kind=kind, side="two", confidence=confidence)
+    with np.errstate(over="ignore"):
+        ends = [np.exp(band[sign] + log_slope) if band else None for sign in (-1.0, 1.0)]
+    return _drawable(Curve(ages, values, ends[0], ends[1]))
+
+
+def cumulative_hazard_curve(failure: Curve, survival: Curve) -> Curve:
+    """Return the cumulative hazard, -ln of the reliability, of the two curves of `probability_curves`."""
+
+    def of(failed: Array | None, running: Array | None) -> Array | None:
+        if failed is None or running is None:
+            return None
+        with np.errstate(divide="ignore", invalid="ignore"):
+            # Each from the one that is smaller, so that neither end loses its digits.
+            hazard = np.where(running > _HALF, -np.log1p(-failed), -np.log(running))
+        return np.where(np.isfinite(hazard), hazard, np.nan)
+
+    y = of(failure.y, survival.y)
+    return Curve(
+        failure.x,
+        np.empty(0) if y is None else y,
+        of(failure.lower, survival.upper),
+        of(failure.upper, survival.lower),
+    )
+
+
+def hazard_step_curve(steps: HazardSteps, start: float, end: float) -> Curve:
+    """Return Nelson-Aalen's cumulative hazard as corner points from age `start` to `end`."""
+    age = np.concatenate(
+        [[start], np.repeat(steps.age, 2), [max(end, float(steps.age[-1]) if steps.age.size else end)]]
+    )
+    edges = (_corners(values, 0.0) for values in (steps.cumulative_hazard, steps.lower, steps.upper))
+    return Curve(age, *edges)
 
 
 def step_curve(steps: SurvivalSteps | TurnbullSteps, end: float) -> Curve:
@@ -73,10 +130,11 @@ def _band_of(fit: Fit, measure: Measure, *, kind: str, side: str, confidence: fl
     check_bound(kind, side, confidence)
     signs = {"lower": (-1.0,), "upper": (1.0,), "two": (-1.0, 1.0)}[side]
     tail = tail_of(side, confidence)
-    try:
-        return {sign: fit.bounder.band_end(measure, kind, tail, sign) for sign in signs}
-    except BoundUnavailable:
-        return {}
+    with suppress(BoundUnavailable):
+        for used in fit.bounder.choices(kind, measure):
+            with suppress(BoundUnavailable):
+                return {sign: fit.bounder.band_end(measure, used, tail, sign) for sign in signs}
+    return {}
 
 
 def _drawable(curve: Curve) -> Curve:

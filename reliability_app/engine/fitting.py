@@ -1,20 +1,25 @@
-"""fit(data, family) -> Fit, by maximum likelihood."""
+"""fit(data, family) -> Fit: the family meant, the method, and the maximum of the likelihood."""
 
 from __future__ import annotations
 
 import numpy as np
 from numpy.typing import NDArray
 
+from reliability_app.engine.errors import MethodUnavailable
 from reliability_app.engine.estimate import Estimate
 from reliability_app.engine.existence import Outcome, outcome_before_fitting
 from reliability_app.engine.families import Family, ShapedFamily, family
 from reliability_app.engine.families.shaped_family import with_threshold
+from reliability_app.engine.families.weibull import WEIBULL, weibull_of_given_shape
 from reliability_app.engine.fit_result import Fit
 from reliability_app.engine.life_data import LifeData
 from reliability_app.engine.likelihood import Terms, log_likelihood
+from reliability_app.engine.method_fit import fit_by_method
+from reliability_app.engine.methods import MAXIMUM_LIKELIHOOD, check_method
 from reliability_app.engine.newton import Maximum, maximise
 from reliability_app.engine.sample import Sample, sample_of
 from reliability_app.engine.shaped.shaped_fitting import fit_shaped
+from reliability_app.engine.zero_failure import ZeroFailureFit
 
 Array = NDArray[np.float64]
 
@@ -24,8 +29,15 @@ _THIN_TO = 4_000
 _FURTHEST_START = 30.0
 
 
-def fit(data: LifeData, family_name: str, *, threshold: bool = False) -> Fit:
-    """Fit a family by maximum likelihood.
+def fit(
+    data: LifeData,
+    family_name: str,
+    *,
+    threshold: bool = False,
+    method: str = MAXIMUM_LIKELIHOOD,
+    shape: float | None = None,
+) -> Fit:
+    """Fit a family.
 
     Parameters
     ----------
@@ -34,6 +46,10 @@ def fit(data: LifeData, family_name: str, *, threshold: bool = False) -> Fit:
         One of `FAMILY_NAMES`.
     threshold : bool
         Fit ln(life - threshold) in the place of ln life: Weibull, lognormal, exponential, loglogistic.
+    method : str
+        One of `METHODS`.
+    shape : float, optional
+        Weibull only: hold the shape at this value and estimate the scale.
 
     Returns
     -------
@@ -43,17 +59,38 @@ def fit(data: LifeData, family_name: str, *, threshold: bool = False) -> Fit:
     Raises
     ------
     UnknownName
-        If there is no such family, or it has no form with a threshold.
+        If there is no such family or method, or the family has no form with a threshold.
+    MethodUnavailable
+        If the method does not apply to the family or the data, or a shape is given to another family.
     DataError
-        If the family is one of ln life, and some lives are not positive.
+        If the family is one of ln life, and some lives are not positive; or the shape is out of range.
     """
-    chosen = family(family_name)
-    if threshold:
-        chosen = with_threshold(chosen)
+    chosen = _chosen(family_name, threshold=threshold, shape=shape)
+    check_method(method, data, chosen)
     if isinstance(chosen, ShapedFamily):
         return fit_shaped(data, chosen)
+    found = _likeliest(data, chosen)
+    return found if method == MAXIMUM_LIKELIHOOD else fit_by_method(found, method)
+
+
+def _chosen(family_name: str, *, threshold: bool, shape: float | None) -> Family:
+    chosen = family(family_name)
+    if shape is None:
+        return with_threshold(chosen) if threshold else chosen
+    if chosen is not WEIBULL or threshold:
+        what = f"{chosen.title} family{' with threshold' if threshold else ''}"
+        raise MethodUnavailable(
+            f"A shape can be given to the Weibull family without a threshold only, not to the {what}: leave it empty."
+        )
+    return weibull_of_given_shape(shape)
+
+
+def _likeliest(data: LifeData, chosen: Family) -> Fit:
+    """Fit a location-scale family by maximum likelihood."""
     data.check_beyond(chosen.life_scale.origin, chosen.title)
     outcome = outcome_before_fitting(data, chosen)
+    if outcome is Outcome.NO_FAILURE and chosen.fixed_sigma is not None:
+        return ZeroFailureFit(data, chosen, outcome, None)
     if outcome is not Outcome.ESTIMATED:
         return Fit(data, chosen, outcome, None)
     sample = sample_of(data, chosen.life_scale)

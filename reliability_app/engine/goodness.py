@@ -12,7 +12,7 @@ unknown" (2019, abstract read) into this one; for one common end of test it is P
 Plot correlation: the correlation of ln life (or life itself) with the quantiles of the family at the plotting
 positions, which measures how straight the points lie on the paper (Filliben 1975, Technometrics 17, 111-117; for
 censored data Chen 1984, Biometrika 71, 315-322; from memory); the positions are the mid-points of the Kaplan-Meier
-steps.
+steps. Where all units share one schedule of inspections the statistics are those of `goodness_at_looks`.
 """
 
 from __future__ import annotations
@@ -29,10 +29,11 @@ from reliability_app.engine.estimate import Estimate
 from reliability_app.engine.families import StandardDistribution
 from reliability_app.engine.fit_result import Fit
 from reliability_app.engine.fitting import fit
-from reliability_app.engine.goodness_one_by_one import NORMAL, REPEATS_ONE_BY_ONE, data_like, scored_steps
+from reliability_app.engine.goodness_at_looks import common_looks, look_statistics, weighted_correlation
+from reliability_app.engine.goodness_one_by_one import NORMAL, REPEATS_ONE_BY_ONE, data_like, scored_looks, scored_steps
 from reliability_app.engine.life_data import LifeData
+from reliability_app.engine.methods import MAXIMUM_LIKELIHOOD
 from reliability_app.engine.refitting import FEWEST_FAILURES, samples_like
-from reliability_app.engine.simulation import can_be_simulated
 
 Array = NDArray[np.float64]
 
@@ -62,7 +63,8 @@ class Goodness:
     Attributes
     ----------
     anderson_darling : Tested or None
-        Large where fit and units differ; None where some units are only known to have failed between two ages.
+        Large where fit and units differ; None where units found failed between two ages do not share one schedule of
+        inspections with all others.
     correlation : Tested or None
         1 for points on a straight line; None also with fewer than three ages at failure.
     repeats : int
@@ -103,9 +105,10 @@ def goodness_of(
     """
     if not found.converged:
         raise NoEstimate(found.cautions[0].text)
-    if found.data.is_found_failed.any():
+    looks = _looks(found)
+    if found.data.is_found_failed.any() and looks is None:
         return Goodness(None, None, 0, _INTERVALS)
-    distance, straightness = statistics_of(found)
+    distance, straightness = statistics_of(found, looks)
     try:
         distances, straightnesses = _simulated(found, repeats, seed, proceed)
     except BoundUnavailable as trouble:
@@ -115,13 +118,9 @@ def goodness_of(
     return _goodness((distance, p_values[0]), (straightness, p_values[1]), distances.size, "")
 
 
-_NO_PLAN = (
-    "The p-values are not given, because the plan under which these units were watched cannot be simulated: "
-    "compare the families by AICc."
-)
 _INTERVALS = (
-    "Anderson-Darling and plot correlation are not given while units are only known to have failed between two ages: "
-    "compare the families by AICc."
+    "Anderson-Darling and plot correlation are not given, because units found failed between two ages do not share one "
+    "schedule of inspections, from age 0, with all other units: compare the families by AICc."
 )
 
 
@@ -155,31 +154,38 @@ def plot_correlation(steps: BatchSteps, standard: StandardDistribution) -> Array
     there = (steps.failures > 0) & (steps.before > 0)
     weight = np.where(there, steps.failures, 0.0)
     score = standard.survival_quantile(np.where(there, 0.5 * (steps.before + steps.after), 0.5))
-    total = weight.sum(axis=1, keepdims=True)
-    y, z = (values - np.sum(weight * values, axis=1, keepdims=True) / total for values in (steps.y, score))
-    with np.errstate(invalid="ignore", divide="ignore"):
-        together = np.sum(weight * y * z, axis=1)
-        correlation = together / np.sqrt(np.sum(weight * y * y, axis=1) * np.sum(weight * z * z, axis=1))
-    return np.where(there.sum(axis=1) >= FEWEST_FAILURES, correlation, np.nan)
+    return weighted_correlation(steps.y, score, weight, fewest=FEWEST_FAILURES)
 
 
-def statistics_of(found: Fit) -> tuple[float, float]:
-    """Return Anderson-Darling and plot correlation of a fit with its own data."""
+def statistics_of(found: Fit, looks: Array | None = None) -> tuple[float, float]:
+    """Return Anderson-Darling and plot correlation of a fit with its own data, at places of common looks if given."""
     estimate = found.estimate
     if isinstance(estimate, Estimate):
-        steps, standard, a, b = batch_steps(estimate.sample), found.family.standard, estimate.a, estimate.b
+        sample, standard, a, b = estimate.sample, found.family.standard, np.array([estimate.a]), np.array([estimate.b])
+        if looks is not None:
+            looks = (looks - sample.shift) / sample.spread
+            distance, straightness = look_statistics(sample, looks, standard, a, b, fewest=FEWEST_FAILURES)
+            return float(distance[0]), float(straightness[0])
+        steps = batch_steps(sample)
+    elif looks is not None:
+        distance, straightness = scored_looks(found, looks)
+        return float(distance[0]), float(straightness[0])
     else:
-        steps, standard, a, b = scored_steps(found), NORMAL, 0.0, 1.0
-    distance = anderson_darling(steps, standard, np.array([a]), np.array([b]))
-    return float(distance[0]), float(plot_correlation(steps, standard)[0])
+        steps, standard, a, b = scored_steps(found), NORMAL, np.zeros(1), np.ones(1)
+    return float(anderson_darling(steps, standard, a, b)[0]), float(plot_correlation(steps, standard)[0])
+
+
+def _looks(found: Fit) -> Array | None:
+    """Return the places of the looks that all units share, or None."""
+    return common_looks(found.data, found.family.life_scale)
 
 
 def _simulated(found: Fit, repeats: int | None, seed: int, proceed: Proceed | None) -> tuple[Array, Array]:
     """Return both statistics of samples drawn at the fit, each at its own fit."""
-    if not can_be_simulated(found.data):
-        raise BoundUnavailable(_NO_PLAN)
-    if found.data.failed_count < FEWEST_FAILURES:
+    if found.data.failed_count + found.data.found_failed_count < FEWEST_FAILURES:
         raise BoundUnavailable("With fewer than three failures nothing can be said about how well a family fits.")
+    if found.method != MAXIMUM_LIKELIHOOD:
+        raise BoundUnavailable(f"A p-value is simulated for fits by {MAXIMUM_LIKELIHOOD} only: choose that method.")
     if isinstance(found.estimate, Estimate):
         return _simulated_in_batches(found.estimate, found.data, repeats, seed, proceed)
     return simulated_one_by_one(found, repeats=repeats, seed=seed, proceed=proceed)
@@ -188,12 +194,18 @@ def _simulated(found: Fit, repeats: int | None, seed: int, proceed: Proceed | No
 def _simulated_in_batches(
     estimate: Estimate, data: LifeData, repeats: int | None, seed: int, proceed: Proceed | None
 ) -> tuple[Array, Array]:
-    standard = estimate.family.standard
+    standard, looks = estimate.family.standard, common_looks(data, estimate.family.life_scale)
+    if looks is not None:
+        looks = estimate.a + estimate.b * (looks - estimate.sample.shift) / estimate.sample.spread
     statistics: list[tuple[Array, Array]] = []
     for drawn in samples_like(estimate, data, repeats=repeats, seed=seed, proceed=proceed):
-        top, steps = drawn.fitted_by(estimate.family), batch_steps(drawn.sample)
-        distance = anderson_darling(steps, standard, top.a, top.b)
-        statistics.append((distance[top.converged], plot_correlation(steps, standard)[top.converged]))
+        top = drawn.fitted_by(estimate.family)
+        if looks is not None:
+            both = look_statistics(drawn.sample, looks, standard, top.a, top.b, fewest=FEWEST_FAILURES)
+        else:
+            steps = batch_steps(drawn.sample)
+            both = anderson_darling(steps, standard, top.a, top.b), plot_correlation(steps, standard)
+        statistics.append((both[0][top.converged], both[1][top.converged]))
     distances, straightnesses = (np.concatenate(column) for column in zip(*statistics, strict=True))
     return distances, straightnesses
 
@@ -212,7 +224,8 @@ def simulated_one_by_one(
     name, threshold = found.family.name, found.family.has_threshold
     tests = data_like(found, repeats=count, seed=seed, proceed=proceed)
     refits = (fit(test, name, threshold=threshold) for test in tests)
-    statistics = np.array([statistics_of(refit) for refit in refits if refit.converged]).reshape(-1, 2)
+    looks = _looks(found)
+    statistics = np.array([statistics_of(refit, looks) for refit in refits if refit.converged]).reshape(-1, 2)
     if len(statistics) < _LEAST_SHARE_FITTED * count:
         raise BoundUnavailable("Hardly any simulated sample could be fitted, so there is no reference for this family.")
     return statistics[:, 0], statistics[:, 1]

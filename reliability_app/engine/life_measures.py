@@ -53,7 +53,7 @@ class LifeMeasure(Measure):
 
     def terms(self, a: Array, b: Array) -> Terms:
         """Return the standardised place and its derivatives."""
-        y = (_column(self.z, a) - a) / b
+        y = (column(self.z, a) - a) / b
         zero = np.zeros_like(y)
         inverse = 1.0 / b + zero
         return Terms(y, -inverse, -y * inverse, zero, inverse * inverse, 2.0 * y * inverse * inverse)
@@ -76,7 +76,7 @@ class ScoreMeasure(Measure):
 
     def terms(self, a: Array, b: Array) -> Terms:
         """Return z and its derivatives."""
-        y = _column(self.y, a)
+        y = column(self.y, a)
         z = a + b * y
         zero = np.zeros_like(z)
         return Terms(z, zero + 1.0, zero + y, zero, zero, zero)
@@ -100,7 +100,7 @@ class HazardMeasure(Measure):
 
     def terms(self, a: Array, b: Array) -> Terms:
         """Return the log hazard and its derivatives."""
-        y = _column(self.y, a)
+        y = column(self.y, a)
         inverse = 1.0 / b
         with np.errstate(over="ignore", invalid="ignore"):  # far out in a short tail the hazard is 0
             value, first, second = self.standard.log_hazard(a + b * y)
@@ -133,6 +133,6 @@ class SlopeMeasure(Measure):
         return Terms(value, zero, 1.0 / b + zero, zero, zero, -1.0 / (b * b) + zero)
 
 
-def _column(values: Array, points: Array) -> Array:
+def column(values: Array, points: Array) -> Array:
     """Put the functions on the first axis of as many axes as the points have."""
     return values.reshape(values.shape + (1,) * (points.ndim - 1))

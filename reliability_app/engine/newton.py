@@ -49,7 +49,15 @@ class Maximum:
     steps: NDArray[np.intp]
 
 
-def maximise(evaluate: Evaluate, a: Array, b: Array, *, failures: Array, b_is_fixed: bool = False) -> Maximum:
+def maximise(
+    evaluate: Evaluate,
+    a: Array,
+    b: Array,
+    *,
+    failures: Array,
+    b_is_fixed: bool = False,
+    most_steps: int = MOST_STEPS,
+) -> Maximum:
     """Climb from the starts (a, b) to the maxima of a batch of log-likelihoods.
 
     Parameters
@@ -62,6 +70,8 @@ def maximise(evaluate: Evaluate, a: Array, b: Array, *, failures: Array, b_is_fi
         Failed units of each sample.
     b_is_fixed : bool
         Keep b as it is (a family with a fixed sigma).
+    most_steps : int
+        After so many a sample counts as not converged.
     """
     a, b = a.copy(), b.copy()
     every = np.arange(a.size)
@@ -70,7 +80,7 @@ def maximise(evaluate: Evaluate, a: Array, b: Array, *, failures: Array, b_is_fi
     decrement = np.full(a.size, np.inf)
     enough = DECREMENT_REACHED * np.maximum(1.0, failures)
     active = every
-    for _ in range(MOST_STEPS):
+    for _ in range(most_steps):
         terms = Terms(*(column[active] for column in columns))
         step_a, step_b = newton_step(terms, b_is_fixed=b_is_fixed)
         decrement[active] = step_a * terms.d_a + step_b * terms.d_b

@@ -18,7 +18,10 @@ Index = NDArray[np.intp] | Mask
 # Above this many records it is looked up by a small draw whether summing coincidences can pay.
 _ALWAYS_SUM_BELOW = 20_000
 _DRAW = 2_000
-_BLOCK, _SHORTEST_BLOCK = 8_192, 64
+_BLOCK, _SHORTEST_BLOCK, _STRETCH = 8_192, 64, 32_768
+# An interval that runs on for so many times all that is known otherwise says no more than a unit still running.
+_FAR_OUT = 1e3
+_LEAST_SQUARED = 1e-100
 
 
 @dataclass(frozen=True, eq=False)
@@ -49,14 +52,18 @@ class Part:
         `points` rows of one stretch stay in the processor's cache, and a sum over it is too short to be shared out
         among threads, which would wait for each other whenever another program is busy.
         """
-        weight_y, weight_yy = self._weighted
         size = max(_SHORTEST_BLOCK, _BLOCK // points)
         if size >= self.size:
-            yield self.y, self.weight, weight_y, weight_yy
+            yield self.y, self.weight, *self._weighted
             return
+        # Products are made anew each time, which takes less time than to fetch them from memory; where every record is
+        # one unit there are none to make.
+        ones = np.ones((1, size)) if self.weight.strides == (0, 0) else None
         for start in range(0, self.size, size):
-            stretch = slice(start, start + size)
-            yield self.y[:, stretch], self.weight[:, stretch], weight_y[:, stretch], weight_yy[:, stretch]
+            y = self.y[:, start : start + size]
+            weight = self.weight[:, start : start + size] if ones is None else ones[:, : y.shape[1]]
+            weight_y = weight * y if ones is None else y
+            yield y, weight, weight_y, weight_y * y
 
     def rows(self, index: Index) -> Part:
         """Return the chosen rows; a part that serves the whole batch stays whole."""
@@ -169,25 +176,51 @@ class Sample:
 
 def sample_of(data: LifeData, life_scale: LifeScale = LOG_LIFE) -> Sample:
     """Return the one sample of `data` on a line, coincident records summed once, centred on the failures."""
-    failed, running, found = data.is_failed, data.is_running, data.is_found_failed
-    first_seen = data.lower > life_scale.origin
-    weight, failures = data.quantity, life_scale.to_line(data.lower[failed])
-    shift, spread = _centre(failures, data, life_scale)
+    found = data.is_found_failed
+    any_found = bool(found.any())
+    places, weight = _picked(data, data.lower, data.is_failed, life_scale)
+    shift, spread = _centre(places, data, life_scale)
+    log_slope = sum(float(weight[part] @ life_scale.log_slope(places[part])) for part in _stretches(places.size))
 
     def part(age: Array, chosen: Mask) -> Part:
-        return _summed((life_scale.to_line(age[chosen]) - shift) / spread, weight[chosen]) if chosen.any() else NO_PART
+        picked = _picked(data, age, chosen, life_scale)
+        return standardised(*picked) if picked[0].size else NO_PART
+
+    def standardised(places: Array, weight: Array) -> Part:
+        places -= shift
+        places /= spread
+        return _summed(places, weight)
 
     return Sample(
-        failed=_summed((failures - shift) / spread, weight[failed]),
-        running=part(data.lower, running),
-        between=_between(data, found & first_seen, (shift, spread), life_scale) if found.any() else NO_INTERVALS,
-        left=part(data.upper, found & ~first_seen) if found.any() else NO_PART,
+        failed=standardised(places, weight),
+        running=part(data.lower, data.is_running),
+        between=_between(data, found & (data.lower > life_scale.origin), (shift, spread), life_scale)
+        if any_found
+        else NO_INTERVALS,
+        left=part(data.upper, found & ~(data.lower > life_scale.origin)) if any_found else NO_PART,
         entered=part(data.entered, data.entered > 0),
         shift=shift,
         spread=spread,
-        log_slope=np.array([float(weight[failed] @ life_scale.log_slope(failures))]),
+        log_slope=np.array([log_slope]),
         life_scale=life_scale,
     )
+
+
+def _stretches(size: int) -> Iterator[slice]:
+    """Give stretches so short that what is computed of one needs no fresh memory, which takes longer than computing."""
+    return (slice(start, start + _STRETCH) for start in range(0, size, _STRETCH))
+
+
+def _picked(data: LifeData, age: Array, chosen: Mask, life_scale: LifeScale) -> tuple[Array, Array]:
+    """Return the places on the line of chosen records, and their quantities."""
+    places, done = np.empty(np.count_nonzero(chosen)), 0
+    for part in _stretches(age.size):
+        some = life_scale.to_line(age[part].compress(chosen[part]))
+        places[done : done + some.size] = some
+        done += some.size
+    if places.size > _ALWAYS_SUM_BELOW and data.quantity.max() == 1.0:
+        return places, np.broadcast_to(np.ones(1), places.shape)
+    return places, data.quantity.compress(chosen)
 
 
 def _between(data: LifeData, chosen: Mask, centre: tuple[float, float], life_scale: LifeScale) -> IntervalPart:
@@ -206,14 +239,38 @@ def _between(data: LifeData, chosen: Mask, centre: tuple[float, float], life_sca
 
 def _centre(failures: Array, data: LifeData, life_scale: LifeScale) -> tuple[float, float]:
     """Return a location and a spread on the line that make the standardised parameters moderate."""
-    ends = np.where(data.is_running, data.lower, data.upper)
-    places = failures if failures.size else life_scale.to_line(ends)
-    shift, spread = float(places.mean()), float(places.std())
+    places = failures if failures.size else life_scale.to_line(telling_ends(data))
+    shift, spread = _mean_and_deviation(places)
     if spread > life_scale.rounding(shift) and spread > 0:
         return shift, spread
     # Failures equal to the last digit have no spread of their own.
-    spread = float(life_scale.to_line(ends).std())
+    spread = _mean_and_deviation(life_scale.to_line(telling_ends(data)))[1]
     return shift, spread if spread > life_scale.rounding(shift) and spread > 0 else 1.0
+
+
+def telling_ends(data: LifeData) -> Array:
+    """Return the age that tells most of each record: that of a failure, that reached, that of being found failed.
+
+    The far ends of intervals that run on almost without end are drawn in: they must not set the scale for the others.
+    """
+    ends = np.where(data.is_running, data.lower, data.upper)
+    if not data.is_found_failed.any():
+        return ends
+    known = np.where(np.isfinite(data.lower), data.lower, ends)
+    first, last = float(ends.min()), float(known.max())
+    low, high = min(first, float(known.min())), max(first, last)
+    reach = _FAR_OUT * max(high - low, abs(high))
+    return np.minimum(ends, high + reach) if reach > 0 else ends
+
+
+def _mean_and_deviation(places: Array) -> tuple[float, float]:
+    unit = max(float(places.max()), -float(places.min()))
+    if unit > 0.0 and not _LEAST_SQUARED < unit < 1.0 / _LEAST_SQUARED:
+        # Their squares or their sum would be beyond all numbers.
+        return unit * float((places / unit).mean()), unit * float((places / unit).std())
+    mean = float(places.mean())
+    squares = sum(float(np.square(places[part] - mean).sum()) for part in _stretches(places.size))
+    return mean, float(np.sqrt(squares / places.size))
 
 
 def _summed(y: Array, weight: Array) -> Part:

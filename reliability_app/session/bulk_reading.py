@@ -73,7 +73,9 @@ def read_rows(cells: Mapping[str, Sequence[str]]) -> RowReadings:
     good &= np.where(found, end > age, ~has_end)
     good &= found | (code == IS_FAILED) | (code == IS_RUNNING)
     good &= (count >= 1) & (count <= MOST_UNITS) & (count == np.floor(count))
-    good &= (start == 0) | ((start > 0) & (start < age)) | (found & (start == age))
+    late = (start > 0) & (start < np.where(found, end, age))
+    # Of a unit found failed nothing need be known before it came under observation.
+    good &= (start == 0) | (late & ((start < age) | (found & ((age == 0) | (start == age)))))
     status = np.where(found, IS_FOUND_FAILED, code).astype(np.int8)
     status[~good] = IS_UNREAD
     _mark_empty_rows(status, np.isnan(age), cells.values())

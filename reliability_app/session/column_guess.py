@@ -2,13 +2,21 @@
 
 from __future__ import annotations
 
-import re
 from collections.abc import Callable, Collection, Mapping, Sequence
 from dataclasses import dataclass
 from itertools import pairwise
 
+from reliability_app.session.date_columns import (
+    DATE_MEANINGS,
+    DatePlan,
+    hold_dates,
+    is_date_column,
+    plan_of_dates,
+    read_date_heading,
+)
+from reliability_app.session.dates import looks_like_date
 from reliability_app.session.headings import INTERVAL_END, INTERVAL_START, Heading, read_heading, split_unit
-from reliability_app.session.numbers import looks_numeric
+from reliability_app.session.numbers import is_missing, looks_numeric
 from reliability_app.session.row_reading import BUILT_IN_COLUMNS, HEADINGS, read_life_entry
 from reliability_app.session.states import FOUND_FAILED, STATES, is_yes, read_answer, read_state
 
@@ -18,7 +26,6 @@ _HEADING_LINES = 10
 _SHORTEST_LIST = 5
 # Headings of lives up to this rank ("Life", "Time to failure") are believed even above cells that are no numbers.
 _BEYOND_DOUBT = 10
-_MISSING = re.compile(r"|[-\u2013\u2014?.]+|n/?a|nan|none|null|#n/?a", re.IGNORECASE)
 
 
 @dataclass(frozen=True)
@@ -26,16 +33,13 @@ class Columns:
     """What each column of a source was taken for.
 
     `keys` holds, per source column, a key of the unit table or the name of a column of the user's own; None for a
-    column without any text. `is_interval` tells that life and until are the two ends of an interval in every row.
+    column without any text. `is_interval` tells that life and until are the two ends of an interval in every row;
+    `dates`, from which columns lives are to be counted where none holds them.
     """
 
     keys: tuple[str | None, ...]
     is_interval: bool = False
-
-
-def is_missing(cell: str) -> bool:
-    """Return whether a cell is empty or says in a usual way that there is nothing ("n/a", "-")."""
-    return _MISSING.fullmatch(cell) is not None
+    dates: DatePlan | None = None
 
 
 def is_life_like(cell: str) -> bool:
@@ -67,9 +71,12 @@ def _known_headings(rows: Sequence[Sequence[str]], place: int) -> int:
     known = 0
     for column, cell in enumerate(rows[place]):
         under = _under(rows, place, column)
-        if is_life_like(cell) or _is_state_among_states(cell, under):
+        if is_life_like(cell) or looks_like_date(cell) or _is_state_among_states(rows, place, column):
             return 0
-        known += read_heading(cell) is not None and cell not in under and not _are_both_answers(cell, under)
+        is_known = read_heading(cell) is not None
+        if not is_known and read_date_heading(cell) is not None:
+            is_known = is_date_column(under)
+        known += is_known and cell not in under and not _are_both_answers(cell, under)
     return known
 
 
@@ -77,11 +84,22 @@ def _under(rows: Sequence[Sequence[str]], place: int, column: int) -> list[str]:
     return [row[column] for row in rows[place + 1 : place + _SAMPLE] if column < len(row) and row[column]]
 
 
-def _is_state_among_states(cell: str, under: Sequence[str]) -> bool:
-    """Return whether a word for a state stands for one: as a heading ("Failed") it has answers below it, not words."""
-    if read_state(cell) is None:
+def _is_state_among_states(rows: Sequence[Sequence[str]], place: int, column: int) -> bool:
+    """Return whether a word for a state stands for one: as a heading ("Failed") it has answers below it, not words.
+
+    Beside a heading of start dates it is one of end dates, even if there is none yet.
+    """
+    cell, under = rows[place][column], _under(rows, place, column)
+    if read_state(cell) is None or is_date_column(under, cell):
+        return False
+    if read_date_heading(cell) is not None and _has_start_dates(rows, place):
         return False
     return not under or any(read_state(text) is not None and not text.isdigit() for text in under)
+
+
+def _has_start_dates(rows: Sequence[Sequence[str]], place: int) -> bool:
+    roles = ((column, read_date_heading(cell)) for column, cell in enumerate(rows[place]))
+    return any(role and role.is_start and is_date_column(_under(rows, place, column)) for column, role in roles)
 
 
 def _are_both_answers(cell: str, under: Sequence[str]) -> bool:
@@ -90,14 +108,18 @@ def _are_both_answers(cell: str, under: Sequence[str]) -> bool:
 
 
 def _text_above_numbers(rows: Sequence[Sequence[str]]) -> bool:
-    """Return whether the first row holds no number, but stands above a column of numbers."""
-    if any(is_life_like(cell) or _is_state_among_states(cell, _under(rows, 0, at)) for at, cell in enumerate(rows[0])):
+    """Return whether the first row holds no number and no date, but stands above a column of these."""
+    if any(_is_number_or_date(cell) or _is_state_among_states(rows, 0, at) for at, cell in enumerate(rows[0])):
         return False
     for column, cell in enumerate(rows[0]):
         under = _under(rows, 0, column)
-        if under and not is_missing(cell) and sum(map(is_life_like, under)) >= 0.8 * len(under):
+        if under and not is_missing(cell) and sum(map(_is_number_or_date, under)) >= 0.8 * len(under):
             return True
     return False
+
+
+def _is_number_or_date(cell: str) -> bool:
+    return is_life_like(cell) or looks_like_date(cell)
 
 
 def guess_columns(
@@ -118,15 +140,23 @@ def guess_columns(
     if not any(headings) and (layout := _own_layout(columns)):
         return Columns(layout)
     keys: list[str | None] = [None] * len(columns)
-    is_interval = _take_headings(keys, held, headings, known_extras)
-    _take_contents(keys, held, headings)
+    dated = hold_dates(columns, headings)
+    is_interval = _take_headings(keys, held, headings, known_extras, dated)
+    plan = plan_of_dates(columns, headings, keys, {}) if "life" not in keys else None
+    _take_contents(keys, held, headings, dated, counts_dates=plan is not None)
+    if "life" in keys:
+        plan = None
     rest = [place for place, key in enumerate(keys) if key is None and (held[place] or headings[place])]
     _name(keys, rest, headings, known_extras)
-    return Columns(tuple(keys), is_interval)
+    return Columns(tuple(keys), is_interval, plan)
 
 
 def _take_headings(
-    keys: list[str | None], held: Sequence[Sequence[str]], headings: Sequence[str], known_extras: Collection[str]
+    keys: list[str | None],
+    held: Sequence[Sequence[str]],
+    headings: Sequence[str],
+    known_extras: Collection[str],
+    dated: Sequence[bool],
 ) -> bool:
     """Fill in the keys that headings name, the most telling heading first; return whether lives are intervals."""
     extras = {name.casefold(): name for name in known_extras}
@@ -134,7 +164,7 @@ def _take_headings(
     for place, text in enumerate(headings):
         if text.casefold() in extras:
             keys[place] = extras.pop(text.casefold())
-        elif (heading := read_heading(text)) and _suits(heading, held[place]):
+        elif (heading := read_heading(text)) and not dated[place] and _suits(heading, held[place]):
             found.append((heading.rank, place, heading.key))
     named = {key for _, _, key in found}
     is_interval = {INTERVAL_START, INTERVAL_END} <= named and not named & {"life", "until"}
@@ -156,27 +186,42 @@ def _suits(heading: Heading, cells: Sequence[str]) -> bool:
     return not known or sum(map(is_life_like, known)) * 3 >= len(known)
 
 
-def _take_contents(keys: list[str | None], held: Sequence[Sequence[str]], headings: Sequence[str]) -> None:
-    """Fill in state, life, unit and quantity by what columns hold, where no heading has named them."""
+def _take_contents(
+    keys: list[str | None],
+    held: Sequence[Sequence[str]],
+    headings: Sequence[str],
+    dated: Sequence[bool],
+    *,
+    counts_dates: bool,
+) -> None:
+    """Fill in state, life, unit and quantity by what columns hold, where no heading has named them.
+
+    `counts_dates` tells that lives can be counted between dates: below headings, numbers are then something else.
+    """
 
     def free(suits: Callable[[Sequence[str]], bool]) -> list[int]:
-        return [place for place, cells in enumerate(held) if keys[place] is None and cells and suits(cells)]
+        places = [place for place, cells in enumerate(held) if keys[place] is None and cells and not dated[place]]
+        return [place for place in places if suits(held[place])]
 
     headed = any(headings)
     if "state" not in keys and (places := free(_are_states)):
         keys[places[0]] = "state"
-    lives = free(_are_lives)
+    lives = [] if headed and counts_dates else free(_are_lives)
     if "state" not in keys and not headed and len(lives) > 1 and (places := free(_are_indicators)):
         keys[places[-1]] = "state"
         lives.remove(places[-1])
+    if counts_dates:
+        lives = [place for place in lives if not _are_quantities(held[place]) and not _counts_up(held[place])]
     if "life" not in keys and lives:
         keys[min(lives, key=lambda place: _unlike_lives(held[place]))] = "life"
     if headed:
         return
-    if "unit" not in keys and (places := [p for p in range(len(keys)) if _may_be_names(keys, held, p)]):
+    if "unit" not in keys and (
+        places := [p for p in range(len(keys)) if not dated[p] and _may_be_names(keys, held, p)]
+    ):
         keys[places[0]] = "unit"
-    if "state" in keys and "life" in keys and (places := free(_are_quantities)):
-        after = [place for place in places if place > keys.index("life")]
+    if "state" in keys and (counts_dates or "life" in keys) and (places := free(_are_quantities)):
+        after = [place for place in places if "life" not in keys or place > keys.index("life")]
         if after:
             keys[after[0]] = "quantity"
 
@@ -280,10 +325,13 @@ def renamed(
     Parameters
     ----------
     choices : mapping of int to str or None
-        Per source column a key of the unit table; None or an unknown word makes it a column of the user's own. A
-        column that had the chosen key before becomes one of the user's own.
+        Per source column a key of the unit table; None or an unknown word makes it a column of the user's own, also
+        where it holds the dates that lives are counted from. A column that had the chosen key before becomes one of
+        the user's own.
     """
     keys = list(columns.keys)
+    if "life" in keys and "life" not in choices.values() and set(choices.values()) & set(DATE_MEANINGS):
+        keys[keys.index("life")] = None
     for place, choice in choices.items():
         if choice in BUILT_IN_COLUMNS and choice in keys:
             keys[keys.index(choice)] = None

@@ -7,12 +7,12 @@ from collections import Counter
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
-from reliability_app.session.column_guess import is_missing
 from reliability_app.session.headings import question, split_unit
 from reliability_app.session.numbers import (
     DecimalMark,
     UnreadableNumber,
     decide_mark,
+    is_missing,
     is_plain,
     looks_numeric,
     plain_number,
@@ -34,11 +34,12 @@ _SUMMARY_ROWS = frozenset({"total", "sum", "mean", "average", "median", "summe",
 
 @dataclass(frozen=True)
 class StateColumn:
-    """The State cells, what each word was read as (first seen first), and sentences on how."""
+    """The State cells, what each word was read as (first seen first), what words are not known, sentences on how."""
 
     texts: list[str]
     words: dict[str, str]
     notes: tuple[str, ...]
+    unknown: tuple[str, ...] = ()
 
 
 def decide_marks(texts: Mapping[str, Sequence[str]]) -> dict[str, DecimalMark]:
@@ -83,6 +84,19 @@ def _plain_cell(cell: str, mark: DecimalMark) -> str:
     return cell
 
 
+def plain_among_numbers(cells: Sequence[str], mark: DecimalMark | None) -> list[str]:
+    """Return the cells of a column that came as numbers, with those that came as text in plain form too.
+
+    Numbers are never read anew, however the numbers among the texts are written.
+    """
+    texts = [cell for cell in cells if cell and not is_plain(cell)]
+    if not texts:
+        return list(cells)
+    decided = mark or decide_mark(texts)
+    plain = dict(zip(texts, plain_numbers(texts, decided), strict=True))
+    return [plain.get(cell, cell) for cell in cells]
+
+
 def mark_notes(key: str, before: Sequence[str], after: Sequence[str], mark: DecimalMark) -> list[str]:
     """Say how the numbers of a column were read where that is not plain to see."""
     heading = HEADINGS.get(key, key)
@@ -114,7 +128,9 @@ def without_units(cells: Sequence[str]) -> tuple[list[str], str | None]:
     return [part.number if part else cell for cell, part in zip(cells, parts, strict=True)], unit
 
 
-def read_state_column(cells: Sequence[str], heading: str, yes_means: str | None) -> StateColumn:
+def read_state_column(
+    cells: Sequence[str], heading: str, yes_means: str | None, chosen: Mapping[str, str] | None = None
+) -> StateColumn:
     """Read the cells of a state column in the light of its heading.
 
     Parameters
@@ -124,6 +140,8 @@ def read_state_column(cells: Sequence[str], heading: str, yes_means: str | None)
         "Failed?" or "censored (1 = yes)" tell what a yes or a 1 means; "" if there is none.
     yes_means : str or None
         "failed" or "running": what a yes or a 1 means, chosen by hand.
+    chosen : mapping of str to str, optional
+        The states of single words, chosen by hand.
     """
     yes = yes_means or question(heading)
     counted = Counter(cells)
@@ -135,6 +153,7 @@ def read_state_column(cells: Sequence[str], heading: str, yes_means: str | None)
         notes.append("State holds 1 and 2: 2 was read as failed and 1 as running, as is usual; change it if not so.")
     for word in counted:
         state = (read_answer(word, yes) if yes and word else None) or words.get(word) or read_state(word)
+        state = chosen.get(word, state) if chosen else state
         if state:
             words[word] = state
     given = [word for word in counted if word]
@@ -144,7 +163,7 @@ def read_state_column(cells: Sequence[str], heading: str, yes_means: str | None)
     unknown = [word for word in given if word not in words]
     if unknown:
         notes.append(_unknown_states(unknown))
-    return StateColumn([words.get(cell, cell) for cell in cells], words, tuple(notes))
+    return StateColumn([words.get(cell, cell) for cell in cells], words, tuple(notes), tuple(unknown))
 
 
 def _unknown_states(unknown: Sequence[str]) -> str:

@@ -46,6 +46,7 @@ class Points:
     running_age: Floats
     running_quantity: Integers
     undrawn: int = 0
+    running_rows: tuple[tuple[int, ...], ...] = ()
 
 
 @dataclass(frozen=True, eq=False)
@@ -77,6 +78,7 @@ def draw_marks(data: LifeData, units: ReadUnits) -> tuple[Points, Curve]:
     running = data.is_running
     running_age, running_quantity = _summed(data.lower[running], data.quantity[running])
     times_drawn = np.bincount(record, minlength=data.lower.size)
+    of_age = np.searchsorted(running_age, data.lower[running])
     points = Points(
         age=positions.age,
         fraction=positions.fraction,
@@ -89,8 +91,17 @@ def draw_marks(data: LifeData, units: ReadUnits) -> tuple[Points, Curve]:
         running_age=running_age,
         running_quantity=running_quantity,
         undrawn=int(data.quantity[~running & (times_drawn == 0)].sum()),
+        running_rows=_rows_by_place(np.asarray(units.rows)[running], of_age, running_age.size),
     )
     return points, step_curve(steps, data.last_observation)
+
+
+def _rows_by_place(rows: Integers, place: Integers, count: int) -> tuple[tuple[int, ...], ...]:
+    """Return the rows that belong to each of some places."""
+    order = np.argsort(place, kind="stable")
+    bounds = np.searchsorted(place[order], np.arange(count + 1)).tolist()
+    ordered = rows[order].tolist()
+    return tuple(tuple(ordered[first:last]) for first, last in pairwise(bounds))
 
 
 def _contributions(data: LifeData, positions: PlottingPositions) -> tuple[Integers, Integers]:
@@ -104,16 +115,17 @@ def _contributions(data: LifeData, positions: PlottingPositions) -> tuple[Intege
     return record[order], mark[order]
 
 
-def draw_curves(fitted: Fit, basis: Basis, *, kind: str) -> Curves:
+def draw_curves(fitted: Fit, basis: Basis, *, kind: str, hazard_kind: str | None = None) -> Curves:
     """Return the curves of a fit that converged, with bands of a kind on the sides that go with the basis.
 
-    A lower bound of the lives is an upper bound of the failure probability.
+    A lower bound of the lives is an upper bound of the failure probability. The band of the hazard may be of another
+    kind.
     """
     ages = _ages(fitted)
     confidence = basis.confidence
     against = bound_side(HazardAsk(0.0), basis.side)
     failure, survival = probability_curves(fitted, ages, confidence=confidence, side=against, kind=kind)
-    hazard = hazard_curve(fitted, ages, confidence=confidence, side=against, kind=kind)
+    hazard = hazard_curve(fitted, ages, confidence=confidence, side=against, kind=hazard_kind or kind)
     return Curves(failure=failure, hazard=hazard, survival=survival)
 
 

@@ -41,6 +41,16 @@ __all__ = [
     "TableEdit",
 ]
 
+_BASIS_TITLES = {
+    "family": "family",
+    "fit": "fit method",
+    "bound": "bound",
+    "confidence": "confidence",
+    "side": "side",
+    "threshold": "threshold",
+    "shape": "held shape",
+}
+
 
 @dataclass(eq=False)
 class ChangeBasis(Edit):
@@ -53,8 +63,9 @@ class ChangeBasis(Edit):
 
     @property
     def label(self) -> str:  # noqa: D102 - said by Edit
-        names = ("family", "fit", "bound", "confidence", "side")
-        different = [name for name in names if getattr(self.old, name) != getattr(self.new, name)]
+        different = [
+            title for name, title in _BASIS_TITLES.items() if getattr(self.old, name) != getattr(self.new, name)
+        ]
         return f"change of {different[0]}" if len(different) == 1 else "change of basis"
 
     @property

@@ -2,21 +2,27 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Collection, Mapping, Sequence
+from dataclasses import replace
 
-from reliability_app.session.column_guess import Columns, guess_columns, is_life_like, is_missing, renamed
+from reliability_app.session.column_guess import Columns, guess_columns, is_life_like, renamed
 from reliability_app.session.column_texts import (
+    StateColumn,
     decide_marks,
     mark_notes,
     number_columns,
+    plain_among_numbers,
     plain_numbers,
     read_intervals,
     read_state_column,
     states_of_bare_lives,
     without_units,
 )
+from reliability_app.session.date_columns import DatePlan, plan_of_dates
+from reliability_app.session.date_lives import DateLives, EndDates, lives_from_dates
 from reliability_app.session.headings import read_heading
-from reliability_app.session.numbers import DecimalMark, are_plain, quoted
+from reliability_app.session.numbers import DecimalMark, are_plain, is_missing, quoted
+from reliability_app.session.open_questions import open_questions
 from reliability_app.session.row_reading import BUILT_IN_COLUMNS, NUMBER_COLUMNS
 from reliability_app.session.states import FAILED, read_state
 from reliability_app.session.understanding import Choices, SourceTable, Understanding, describe
@@ -36,16 +42,22 @@ def interpret(source: SourceTable, choices: Choices) -> Understanding:
     columns = _columns_of(source, body, choices.columns)
     texts = {key: body[place] for place, key in enumerate(columns.keys) if key}
     extras = tuple(key for key in texts if key not in BUILT_IN_COLUMNS)
-    notes = [*source.notes, *_note_on_titles(source)]
+    notes = [*_note_on_sheets(source), *source.notes, *_note_on_titles(source)]
 
     life_unit = _life_unit(texts, columns, headings)
-    marks = _read_numbers(texts, extras, choices.mark, notes)
-    words = _read_states(texts, columns, _heading_of("state", columns, headings), choices.yes_means, notes)
+    exact = {key for place, key in enumerate(columns.keys) if key and place in source.true_numbers}
+    marks = _read_numbers(texts, extras, exact, choices.mark, notes)
+    states = _state_column(texts, _heading_of("state", columns, headings), choices)
+    dates = None
+    if columns.dates is not None:
+        dates = _count_dates(columns.dates, body, texts, states, source, choices)
+        life_unit = dates.unit
+    words = _read_states(texts, columns, states, notes, dates)
     rows, faulty = _through_table(texts, extras)
     return Understanding(
         rows=rows,
         extra_columns=extras,
-        sentence=describe(len(rows), columns, headings, words),
+        sentence=_of_sheet(source) + describe(len(rows), columns, headings, words, dates.unit if dates else ""),
         notes=tuple(notes),
         faulty=faulty,
         life_unit=life_unit,
@@ -54,6 +66,10 @@ def interpret(source: SourceTable, choices: Choices) -> Understanding:
         mark=marks.get("life", DecimalMark.POINT),
         source=source,
         choices=choices,
+        plan=columns.dates,
+        dates=dates,
+        state_words={**dict.fromkeys(states.unknown), **states.words} if states else {},
+        questions=open_questions(texts, marks, states, dates),
     )
 
 
@@ -63,7 +79,38 @@ def _columns_of(source: SourceTable, body: Sequence[Sequence[str]], chosen: Mapp
     if key and len(body) == 1 and not any(source.headings) and _may_stand_in(key, body[0]):
         columns = Columns((key,))
     places = {place: choice for place, choice in chosen.items() if 0 <= place < len(columns.keys)}
-    return renamed(columns, places, source.headings, source.existing_extras) if places else columns
+    if not places:
+        return columns
+    named = renamed(columns, places, source.headings, source.existing_extras)
+    return replace(named, dates=_chosen_dates(named, body, source.headings, places))
+
+
+def _chosen_dates(
+    columns: Columns, body: Sequence[Sequence[str]], headings: Sequence[str], chosen: Mapping[int, str | None]
+) -> DatePlan | None:
+    """Return from which dates to count where meanings were chosen by hand: a column of lives goes before dates."""
+    if "life" in columns.keys:
+        return None
+    # One that was made a column of its own by hand is no date to count from.
+    taken = [key if key in BUILT_IN_COLUMNS else None for key in columns.keys]
+    return plan_of_dates(body, headings, taken, chosen)
+
+
+def _count_dates(
+    plan: DatePlan,
+    body: Sequence[list[str]],
+    texts: dict[str, list[str]],
+    states: StateColumn | None,
+    source: SourceTable,
+    choices: Choices,
+) -> DateLives:
+    """Fill in the Life and State cells, in place, from two dates of each row."""
+    ends = [EndDates(body[place], state) for place, state in plan.ends]
+    dates = lives_from_dates(
+        body[plan.start], ends, states.texts if states else None, choices.dates, source.session_unit
+    )
+    texts["life"], texts["state"] = dates.lives, dates.states
+    return dates
 
 
 def _may_stand_in(key: str, cells: Sequence[str]) -> bool:
@@ -74,6 +121,19 @@ def _may_stand_in(key: str, cells: Sequence[str]) -> bool:
     if key == "state":
         return any(read_state(cell) for cell in held)
     return key in BUILT_IN_COLUMNS and sum(map(is_life_like, held)) * 2 <= len(held)
+
+
+def _of_sheet(source: SourceTable) -> str:
+    return f"Sheet {quoted(source.sheet)}: " if source.sheets is not None and len(source.sheets.names) > 1 else ""
+
+
+def _note_on_sheets(source: SourceTable) -> list[str]:
+    others = [quoted(name, 24) for name in source.sheets.names if name != source.sheet] if source.sheets else []
+    if not others:
+        return []
+    more = f" and {len(others) - 4} more" if len(others) > 4 else ""
+    said = "another sheet, which was" if len(others) == 1 else "other sheets, which were"
+    return [f"The file has {said} not read: {', '.join(others[:4])}{more}."]
 
 
 def _note_on_titles(source: SourceTable) -> list[str]:
@@ -100,10 +160,19 @@ def _life_unit(texts: dict[str, list[str]], columns: Columns, headings: Sequence
 
 
 def _read_numbers(
-    texts: dict[str, list[str]], extras: Sequence[str], mark: DecimalMark | None, notes: list[str]
+    texts: dict[str, list[str]],
+    extras: Sequence[str],
+    exact: Collection[str],
+    mark: DecimalMark | None,
+    notes: list[str],
 ) -> dict[str, DecimalMark]:
-    """Bring the columns of numbers into plain form, in place; add to `notes`; return the mark of each."""
-    numeric = {key: texts[key] for key in number_columns(texts, extras)}
+    """Bring the columns of numbers into plain form, in place; add to `notes`; return the mark of each.
+
+    Columns in `exact` came as numbers: these stay as they are.
+    """
+    for key in exact:
+        texts[key] = plain_among_numbers(texts[key], mark) if key in NUMBER_COLUMNS else texts[key]
+    numeric = {key: texts[key] for key in number_columns(texts, extras) if key not in exact}
     if mark is None and all(map(are_plain, numeric.values())):
         return dict.fromkeys(numeric, DecimalMark.POINT)
     marks = dict.fromkeys(numeric, mark) if mark else decide_marks(numeric)
@@ -113,16 +182,28 @@ def _read_numbers(
     return marks
 
 
+def _state_column(texts: Mapping[str, list[str]], heading: str, choices: Choices) -> StateColumn | None:
+    if "state" not in texts:
+        return None
+    return read_state_column(texts["state"], heading, choices.yes_means, choices.states)
+
+
 def _read_states(
-    texts: dict[str, list[str]], columns: Columns, heading: str, yes_means: str | None, notes: list[str]
+    texts: dict[str, list[str]],
+    columns: Columns,
+    read: StateColumn | None,
+    notes: list[str],
+    dates: DateLives | None,
 ) -> str | dict[str, str]:
     """Fill in the State cells, in place; add to `notes`; return what `understanding.describe` is to say of them."""
-    if "state" in texts:
-        read = read_state_column(texts["state"], heading, yes_means)
-        texts["state"] = read.texts
+    notes += dates.notes if dates else ()
+    if read is not None:
+        texts["state"] = dates.states if dates else read.texts
         notes += read.notes
         _clear_missing_ends(texts, notes)
         return read.words
+    if dates is not None:
+        return "state from the end dates"
     if columns.is_interval:
         read_intervals(texts)
         notes.append(FROM_ENDS)

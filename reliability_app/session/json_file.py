@@ -8,8 +8,10 @@ from pathlib import Path
 
 from reliability_app.session.atomic_write import write_whole
 from reliability_app.session.document import Session
+from reliability_app.session.file_state import FileState, changed_when
 from reliability_app.session.json_format import from_text, to_text
 from reliability_app.session.session_errors import (
+    ChangedMeanwhile,
     NewerVersion,
     NotSaved,
     SessionUnreadable,
@@ -21,18 +23,40 @@ LARGEST = 500_000_000
 """Bytes of the largest file that is opened: some four million units. More would only fill the memory."""
 
 
-def save(session: Session, path: Path) -> None:
+def save(session: Session, path: Path, *, seen: FileState | None = None) -> FileState | None:
     """Write `session` to `path`, whole or not at all; the previous state stays beside it (see `backup_of`).
 
     A file that holds the very same already is left alone, so that its backup still tells of an earlier state.
     A symbolic link stays one: the file it leads to is written.
 
+    Parameters
+    ----------
+    session : Session
+    path : Path
+    seen : FileState, optional
+        What the file held when it was opened or last saved here. A file that holds something else by now was changed
+        by another program, and is left alone.
+
+    Returns
+    -------
+    FileState or None
+        What it holds now, to be given at the next saving.
+
     Raises
     ------
+    ChangedMeanwhile
+        When another program has changed the file since it was seen.
     NotSaved
         When it could not be written; the file is then as it was.
     """
-    write_text(to_text(session), path, backup=True)
+    text = to_text(session)
+    if seen is not None and not seen.still_holds(path):
+        raise ChangedMeanwhile(
+            f"{path} was not saved: another program has changed it{changed_when(path)}, after it was opened here. "
+            "Save your work under another name and compare the two, or save again over the other changes."
+        )
+    write_text(text, path, backup=True)
+    return FileState.of(path)
 
 
 def write_text(text: str, path: Path, *, backup: bool) -> None:
@@ -73,6 +97,12 @@ def load(path: Path) -> Session:
         if backup.is_file():
             error.advice = f"The state before its last saving is in {backup}: open that instead."
         raise
+
+
+def load_and_note(path: Path) -> tuple[Session, FileState | None]:
+    """Open the session file at `path`, and note what it holds, for `save` to compare with; errors as `load`."""
+    seen = FileState.of(path)  # before it is read: a change in between is then told at the next saving
+    return load(path), seen
 
 
 def backup_of(path: Path) -> Path:

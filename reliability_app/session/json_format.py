@@ -25,16 +25,7 @@ from typing import Any, cast
 import msgspec
 
 from reliability_app import __version__
-from reliability_app.session.document import (
-    USUAL_ASKS,
-    Ask,
-    Basis,
-    HazardAsk,
-    LifeAsk,
-    ReliabilityAsk,
-    Session,
-    UnitSet,
-)
+from reliability_app.session.document import ASK_NAMES, USUAL_ASKS, Ask, Basis, Session, UnitSet
 from reliability_app.session.json_read import BadJson, malformed, parse, too_deep
 from reliability_app.session.json_schema_types import (
     FORMAT,
@@ -44,21 +35,23 @@ from reliability_app.session.json_schema_types import (
     SessionFile,
     SetOfUnits,
 )
+from reliability_app.session.json_visits import lasting_entries, log_of, requirement_of, visits_of
 from reliability_app.session.json_write import (
-    JsonText,
     as_number,
     is_number,
     lines_of,
     object_lines,
     one_line,
     quoted,
+    unknown_keys,
 )
 from reliability_app.session.migrations import to_current
 from reliability_app.session.row_reading import NUMBER_COLUMNS
 from reliability_app.session.session_errors import NewerVersion, SessionUnreadable, plain_reason
 from reliability_app.session.unit_table import BUILT_IN_COLUMNS, ColumnNameRefused, UnitTable
 
-_KINDS: Mapping[str, type[Ask]] = {"life": LifeAsk, "reliability": ReliabilityAsk, "hazard": HazardAsk}
+_KINDS: Mapping[str, type[Ask]] = {name: kind for kind, name in ASK_NAMES.items()}
+_LEFT_OUT_AS_USUAL = ("threshold", "shape")
 _LONE_SURROGATE = re.compile("[\ud800-\udfff]")
 _EXACT_EVERYWHERE = re.compile(r"-?(?=[0-9.]{1,16}$)(?:0|[1-9][0-9]{0,14})(?:\.[0-9]+)?")
 _CELL_DEEPEST = 16
@@ -93,7 +86,7 @@ def to_text(session: Session) -> str:
         "life_unit": session.life_unit,
         "sets": lines_of(map(_set_text, session.sets), level=1),
         "readings": lines_of(readings, level=1),
-        "visits": lines_of(map(one_line, session.visits), level=1),
+        **dict(lasting_entries(session)),
     }
     text = object_lines(_with_kept(entries, session.kept), level=0)
     return _LONE_SURROGATE.sub("\ufffd", text) + "\n"
@@ -187,9 +180,8 @@ def _kept_readings(kept: Mapping[str, object]) -> Mapping[Ask, Mapping[str, obje
 
 
 def _reading_text(ask: Ask, kept: Mapping[str, object]) -> str:
-    kind = next(kind for kind, ask_type in _KINDS.items() if type(ask) is ask_type)
     numbers = {name: as_number(value) for name, value in asdict(ask).items()}
-    return one_line(_with_kept({"ask": kind, **numbers}, kept))
+    return one_line(_with_kept({"ask": ASK_NAMES[type(ask)], **numbers}, kept))
 
 
 def _set_text(unit_set: UnitSet) -> str:
@@ -199,13 +191,19 @@ def _set_text(unit_set: UnitSet) -> str:
         "extra_columns": unit_set.table.extra_columns,
         "units": lines_of(_unit_lines(unit_set.table), level=3),
         "basis": _basis_entries(unit_set.basis),
+        **({"hidden": True} if unit_set.hidden else {}),
     }
     return object_lines(_with_kept(entries, unit_set.kept), level=2)
 
 
 def _basis_entries(basis: Basis) -> dict[str, object]:
-    entries = {name: getattr(basis, name) for name in BasisOfSet.__struct_fields__}
-    entries["confidence"] = as_number(basis.confidence)
+    given = {name: getattr(basis, name) for name in BasisOfSet.__struct_fields__}
+    usual = BasisOfSet()
+    entries = {
+        name: as_number(value) if isinstance(value, float) else value
+        for name, value in given.items()
+        if name not in _LEFT_OUT_AS_USUAL or value != getattr(usual, name)
+    }
     return _with_kept(entries, basis.kept)
 
 
@@ -245,7 +243,7 @@ def _json_or_text(text: str) -> str:
 
 def _session(file: SessionFile, content: dict[str, Any]) -> Session:
     asks, kept_readings = _asks(file, content)
-    kept = _unknown(content, SessionFile)
+    kept = unknown_keys(content, SessionFile)
     return Session(
         title=file.title,
         notes=file.notes,
@@ -253,7 +251,9 @@ def _session(file: SessionFile, content: dict[str, Any]) -> Session:
         # A session always has a set; where a file has none, it begins with an empty one.
         sets=list(map(_unit_set, file.sets, content["sets"], count())) or None,
         asks=asks,
-        visits=file.visits,
+        visits=visits_of(file, content),
+        requirement=requirement_of(file, content),
+        requirement_log=log_of(file, content),
         kept={**kept, "readings": kept_readings} if kept_readings else kept,
     )
 
@@ -265,7 +265,7 @@ def _asks(file: SessionFile, content: dict[str, Any]) -> tuple[tuple[Ask, ...], 
     kept = {
         ask: unknown
         for ask, reading, raw in zip(asks, file.readings, content["readings"], strict=True)
-        if (unknown := _unknown(raw, type(reading), "ask"))
+        if (unknown := unknown_keys(raw, type(reading), "ask"))
     }
     return asks, kept
 
@@ -276,13 +276,14 @@ def _ask(reading: ReadingAsked) -> Ask:
 
 
 def _unit_set(known: SetOfUnits, content: dict[str, Any], index: int) -> UnitSet:
-    kept_of_basis = _unknown(content.get("basis", {}), BasisOfSet)
+    kept_of_basis = unknown_keys(content.get("basis", {}), BasisOfSet)
     return UnitSet(
         name=known.name,
         table=_table(known, content.get("units", []), place=f"$.sets[{index}]"),
         basis=Basis(**msgspec.structs.asdict(known.basis), kept=kept_of_basis),
         colour=known.colour,
-        kept=_unknown(content, SetOfUnits),
+        kept=unknown_keys(content, SetOfUnits),
+        hidden=known.hidden,
     )
 
 
@@ -302,8 +303,3 @@ def _table(known: SetOfUnits, rows: list[dict[str, Any]], *, place: str) -> Unit
         return UnitTable.from_rows(rows, extra_columns=extra_columns)
     except ColumnNameRefused as error:
         raise BadJson(f"a column has a name it cannot have ({str(error).rstrip('.')})", place) from None
-
-
-def _unknown(content: Mapping[str, Any], known: type[msgspec.Struct], *more: str) -> dict[str, object]:
-    names = {*known.__struct_fields__, *more}
-    return {key: JsonText(one_line(value)) for key, value in content.items() if key not in names}

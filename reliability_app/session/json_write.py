@@ -7,9 +7,11 @@ from collections.abc import Iterable, Mapping
 from json.encoder import encode_basestring as quoted
 from math import isfinite
 
+from msgspec import Struct
+
 from reliability_app.session.numbers import is_plain
 
-__all__ = ["JsonText", "as_number", "is_number", "lines_of", "object_lines", "one_line", "quoted"]
+__all__ = ["JsonText", "as_number", "is_number", "lines_of", "object_lines", "one_line", "quoted", "unknown_keys"]
 
 
 class JsonText(str):
@@ -46,6 +48,12 @@ def one_line(value: object) -> str:
     if isinstance(value, list | tuple):
         return "[" + ", ".join([one_line(item) for item in value]) + "]"
     return json.dumps(value, allow_nan=False)
+
+
+def unknown_keys(content: Mapping[str, object], known: type[Struct], *more: str) -> dict[str, object]:
+    """Give what `content` says under keys that `known` and `more` do not name, to be written back as it is."""
+    names = {*known.__struct_fields__, *more}
+    return {key: JsonText(one_line(value)) for key, value in content.items() if key not in names}
 
 
 def lines_of(items: Iterable[str], *, level: int) -> JsonText:

@@ -25,6 +25,9 @@ _PLAIN = re.compile(r"-?(?:0|[1-9][0-9]*)(?:\.[0-9]+)?(?:[eE][+-]?[0-9]+)?")
 is_plain = _PLAIN.fullmatch
 _is_plain_or_empty = re.compile(f"(?:{_PLAIN.pattern})?").fullmatch
 
+# Usual ways to say in a cell that there is nothing.
+_MISSING = re.compile(r"|[-\u2013\u2014?.]+|n/?a|nan|none|null|#n/?a", re.IGNORECASE)
+
 _LOOKALIKES = str.maketrans(
     {
         "\u2212": "-",  # minus sign
@@ -156,6 +159,11 @@ def looks_numeric(text: str) -> bool:
     clean = text.strip().translate(_LOOKALIKES)
     matches = (pattern.fullmatch(clean) for pattern in _NUMBER.values())
     return any(match and (match["whole"] or match["fraction"]) for match in matches)
+
+
+def is_missing(cell: str) -> bool:
+    """Return whether a cell is empty or says in a usual way that there is nothing ("n/a", "-")."""
+    return _MISSING.fullmatch(cell) is not None
 
 
 def quoted(text: str, most: int = 40) -> str:

@@ -8,6 +8,8 @@ from itertools import zip_longest
 
 from reliability_app.session.column_guess import find_heading_row, is_list_of_lives
 from reliability_app.session.column_texts import decide_marks, plain_numbers
+from reliability_app.session.date_lives import DateChoices
+from reliability_app.session.dates import DayOrder
 from reliability_app.session.html_table import has_full_values, read_html_table, with_full_precision
 from reliability_app.session.interpretation import interpret
 from reliability_app.session.numbers import DecimalMark
@@ -25,7 +27,12 @@ _LOOKED_AT = 400
 
 
 def understand(
-    text: str, html: str | None = None, existing: UnitTable | None = None, *, at_column: str | None = None
+    text: str,
+    html: str | None = None,
+    existing: UnitTable | None = None,
+    *,
+    at_column: str | None = None,
+    session_unit: str | None = None,
 ) -> Understanding:
     """Understand a pasted table; never raises, whatever the text.
 
@@ -40,6 +47,8 @@ def understand(
     at_column : str, optional
         The key of the column in which the cursor stands: what a single column without a heading is taken for, if it
         is not plainly something else.
+    session_unit : str, optional
+        The unit of the lives that the session has already: lives between dates are counted in it.
 
     Returns
     -------
@@ -52,9 +61,17 @@ def understand(
         rows, notes = [[cell] for row in rows for cell in row if cell.strip()], (*notes, LIST_OF_LIVES)
     if max(map(len, rows), default=0) > MOST_COLUMNS:
         rows, notes = narrowed(rows), (*notes, TOO_WIDE)
-    columns = tuple([cell.strip() for cell in column] for column in zip_longest(*rows, fillvalue=""))
     extras = existing.extra_columns if existing is not None else ()
-    return interpret(SourceTable(columns, _heading_row(rows), notes, extras, at_column), Choices())
+    return interpret(
+        replace(source_of(rows, notes), existing_extras=extras, at_column=at_column, session_unit=session_unit),
+        Choices(),
+    )
+
+
+def source_of(rows: Sequence[Sequence[str]], notes: tuple[str, ...] = ()) -> SourceTable:
+    """Return rows of cells, none of them blank, as a table whose headings are found."""
+    columns = tuple([cell.strip() for cell in column] for column in zip_longest(*rows, fillvalue=""))
+    return SourceTable(columns, _heading_row(rows), notes)
 
 
 def reread(
@@ -64,30 +81,63 @@ def reread(
     mark: DecimalMark | None = None,
     yes_means: str | None = None,
     headings: bool | None = None,
+    states: Mapping[str, str] | None = None,
+    day_order: DayOrder | None = None,
+    data_date: str | None = None,
+    date_unit: str | None = None,
+    end_means: str | None = None,
+    sheet: str | None = None,
 ) -> Understanding:
     """Read the same source again with some meanings chosen by hand; earlier choices stand unless chosen anew.
 
     Parameters
     ----------
     columns : mapping of int to str or None, optional
-        Per column of the source (from 0) the key it is to have; None makes it a column of the user's own.
+        Per column of the source (from 0) the key it is to have; START_DATE and END_DATE make lives be counted between
+        dates; None makes it a column of the user's own.
     mark : DecimalMark, optional
         How the numbers of all columns are written.
     yes_means : str, optional
         "failed" or "running": what a yes, or a 1, in the state column means.
     headings : bool, optional
         Whether the first row is one of headings.
+    states : mapping of str to str, optional
+        What single words of the state column mean.
+    day_order : DayOrder, optional
+        Which number comes first in dates like 03/04/2025.
+    data_date : str, optional
+        The date until which units without an end date run; "" for the latest one in the table.
+    date_unit : str, optional
+        The unit in which lives between dates are counted, a key of DATE_UNITS.
+    end_means : str, optional
+        "failed" or "running": what an end date says of its unit.
+    sheet : str, optional
+        Another sheet of the same file; what was chosen for this one is then forgotten.
     """
+    if sheet is not None and understanding.source.sheets is not None:
+        return _of_sheet(understanding.source, understanding.source.sheets.table(sheet))
     before = understanding.choices
     choices = Choices(
         columns={**before.columns, **(columns or {})},
         mark=mark or before.mark,
         yes_means=yes_means or before.yes_means,
+        states={**before.states, **(states or {})},
+        dates=DateChoices(
+            order=day_order or before.dates.order,
+            data_date=before.dates.data_date if data_date is None else data_date,
+            unit=date_unit or before.dates.unit,
+            end_means=end_means or before.dates.end_means,
+        ),
     )
     source = understanding.source
     if headings is not None and source.columns:
         source = replace(source, heading_row=0 if headings else None)
     return interpret(source, choices)
+
+
+def _of_sheet(before: SourceTable, source: SourceTable) -> Understanding:
+    kept = replace(source, existing_extras=before.existing_extras, session_unit=before.session_unit)
+    return interpret(kept, Choices())
 
 
 def plain_block(text: str, html: str | None = None, *, columns: Sequence[str] = ()) -> list[list[str]] | None:

@@ -24,10 +24,11 @@ class Reading:
 
     Attributes
     ----------
-    ask : LifeAsk, ReliabilityAsk or HazardAsk
+    ask : Ask
         What was asked.
     estimate : float or None
-        The answer: an age, a share running or a hazard rate; None where there is none.
+        The answer: an age, a share running or a hazard rate; None where there is none. Infinite for a mean of a tail
+        too heavy to have one, and for the age at a hazard that is never reached.
     lower, upper : float or None
         The bound; None on the open side, or where no bound exists.
     basis : Basis
@@ -38,6 +39,10 @@ class Reading:
         The kind of bound given, where the basis leaves the choice open ("automatic"); empty without a bound.
     is_provisional : bool
         True while a quick bound stands in for the one of the basis, which is still being computed.
+    share_failed : float or None
+        Beside a mean life: the share of the units that have failed by then.
+    measured : str
+        How often bounds of this kind held in simulated tests of the nearest design studied; empty where none is near.
     """
 
     ask: Ask
@@ -48,6 +53,13 @@ class Reading:
     cautions: tuple[Caution, ...] = ()
     bound_used: str = ""
     is_provisional: bool = False
+    share_failed: float | None = None
+    measured: str = ""
+
+    @property
+    def is_given(self) -> bool:
+        """True where there is an estimate, or at least a bound."""
+        return any(value is not None for value in (self.estimate, self.lower, self.upper))
 
 
 @dataclass(frozen=True, eq=False)
@@ -76,6 +88,8 @@ class SetPicture:
         For each point the names of those rows' units; empty where a unit has none.
     running_age, running_quantity : ndarray, shape (m,)
         Ages at which units were still running, and how many.
+    running_rows, running_names : tuple of tuple
+        For each such age the rows of the unit table and the names of their units.
     failure, hazard, survival : Curve or None
         Over age: fraction failed, hazard rate, fraction running; None without an estimate.
     steps : Curve or None
@@ -103,6 +117,8 @@ class SetPicture:
     survival: Curve | None
     steps: Curve | None
     reading: Reading | None
+    running_rows: tuple[tuple[int, ...], ...] = ()
+    running_names: tuple[tuple[str, ...], ...] = ()
 
     @property
     def is_empty(self) -> bool:

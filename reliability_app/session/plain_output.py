@@ -4,16 +4,20 @@ from __future__ import annotations
 
 import json
 from collections.abc import Sequence
+from dataclasses import asdict
+from itertools import zip_longest
+from math import isfinite
 
 from reliability_app.engine.cautions import Caution, Severity, together, worst_first
 from reliability_app.session.analysis import SetAnalysis
-from reliability_app.session.document import Ask, HazardAsk, LifeAsk, ReliabilityAsk
+from reliability_app.session.compared_families import ComparedFamilies, as_objects, table_lines
+from reliability_app.session.document import ASK_NAMES
 from reliability_app.session.picture import Reading
+from reliability_app.session.plan_simulation import SimulatedPlan
 from reliability_app.session.taking_readings import bound_side
 from reliability_app.session.wording import (
     STANDING_CAUTION,
     all_counts_text,
-    ask_title,
     basis_text,
     parameters_text,
     reading_sentence,
@@ -29,16 +33,27 @@ def cautions_of(analysis: SetAnalysis) -> tuple[Caution, ...]:
     return (*together(worst_first(others)), STANDING_CAUTION)
 
 
-def as_text(analyses: Sequence[SetAnalysis], life_unit: str) -> str:
-    """Return the reading sentences of every set with their basis and cautions, for a terminal."""
+def as_text(
+    analyses: Sequence[SetAnalysis],
+    life_unit: str,
+    compared: Sequence[ComparedFamilies | None] = (),
+    plans: Sequence[SimulatedPlan] = (),
+) -> str:
+    """Return the reading sentences of every set with their basis and cautions, for a terminal.
+
+    `compared` and `plans` hold one entry a set, or none at all.
+    """
     paragraphs = []
-    for analysis in analyses:
+    for analysis, families, plan in zip_longest(analyses, compared, plans):
         question = analysis.question
         lines = [f"{question.name}: {all_counts_text(question.counts)}"]
-        lines += [f"  {reading_sentence(reading, life_unit)}" for reading in analysis.readings if _is_given(reading)]
+        lines += [f"  {reading_sentence(reading, life_unit)}" for reading in analysis.readings if reading.is_given]
         lines.append(f"  ({basis_text(question.basis, question.counts, analysis.main)})")
+        lines += [f"  {analysis.main.measured}"] if analysis.main and analysis.main.measured else []
         if parameters := parameters_text(analysis.fit):
             lines.append(f"  {parameters}")
+        lines += [f"  {line}" for line in (table_lines(families) if families else ())]
+        lines += [f"  {plan.sentence}"] if plan else []
         lines += [f"  {MARKS[caution.severity]} {caution.text}" for caution in cautions_of(analysis)]
         paragraphs.append("\n".join(lines))
     return "\n\n".join(paragraphs)
@@ -51,41 +66,33 @@ def statement(analysis: SetAnalysis) -> str:
     ordered = [caution for caution in cautions if caution != STANDING_CAUTION]
     sentence = reading_sentence(main, question.life_unit) if main else "No reading."
     lines = [f"{question.name}: {sentence}", f"({basis_text(question.basis, question.counts, main)})"]
+    lines += [main.measured] if main and main.measured else []
     lines += [parameters] if (parameters := parameters_text(analysis.fit)) else []
     said = (*ordered, STANDING_CAUTION)
     return "\n".join([*lines, *(f"{MARKS[caution.severity]} {caution.text}" for caution in said)])
 
 
-def readings_as_tab_separated(analysis: SetAnalysis) -> str:
-    """Return the readings as rows for a spreadsheet, with what they rest on, and the cautions below them."""
-    question = analysis.question
-    unit, counts = question.life_unit, question.counts
-    head = ["Set", "Reading", "Estimate", "Lower", "Upper", "Confidence", "Side", "Bound", "Family", "Failed", "Units"]
-    failed = counts.failed + counts.found_failed
-    rows = [head]
-    for reading in analysis.readings:
-        numbers = [_plain(value) for value in (reading.estimate, reading.lower, reading.upper)]
-        basis = reading.basis
-        words = [
-            str(basis.confidence),
-            bound_side(reading.ask, basis.side),
-            reading.bound_used or basis.bound,
-            basis.family,
-        ]
-        title = ask_title(reading.ask, unit) + (f" ({unit})" if isinstance(reading.ask, LifeAsk) and unit else "")
-        rows.append([question.name, title, *numbers, *words, str(failed), str(failed + counts.running)])
-    cautions = [["Caution", caution.text] for caution in cautions_of(analysis)]
-    return "\n".join("\t".join(row) for row in [*rows, *cautions])
+def as_json(
+    analyses: Sequence[SetAnalysis],
+    file: str,
+    life_unit: str,
+    compared: Sequence[ComparedFamilies | None] = (),
+    plans: Sequence[SimulatedPlan] = (),
+) -> str:
+    """Return everything as one JSON object; absent numbers are null.
 
-
-def _plain(value: float | None) -> str:
-    return "" if value is None else f"{value:.6g}"
-
-
-def as_json(analyses: Sequence[SetAnalysis], file: str, life_unit: str) -> str:
-    """Return everything as one JSON object; absent numbers are null."""
+    `compared` and `plans` hold one entry a set, or none at all.
+    """
+    sets = [
+        {
+            **_set_object(analysis),
+            **(as_objects(families) if families else {}),
+            **({"plan": _plan_object(plan)} if plan else {}),
+        }
+        for analysis, families, plan in zip_longest(analyses, compared, plans)
+    ]
     return json.dumps(
-        {"file": file, "life_unit": life_unit, "sets": [_set_object(analysis) for analysis in analyses]},
+        {"file": file, "life_unit": life_unit, "sets": sets},
         indent=2,
         ensure_ascii=False,
         allow_nan=False,
@@ -94,11 +101,7 @@ def as_json(analyses: Sequence[SetAnalysis], file: str, life_unit: str) -> str:
 
 def has_readings(analyses: Sequence[SetAnalysis]) -> bool:
     """True where at least one reading has a number."""
-    return any(_is_given(reading) for analysis in analyses for reading in analysis.readings)
-
-
-def _is_given(reading: Reading) -> bool:
-    return reading.estimate is not None
+    return any(reading.is_given for analysis in analyses for reading in analysis.readings)
 
 
 def _set_object(analysis: SetAnalysis) -> dict[str, object]:
@@ -113,6 +116,8 @@ def _set_object(analysis: SetAnalysis) -> dict[str, object]:
         "unread": counts.unread,
         "family": basis.family,
         "fit": basis.fit,
+        "threshold": basis.threshold,
+        "shape": basis.shape,
         "converged": fitted is not None and fitted.converged,
         "parameters": fitted.parameters if fitted else None,
         "standard_errors": fitted.standard_errors if fitted else None,
@@ -120,7 +125,7 @@ def _set_object(analysis: SetAnalysis) -> dict[str, object]:
         "covariance_of": list(fitted.coordinates) if fitted else None,
         "log_likelihood": fitted.log_likelihood if fitted else None,
         "aicc": fitted.aicc if fitted else None,
-        "readings": [_reading_object(reading) for reading in analysis.readings],
+        "readings": [_reading_object(reading, question.life_unit) for reading in analysis.readings],
         "cautions": [
             {"code": caution.code, "severity": caution.severity.name.lower(), "text": caution.text}
             for caution in cautions_of(analysis)
@@ -128,25 +133,24 @@ def _set_object(analysis: SetAnalysis) -> dict[str, object]:
     }
 
 
-def _reading_object(reading: Reading) -> dict[str, object]:
-    basis = reading.basis
+def _plan_object(plan: SimulatedPlan) -> dict[str, object]:
+    coverage = [asdict(one) for one in plan.coverages]
+    return {"percent": plan.percent, "coverage": coverage, "sentence": plan.sentence}
+
+
+def _reading_object(reading: Reading, life_unit: str) -> dict[str, object]:
+    basis, estimate = reading.basis, reading.estimate
     return {
-        **_ask_object(reading.ask),
-        "estimate": reading.estimate,
+        "ask": ASK_NAMES[type(reading.ask)],
+        **asdict(reading.ask),
+        "estimate": estimate if estimate is not None and isfinite(estimate) else None,
         "lower": reading.lower,
         "upper": reading.upper,
         "side": bound_side(reading.ask, basis.side),
         "confidence": basis.confidence,
         "bound": basis.bound,
         "bound_used": reading.bound_used or None,
+        **({"measured": reading.measured} if reading.measured else {}),
+        **({} if reading.share_failed is None else {"share_failed": reading.share_failed}),
+        "sentence": reading_sentence(reading, life_unit),
     }
-
-
-def _ask_object(ask: Ask) -> dict[str, object]:
-    match ask:
-        case LifeAsk():
-            return {"ask": "life", "percent": ask.percent}
-        case ReliabilityAsk():
-            return {"ask": "reliability", "age": ask.age}
-        case HazardAsk():
-            return {"ask": "hazard", "age": ask.age}

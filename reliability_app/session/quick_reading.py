@@ -8,29 +8,33 @@ import numpy as np
 from numpy.typing import NDArray
 
 from reliability_app.engine import Curve, Fit
-from reliability_app.session.document import Basis, LifeAsk
+from reliability_app.engine.errors import RigpaperError
+from reliability_app.session.document import Ask, Basis, LifeAsk
 from reliability_app.session.picture import Reading
-from reliability_app.session.taking_readings import take_reading
+from reliability_app.session.taking_readings import question_of, take_reading
 
 Floats = NDArray[np.float64]
 
 STAND_IN = "likelihood"
 
 
-def is_slow(fitted: Fit, basis: Basis) -> bool:
-    """True where the bounds of the basis are calibrated by simulation."""
-    return fitted.bound_used(basis.bound) == "calibrated"
+def is_slow(fitted: Fit, basis: Basis, ask: Ask) -> bool:
+    """True where the bound of the basis is calibrated by simulation for this kind of reading."""
+    try:
+        return question_of(fitted, ask).bound_used(basis.bound) == "calibrated"
+    except RigpaperError:
+        return False
 
 
-def read_off_band(fitted: Fit, band: Curve, ask: LifeAsk, basis: Basis, life_unit: str) -> Reading:
-    """Return a life whose bound is where the drawn band of the failure probability crosses its percent."""
+def read_off_band(fitted: Fit, band: Curve, ask: LifeAsk, basis: Basis, life_unit: str, *, bound_used: str) -> Reading:
+    """Return a life whose bound is where the drawn band, of the kind `bound_used`, crosses its percent failed."""
     reading = take_reading(fitted, ask, basis, life_unit, stand_in=STAND_IN)
     fraction = ask.percent / 100.0
     return replace(
         reading,
         lower=_crossing(band.x, band.upper, fraction),
         upper=_crossing(band.x, band.lower, fraction),
-        bound_used=fitted.bound_used(basis.bound),
+        bound_used=bound_used,
     )
 
 

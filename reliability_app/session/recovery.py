@@ -73,6 +73,13 @@ class FoundCopy:
     original: Path | None
     written: datetime
 
+    @property
+    def original_is_newer(self) -> bool:
+        """Whether the file it belongs to was changed after the copy was kept."""
+        with suppress(OSError):
+            return self.original is not None and self.original.stat().st_mtime > self.written.timestamp()
+        return False
+
     def load(self) -> Session:
         """Give the session as it was last kept.
 

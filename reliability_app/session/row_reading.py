@@ -46,7 +46,12 @@ class LifeEntry:
 
 
 def read_life_entry(text: str, mark: DecimalMark | None = None) -> LifeEntry | None:
-    """Read "1500+", ">1500" (running), "<200" and "200-400" (found failed); None for any other text."""
+    """Read "1500+", ">1500" (running), "<200" and "200-400" (found failed); None for any other text.
+
+    "<200" is a life above 0, as every life in a table is, and so the interval from 0 to 200: its probability is
+    F(200) - F(0), which for a family of ln life is F(200). Where the unit entered at a later age, it begins there
+    (`LifeData`). Lives of which not even that is known have their place in `LifeData` (lower = -inf), not in a table.
+    """
     if not _HAS_SIGN(text):
         return None
     try:
@@ -100,7 +105,7 @@ def row_faults(life: str, until: str, state: str, quantity: str, entered: str) -
         faults["state"] = reason
     if reason := _quantity_fault(quantity):
         faults["quantity"] = reason
-    if reason := _entered_fault(entered, life, found=found):
+    if reason := _entered_fault(entered, life, until if found else ""):
         faults["entered"] = reason
     return faults
 
@@ -172,7 +177,8 @@ def _quantity_fault(quantity: str) -> str | None:
     return None
 
 
-def _entered_fault(entered: str, life: str, *, found: bool) -> str | None:
+def _entered_fault(entered: str, life: str, until: str) -> str | None:
+    """Say what is wrong with an entry age; `until` is given for a unit found failed only."""
     if not entered:
         return None
     try:
@@ -181,9 +187,18 @@ def _entered_fault(entered: str, life: str, *, found: bool) -> str | None:
         return f"Entered {reason}"
     if age < 0:
         return f"Entered {quoted(entered)} is negative: type the age at which the unit came under observation."
-    end = _number_or_none(life)
-    # A unit found failed may have come under observation at its last age known to run, but not later.
-    if end is not None and age > 0 and (age > end or (age == end and not found)):
+    if age == 0:
+        return None
+    end, found = _number_or_none(life), _number_or_none(until)
+    if found is not None and age >= found:
+        return (
+            f"Entered {quoted(entered)} is not below Until {quoted(until)}: a unit that had failed when observation "
+            "began says nothing, so leave the row out, or correct one of the two."
+        )
+    # Of a unit found failed nothing need be known before it came under observation (Life 0, or the same age).
+    if found is not None and end in (0.0, age):
+        return None
+    if end is not None and age >= end:
         return f"Entered {quoted(entered)} is not below Life {quoted(life)}: type when observation began."
     return None
 

@@ -10,6 +10,7 @@ from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from functools import lru_cache
 
+from reliability_app.session.dates import looks_like_date
 from reliability_app.session.headings import read_heading, split_unit
 from reliability_app.session.numbers import looks_numeric
 from reliability_app.session.row_reading import read_life_entry
@@ -131,6 +132,7 @@ def _means_something(text: str) -> bool:
         or read_state(text) is not None
         or read_heading(text) is not None
         or read_life_entry(text) is not None
+        or looks_like_date(text)
     )
 
 

@@ -4,6 +4,7 @@ RigpaperError
 ├── SessionUnreadable    a file that cannot be opened as a session; it stays as it was
 │   └── NewerVersion     a session that a newer version of the program has saved
 ├── NotSaved             a session that could not be written; the file on disk is as it was
+│   └── ChangedMeanwhile a file that another program has changed since it was opened here
 └── FileInUse            (file_lock.py) a file that another window has open
 """
 
@@ -60,6 +61,10 @@ class NewerVersion(SessionUnreadable):
 
 class NotSaved(RigpaperError):
     """A session that could not be written; what was on disk before is still there."""
+
+
+class ChangedMeanwhile(NotSaved):
+    """A file that another program has changed since it was opened or last saved here."""
 
 
 _TYPES = {

@@ -122,4 +122,20 @@ class ColumnRemoved:
         texts.add_column(self.name, self.position, self.held)
 
 
-TableChange = BlockChange | RowsInserted | RowsDeleted | RowsReordered | ColumnAdded | ColumnRemoved
+@dataclass(frozen=True)
+class ColumnRenamed:
+    """A column given another name."""
+
+    old: str
+    new: str
+
+    def apply(self, texts: TextColumns) -> None:
+        """Give the column its new name."""
+        texts.rename_column(self.old, self.new)
+
+    def revert(self, texts: TextColumns) -> None:
+        """Give the column its old name."""
+        texts.rename_column(self.new, self.old)
+
+
+TableChange = BlockChange | RowsInserted | RowsDeleted | RowsReordered | ColumnAdded | ColumnRemoved | ColumnRenamed

@@ -242,8 +242,7 @@ class SortRows(TableEdit):
         return f"sorting by {heading(self.column)}"
 
     def _carry_out(self, table: UnitTable) -> None:
-        texts = [table.text(row, self.column) for row in range(table.row_count)]
-        self._steps.append(table.reorder(sorted_rows(texts, descending=self.descending)))
+        self._steps.append(table.reorder(sorted_rows(table.texts(self.column), descending=self.descending)))
 
 
 @dataclass(eq=False)

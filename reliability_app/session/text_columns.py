@@ -93,3 +93,7 @@ class TextColumns:
     def remove_column(self, name: str) -> None:
         """Remove a column and its cells."""
         del self._lists[name]
+
+    def rename_column(self, name: str, new: str) -> None:
+        """Give a column another name in the same place."""
+        self._lists = {new if known == name else known: texts for known, texts in self._lists.items()}

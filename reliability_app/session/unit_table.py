@@ -18,6 +18,7 @@ from reliability_app.session.table_changes import (
     BlockChange,
     ColumnAdded,
     ColumnRemoved,
+    ColumnRenamed,
     RowsDeleted,
     RowsInserted,
     RowsReordered,
@@ -47,7 +48,9 @@ __all__ = [
     "UnitTable",
 ]
 
-_Change = TypeVar("_Change", BlockChange, RowsInserted, RowsDeleted, RowsReordered, ColumnAdded, ColumnRemoved)
+_Change = TypeVar(
+    "_Change", BlockChange, RowsInserted, RowsDeleted, RowsReordered, ColumnAdded, ColumnRemoved, ColumnRenamed
+)
 
 
 @dataclass(frozen=True, eq=False)
@@ -127,6 +130,10 @@ class UnitTable:
         """Return the text of a cell; "" below the last row."""
         texts = self._texts.column(column)
         return texts[row] if row < len(texts) else ""
+
+    def texts(self, column: str) -> Sequence[str]:
+        """Return the texts of a column from the first row to the last: for reading only."""
+        return self._texts.column(column)
 
     def row(self, row: int) -> dict[str, str]:
         """Return the cells of a row that hold text, by column."""
@@ -278,12 +285,16 @@ class UnitTable:
         ColumnNameRefused
             For a name that is empty or taken.
         """
-        taken = {known.casefold() for known in (*self.columns, *HEADINGS.values())}
+        self.check_column_name(name)
+        return self._carry_out(ColumnAdded(name))
+
+    def check_column_name(self, name: str, *, instead_of: str = "") -> None:
+        """Raise ColumnNameRefused for a name that is empty or taken by another column than `instead_of`."""
+        taken = {known.casefold() for known in (*self.columns, *HEADINGS.values()) if known != instead_of}
         if not name.strip():
             raise ColumnNameRefused("The column has no name: type one.")
         if name.casefold() in taken:
             raise ColumnNameRefused(f"There is a column '{name}' already: choose another name.")
-        return self._carry_out(ColumnAdded(name))
 
     def remove_column(self, name: str) -> TableChange:
         """Remove one of the user's own columns.
@@ -297,6 +308,13 @@ class UnitTable:
             raise KeyError(f"The table has no column of the user's own named {name!r}.")
         position = self.columns.index(name)
         return self._carry_out(ColumnRemoved(name, position, tuple(self._texts.column(name))))
+
+    def rename_column(self, name: str, new: str) -> TableChange:
+        """Give one of the user's own columns another name; errors as `add_column` and `remove_column`."""
+        if name not in self.extra_columns:
+            raise KeyError(f"The table has no column of the user's own named {name!r}.")
+        self.check_column_name(new, instead_of=name)
+        return self._carry_out(ColumnRenamed(name, new))
 
     def revert(self, change: TableChange) -> None:
         """Put back exactly what was there before `change`, the latest change not yet taken back."""

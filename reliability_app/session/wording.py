@@ -12,22 +12,31 @@ from reliability_app.engine.candidates import Verdict
 from reliability_app.engine.cautions import Caution, Severity
 from reliability_app.engine.families import family
 from reliability_app.engine.family_choice import Disagreement
-from reliability_app.session.document import Ask, Basis, HazardAsk, LifeAsk, ReliabilityAsk
+from reliability_app.session.document import (
+    AgeAtHazardAsk,
+    Ask,
+    Basis,
+    ConditionalReliabilityAsk,
+    HazardAsk,
+    LifeAsk,
+    MeanLifeAsk,
+    ModeAsk,
+    ReliabilityAsk,
+    ResidualLifeAsk,
+)
+from reliability_app.session.number_style import NARROW_SPACE, in_style, number_style
 from reliability_app.session.picture import Reading
 from reliability_app.session.unit_table import Counts
 
 Toward = Literal["nearest", "down", "up"]
 
-DIGITS = 3
 # Where a lower and an upper bound are rounded to.
 SAFE_SIDES: tuple[Toward, Toward] = ("down", "up")
 _ROUNDINGS = {"nearest": ROUND_HALF_EVEN, "down": ROUND_FLOOR, "up": ROUND_CEILING}
 _BINARY_NOISE = Decimal("1e-12")
-THOUSANDS = "\u202f"  # narrow no-break space: ISO 80000-1 groups digits by threes with a small space
 _GROUP_FROM = 10_000
 _MOST_DECIMALS = 6
 _NAMES_SHOWN = 3
-_PARAMETER_DIGITS = 4
 _SUPERSCRIPTS = str.maketrans("-0123456789", "⁻⁰¹²³⁴⁵⁶⁷⁸⁹")
 
 _PERSONS = ("Weibull", "Fréchet", "Birnbaum")
@@ -48,14 +57,22 @@ STANDING_CAUTION = Caution(
     "these numbers do not take their place.",
 )
 
+BOUND_WITHOUT_FAILURE = Caution(
+    "bound-without-failure",
+    Severity.NOTE,
+    "A lower bound of the lives can be given before any unit fails: choose the Weibull family and hold its shape at a "
+    "value that is known from elsewhere, or the exponential family where a constant hazard can be justified.",
+)
 
-def number_text(value: float, digits: int = DIGITS, *, toward: Toward = "nearest") -> str:
-    """Return a number with `digits` significant digits, thousands set off by a narrow space.
+
+def number_text(value: float, digits: int | None = None, *, toward: Toward = "nearest") -> str:
+    """Return a number with `digits` significant digits, in the style chosen: as many as it says, unless they are given.
 
     A bound is rounded to its safe side: a lower one `toward` "down", an upper one "up".
     """
     if value == 0 or not isfinite(value):
         return "0" if value == 0 else "unbounded"
+    digits = digits or number_style().digits
     exact = Decimal(repr(float(value)))
     rounded = _rounded(exact, digits, toward)
     exponent = rounded.adjusted()
@@ -63,7 +80,7 @@ def number_text(value: float, digits: int = DIGITS, *, toward: Toward = "nearest
         mantissa, power = f"{rounded:.{digits - 1}e}".split("e")
         return f"{mantissa} × 10{str(int(power)).translate(_SUPERSCRIPTS)}"
     text = f"{rounded:,.{max(0, digits - 1 - exponent)}f}"
-    return text.replace(",", THOUSANDS) if abs(rounded) >= _GROUP_FROM else text.replace(",", "")
+    return text.replace(",", number_style().mark if abs(rounded) >= _GROUP_FROM else "")
 
 
 def _rounded(value: Decimal, digits: int, toward: Toward) -> Decimal:
@@ -79,7 +96,7 @@ def as_given(value: float) -> str:
     """Return a number the user gave, with the digits it was given with."""
     text = f"{value:.12g}"
     if value >= _GROUP_FROM and text.isdigit():
-        return f"{int(text):,}".replace(",", THOUSANDS)
+        return in_style(f"{int(text):,}".replace(",", NARROW_SPACE))
     return text
 
 
@@ -100,7 +117,7 @@ def share_text(share: float, *, toward: Toward = "nearest") -> str:
         return "1" if missing <= 0 else f"more than {1 - 10.0**-_MOST_DECIMALS:.{_MOST_DECIMALS}f}"
     if share < 0.001:
         return number_text(share, toward=toward)
-    places = min(max(DIGITS, 1 - floor(log10(missing))), _MOST_DECIMALS)
+    places = min(max(number_style().digits, 1 - floor(log10(missing))), _MOST_DECIMALS)
     return f"{Decimal(repr(share)).quantize(Decimal(1).scaleb(-places), _ROUNDINGS[toward]):f}"
 
 
@@ -110,47 +127,101 @@ def ask_title(ask: Ask, life_unit: str) -> str:
         case LifeAsk():
             return f"B{as_given(ask.percent)} life"
         case ReliabilityAsk():
-            return f"Reliability at {as_given(ask.age)} {life_unit}".rstrip()
+            return f"Reliability at {observed_age_text(ask.age, life_unit)}"
         case HazardAsk():
-            return f"Hazard rate at {as_given(ask.age)} {life_unit}".rstrip()
+            return f"Hazard rate at {observed_age_text(ask.age, life_unit)}"
+        case ConditionalReliabilityAsk():
+            ages = (observed_age_text(age, life_unit) for age in (ask.age, ask.given))
+            return "Reliability at {}, given {}".format(*ages)
+        case ResidualLifeAsk():
+            return f"Mean residual life at {observed_age_text(ask.age, life_unit)}"
+        case MeanLifeAsk():
+            return "Mean life"
+        case ModeAsk():
+            return "Mode of the lives"
+        case AgeAtHazardAsk():
+            return f"Age at hazard rate {_rate_text(as_given(ask.hazard), life_unit)}"
 
 
 def value_text(ask: Ask, value: float, life_unit: str, *, toward: Toward = "nearest") -> str:
     """Return an answer of this kind, with its unit."""
     match ask:
-        case LifeAsk():
-            return age_text(value, life_unit, toward=toward)
-        case ReliabilityAsk():
+        case ReliabilityAsk() | ConditionalReliabilityAsk():
             return share_text(value, toward=toward)
         case HazardAsk():
-            number = number_text(value, toward=toward)
-            return f"{number} per {life_unit}" if life_unit else number
+            return _rate_text(number_text(value, toward=toward), life_unit)
+        case AgeAtHazardAsk() if not isfinite(value):
+            return "never"
+        case _ if not isfinite(value):
+            return "infinite"
+        case _:
+            return age_text(value, life_unit, toward=toward)
+
+
+def is_age(ask: Ask) -> bool:
+    """True where the answer is an age or a length of life."""
+    return not isinstance(ask, ReliabilityAsk | ConditionalReliabilityAsk | HazardAsk)
+
+
+def _rate_text(number: str, life_unit: str) -> str:
+    return f"{number} per {life_unit}" if life_unit else number
 
 
 def reading_sentence(reading: Reading, life_unit: str) -> str:
     """Return the reading with its bound in plain words, or the sentence that there is none."""
     title = ask_title(reading.ask, life_unit)
     if reading.estimate is None:
-        return f"{title}: no reading."
-    if isinstance(reading.ask, LifeAsk):
-        head = f"{title} {value_text(reading.ask, reading.estimate, life_unit)}."
-    else:
-        head = f"{title}: {value_text(reading.ask, reading.estimate, life_unit)}."
+        return _bound_alone(reading, title, life_unit) if reading.is_given else f"{title}: no reading."
+    colon = "" if isinstance(reading.ask, LifeAsk) else ":"
+    head = f"{title}{colon} {value_text(reading.ask, reading.estimate, life_unit)}{_added(reading)}."
+    if not isfinite(reading.estimate) and (reading.lower, reading.upper) == (None, None):
+        return head
     return f"{head} {bound_clause(reading, life_unit)}."
+
+
+def _bound_alone(reading: Reading, title: str, life_unit: str) -> str:
+    """Return the bound that survival without a failure gives: there is no estimate beside it."""
+    confidence = f"With {as_given(100 * reading.basis.confidence)} % confidence"
+    subject = title if isinstance(reading.ask, LifeAsk) else title[0].lower() + title[1:]
+    shape = reading.basis.shape
+    held = "the hazard rate is constant" if shape is None else f"the Weibull shape is {as_given(shape)}"
+    return f"No unit failed. {confidence} the {subject} is {_ends_text(reading, life_unit)}, if {held}."
+
+
+def _added(reading: Reading) -> str:
+    """Return what must be said with an estimate that would mislead alone."""
+    match reading.ask, reading.estimate:
+        case ((MeanLifeAsk() | ResidualLifeAsk()), float(value)) if not isfinite(value):
+            return ", because the upper tail of the fitted distribution is too heavy for a mean"
+        case MeanLifeAsk(), _ if reading.share_failed is not None:
+            return f", by which {number_text(100.0 * reading.share_failed)} % have failed"
+        case ModeAsk(), 0.0:
+            return ", because the fitted density falls from the start"
+        case AgeAtHazardAsk(), 0.0:
+            return ", because the fitted hazard rate starts above that"
+        case AgeAtHazardAsk(), float(value) if not isfinite(value):
+            return ", because the fitted hazard rate stays below that"
+    return ""
 
 
 def bound_clause(reading: Reading, life_unit: str) -> str:
     """Return the bound as a clause: With 95 % confidence at least 860 h."""
-    confidence = f"With {as_given(100 * reading.basis.confidence)} % confidence"
+    confidence = f"{as_given(100 * reading.basis.confidence)} % confidence"
+    if reading.lower == 0 and reading.upper is None and is_age(reading.ask):
+        return f"No bound above {age_text(0.0, life_unit)} can be given at {confidence}"
+    said = _ends_text(reading, life_unit)
+    return f"With {confidence} {said}" if said else f"No bound can be given at {confidence}"
+
+
+def _ends_text(reading: Reading, life_unit: str) -> str:
+    """Return the ends of a bound: at least 860 h; empty without any."""
     lower = None if reading.lower is None else value_text(reading.ask, reading.lower, life_unit, toward="down")
     upper = None if reading.upper is None else value_text(reading.ask, reading.upper, life_unit, toward="up")
     if lower is not None and upper is not None:
-        return f"{confidence} between {lower} and {upper}"
+        return f"between {lower} and {upper}"
     if lower is not None:
-        return f"{confidence} at least {lower}"
-    if upper is not None:
-        return f"{confidence} at most {upper}"
-    return f"No bound can be given at {as_given(100 * reading.basis.confidence)} % confidence"
+        return f"at least {lower}"
+    return f"at most {upper}" if upper is not None else ""
 
 
 def basis_text(basis: Basis, counts: Counts, reading: Reading | None = None) -> str:
@@ -158,12 +229,20 @@ def basis_text(basis: Basis, counts: Counts, reading: Reading | None = None) -> 
 
     With a reading the kind of bound is the one given for it, and a provisional one is called so.
     """
-    title = family(basis.family).title
+    title = family(basis.family).title + (" with threshold" if basis.threshold else "")
+    method = basis.fit if basis.shape is None else f"{basis.fit} with the shape held at {as_given(basis.shape)}"
+    return f"{title}, {method}, {counts_text(counts)}, {_kind_text(basis, reading)}"
+
+
+def _kind_text(basis: Basis, reading: Reading | None) -> str:
+    """Return the kind of bound in words: that of the reading where there is one."""
+    if reading is not None and (reading.bound_used, reading.lower, reading.upper) == ("", None, None):
+        return "no bound"
     used = reading.bound_used if reading is not None and reading.bound_used else basis.bound
     kind = f"{BOUND_TITLES.get(used, used)} bound"
-    if used != basis.bound:
-        kind += f" ({'provisional' if reading is not None and reading.is_provisional else basis.bound})"
-    return f"{title}, {basis.fit}, {counts_text(counts)}, {kind}"
+    if used == basis.bound:
+        return kind
+    return f"{kind} ({'provisional' if reading is not None and reading.is_provisional else basis.bound})"
 
 
 def parameters_text(fitted: Fit | None) -> str:
@@ -171,7 +250,7 @@ def parameters_text(fitted: Fit | None) -> str:
     if fitted is None or not fitted.converged:
         return ""
     parameters = ", ".join(
-        f"{name.replace('_', ' ')} {number_text(value, _PARAMETER_DIGITS)}"
+        f"{name.replace('_', ' ')} {number_text(value, number_style().digits + 1)}"
         for name, value in fitted.parameters.items()
         if value is not None
     )
@@ -201,6 +280,15 @@ def undrawn_caution(units: int) -> Caution:
     what = "1 failed unit has" if units == 1 else f"{units} failed units have"
     why = "all units watched at some earlier age had failed, so that the estimate without a family is 0 from there"
     return Caution("points-not-drawn", Severity.CAUTION, f"{what} no mark on the paper: {why}; the fit counts them.")
+
+
+def tail_caution(title: str, running: float, last: str) -> Caution:
+    """Return the caution that a mean rests on lives which nobody has observed."""
+    rests = (
+        f"{number_text(100.0 * running)} % of the units it is the mean of run on beyond the last observation ({last}), "
+        "and their lives come from the family chosen alone; a B-life rests on what was observed."
+    )
+    return Caution("mean-rests-on-tail", Severity.CAUTION, f"{title}: {rests}", title)
 
 
 def verdict_sentence(verdict: Verdict, life_unit: str) -> str:

@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from dataclasses import replace
+from functools import partial
 from pathlib import Path
 
 from PySide6.QtCore import QObject, QTimer, Signal
@@ -10,21 +12,29 @@ from PySide6.QtWidgets import QFileDialog, QMessageBox, QWidget
 
 from reliability_app.engine.cautions import Severity
 from reliability_app.engine.errors import RigpaperError
-from reliability_app.session.document import Session, UnitSet
-from reliability_app.session.edits import AddSet
+from reliability_app.session.document import Session
+from reliability_app.session.edits import AddSet, ChangeLifeUnit
 from reliability_app.session.file_lock import FileInUse, FileLock
+from reliability_app.session.file_state import FileState
 from reliability_app.session.json_file import SUFFIX, save
 from reliability_app.session.messages import Messages
 from reliability_app.session.opening import Opened, open_file
 from reliability_app.session.recovery import FoundCopy, RecoveryCopy
-from reliability_app.windows.set_bar import first_free, free_name
+from reliability_app.session.session_errors import ChangedMeanwhile
+from reliability_app.session.set_edits import first_free, free_name
+from reliability_app.session.table_files import SPREADSHEET_SUFFIXES, TEXT_SUFFIXES
 from reliability_app.windows.settings import WindowSettings
 from reliability_app.windows.undo import UndoStack
+from reliability_app.windows.units_grid.paste_plan import other_unit
+from reliability_app.windows.waiting import wait_for
 
 SESSION_FILTER = "Rigpaper sessions (*.json)"
-TABLE_FILTER = "Tables of units (*.csv *.tsv *.txt)"
-ANY_FILTER = "Sessions and tables (*.json *.csv *.tsv *.txt)"
-# Unsaved work is kept this long after the latest edit, so that a burst of edits is written once.
+_TABLES = " ".join(f"*{suffix}" for suffix in (*SPREADSHEET_SUFFIXES, *TEXT_SUFFIXES))
+TABLE_FILTER = f"Tables of units ({_TABLES})"
+ANY_FILTER = f"Sessions and tables (*.json {_TABLES})"
+# Reading a larger file may take longer than a window may stand still.
+_LARGE_BYTES = 200_000
+# Unsaved work is kept this long after the first edit of a burst, so that never more than 2 s of work can be lost.
 _KEEP_AFTER_MS = 1500
 
 Answer = QMessageBox.StandardButton
@@ -33,10 +43,13 @@ Answer = QMessageBox.StandardButton
 class FileCommands(QObject):
     """Knows which file the session belongs to, and moves sessions between files and the window.
 
-    `finish_entry` is called first by whatever needs the session as the user sees it: it takes a half-typed cell in.
+    `table_opened(understanding, place)` is emitted when a table became the set at that place. `finish_entry` is called
+    first by whatever needs the session as the user sees it: it takes a half-typed cell in.
     """
 
     path_changed = Signal()
+    saved = Signal()
+    table_opened = Signal(object, int)
 
     def __init__(
         self,
@@ -54,6 +67,7 @@ class FileCommands(QObject):
         self._finish_entry = finish_entry
         self._recovery = recovery or RecoveryCopy()
         self._lock: FileLock | None = None
+        self._seen: FileState | None = None
         self._recovery_told = False
         self.path: Path | None = None
         self._copy_of: Path | None = None
@@ -72,7 +86,7 @@ class FileCommands(QObject):
     def new(self) -> None:
         """Start an empty session."""
         if self.may_drop_session():
-            self._take_over(Session(), None)
+            self._take_over(self._settings.new_session(), None)
 
     def open_by_dialog(self) -> None:
         """Ask for a file and open it."""
@@ -88,8 +102,12 @@ class FileCommands(QObject):
         if opened is None:
             return False
         self._settings.note_recent(path)
-        self._take_over(opened.session, path if opened.is_session else None)
-        self._say_remarks(opened)
+        if not opened.is_session:
+            for unit_set in opened.session.sets:
+                unit_set.basis = self._settings.preferred(unit_set.basis)
+        self._take_over(opened.session, path if opened.is_session else None, opened.seen)
+        if opened.understood is not None:
+            self.table_opened.emit(opened.understood, 0)
         return True
 
     def open_copy(self, path: Path) -> bool:
@@ -110,28 +128,39 @@ class FileCommands(QObject):
 
     def add_sets(self, path: Path) -> None:
         """Add the sets of a session or a table, each as one undoable step."""
-        opened = self._opened(path)
+        session = self._session
+        is_empty = all(unit_set.table.row_count == 0 for unit_set in session.sets)
+        opened = self._opened(path, session_unit=None if is_empty else session.life_unit)
         if opened is None:
             return
+        if opened.session.life_unit != session.life_unit:
+            self._bring_unit(opened.session.life_unit, is_empty=is_empty, said=not _says_no_unit(opened))
         for found in opened.session.sets:
             sets = self._session.sets
             colour = first_free([other.colour for other in sets])
-            new = UnitSet(free_name(self._session, found.name), found.table, found.basis, colour, found.kept)
+            new = replace(found, name=free_name(self._session, found.name), colour=colour)
             self._undo.push_edit(self._session, AddSet(len(sets), new))
-        self._say_remarks(opened)
+        if opened.understood is not None:
+            self.table_opened.emit(opened.understood, len(self._session.sets) - 1)
 
-    def _opened(self, path: Path) -> Opened | None:
+    def _bring_unit(self, unit: str, *, is_empty: bool, said: bool) -> None:
+        """Take over the unit of lives that sets bring along, or say that it differs."""
+        if not said:
+            return
+        if is_empty:
+            self._undo.push_edit(self._session, ChangeLifeUnit(self._session.life_unit, unit))
+        else:
+            self._messages.say(Severity.CAUTION, other_unit(unit, self._session.life_unit))
+
+    def _opened(self, path: Path, *, session_unit: str | None = None) -> Opened | None:
         """Read a file, or say why it cannot be read and forget it among the recent ones."""
         try:
-            return open_file(path)
+            act = partial(open_file, path, session_unit=session_unit)
+            return wait_for(act) if _is_large(path) else act()
         except RigpaperError as trouble:
             self._messages.say(Severity.SERIOUS, str(trouble))
             self._settings.forget_recent(path.absolute())
             return None
-
-    def _say_remarks(self, opened: Opened) -> None:
-        if opened.remarks:
-            self._messages.say(Severity.NOTE, " ".join(opened.remarks))
 
     def recover(self, copy: FoundCopy) -> bool:
         """Take over the unsaved work of a window that ended without closing."""
@@ -141,6 +170,9 @@ class FileCommands(QObject):
             self._messages.say(Severity.SERIOUS, str(trouble))
             return False
         self._take_over(session, copy.original)
+        if copy.original_is_newer:
+            said = f"{copy.original} was changed after this unsaved work: compare the two before you save."
+            self._messages.say(Severity.CAUTION, said)
         self._undo.resetClean()
         copy.remove()
         self.keep_recovery_copy()
@@ -181,10 +213,16 @@ class FileCommands(QObject):
 
     def note_edit(self) -> None:
         """Have unsaved work kept soon."""
-        self._keep_timer.start()
+        if not self._keep_timer.isActive():
+            self._keep_timer.start()
 
-    def keep_recovery_copy(self) -> None:
-        """Write the recovery copy now, or remove it when all is saved; trouble is told once."""
+    @property
+    def has_unsaved_work(self) -> bool:
+        """Whether anything would be lost if the program ended now."""
+        return not self._undo.isClean()
+
+    def keep_recovery_copy(self) -> bool:
+        """Write the recovery copy now, or remove it when all is saved; False for trouble, which is told once."""
         try:
             if self._undo.isClean():
                 self._recovery.discard()
@@ -194,6 +232,8 @@ class FileCommands(QObject):
             if not self._recovery_told:
                 self._recovery_told = True
                 self._messages.say(Severity.CAUTION, str(trouble))
+            return False
+        return True
 
     def close(self) -> None:
         """Give back the file and remove the recovery copy: the window closes in order."""
@@ -204,7 +244,11 @@ class FileCommands(QObject):
     def _save_to(self, path: Path) -> bool:
         try:
             self._hold(path)
-            save(self._session, path)
+            self._seen = save(self._session, path, seen=self._seen if path == self.path else None)
+        except ChangedMeanwhile as trouble:
+            self._seen = None  # told once: saving again is meant
+            self._messages.say(Severity.SERIOUS, str(trouble))
+            return False
         except RigpaperError as trouble:
             self._messages.say(Severity.SERIOUS, str(trouble))
             return False
@@ -213,10 +257,12 @@ class FileCommands(QObject):
         self._undo.setClean()
         self.keep_recovery_copy()
         self.path_changed.emit()
+        self.saved.emit()
         return True
 
-    def _take_over(self, session: Session, path: Path | None) -> None:
+    def _take_over(self, session: Session, path: Path | None, seen: FileState | None = None) -> None:
         self._release()
+        self._seen = seen
         self.path, self._copy_of = path, None
         if path is not None:
             try:
@@ -245,3 +291,14 @@ class FileCommands(QObject):
     def _folder(self) -> str:
         beside = self.path or self._copy_of
         return str(beside.parent) if beside is not None else ""
+
+
+def _says_no_unit(opened: Opened) -> bool:
+    return opened.understood is not None and not opened.understood.life_unit
+
+
+def _is_large(path: Path) -> bool:
+    try:
+        return path.stat().st_size > _LARGE_BYTES
+    except (OSError, ValueError):
+        return False  # whoever opens it will say what is wrong

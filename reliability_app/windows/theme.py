@@ -9,24 +9,28 @@ from PySide6.QtCore import Qt
 from PySide6.QtGui import QColor, QPalette
 from PySide6.QtWidgets import QApplication
 
+from reliability_app.reports.series_looks import DASHES, HUES_ON_DARK, HUES_ON_LIGHT, SYMBOLS, Dash, Symbol
+
 Scheme = Literal["light", "dark", "system"]
 
 _SYSTEM_STYLE = "rigpaper_system_style"  # where the application keeps the name of the style it came with
 
-# Hues of Okabe and Ito (2002, "Color universal design"), in an order in which neighbours differ most. The first and
-# the sixth change places between light and dark so that each stays readable on its ground.
-_ON_LIGHT = ("#0072B2", "#D55E00", "#009E73", "#CC79A7", "#E69F00", "#56B4E9", "#000000")
-_ON_DARK = ("#56B4E9", "#D55E00", "#009E73", "#CC79A7", "#E69F00", "#F0E442", "#FFFFFF")
-_SYMBOLS = ("o", "s", "t1", "d", "t", "p", "h")
-_DASHES = (
-    Qt.PenStyle.SolidLine,
-    Qt.PenStyle.DashLine,
-    Qt.PenStyle.DashDotLine,
-    Qt.PenStyle.DotLine,
-    Qt.PenStyle.DashDotDotLine,
-    Qt.PenStyle.DashLine,
-    Qt.PenStyle.DashDotLine,
-)
+_SYMBOL_NAMES: dict[Symbol, str] = {
+    "round": "o",
+    "square": "s",
+    "triangle": "t1",
+    "diamond": "d",
+    "triangle down": "t",
+    "pentagon": "p",
+    "hexagon": "h",
+}
+PEN_STYLES: dict[Dash, Qt.PenStyle] = {
+    "solid": Qt.PenStyle.SolidLine,
+    "dash": Qt.PenStyle.DashLine,
+    "dash dot": Qt.PenStyle.DashDotLine,
+    "dot": Qt.PenStyle.DotLine,
+    "dash dot dot": Qt.PenStyle.DashDotDotLine,
+}
 
 
 @dataclass(frozen=True)
@@ -82,23 +86,19 @@ def theme_of(palette: QPalette) -> Theme:
     """Return the theme that goes with a palette, the system's own or one of the program's."""
     ground, ink = palette.color(QPalette.ColorRole.Base), palette.color(QPalette.ColorRole.Text)
     is_dark = ground.lightnessF() < ink.lightnessF()
-    hues = _ON_DARK if is_dark else _ON_LIGHT
+    hues = HUES_ON_DARK if is_dark else HUES_ON_LIGHT
     return Theme(
         background=ground.name(),
         foreground=ink.name(),
         muted=_blend(ground, ink, 0.55),
         grid=_blend(ground, ink, 0.17 if is_dark else 0.14),
         fine_grid=_blend(ground, ink, 0.08 if is_dark else 0.06),
-        series=tuple(SeriesStyle(hue, symbol, dash) for hue, symbol, dash in zip(hues, _SYMBOLS, _DASHES, strict=True)),
+        series=tuple(
+            SeriesStyle(hue, _SYMBOL_NAMES[symbol], PEN_STYLES[dash])
+            for hue, symbol, dash in zip(hues, SYMBOLS, DASHES, strict=True)
+        ),
         is_dark=is_dark,
     )
-
-
-def ink_on(colour: str) -> str:
-    """Return black or white, whichever reads better on `colour` (contrast of WCAG 2.1, 1.4.3)."""
-    red, green, blue = (_linear_light(part) for part in _parts(QColor(colour)))
-    luminance = 0.2126 * red + 0.7152 * green + 0.0722 * blue
-    return "#000000" if (luminance + 0.05) ** 2 > 1.05 * 0.05 else "#ffffff"
 
 
 def apply_scheme(app: QApplication, scheme: Scheme) -> None:
@@ -164,7 +164,3 @@ def _blend(ground: QColor, ink: QColor, share: float) -> str:
 
 def _parts(colour: QColor) -> tuple[float, float, float]:
     return colour.redF(), colour.greenF(), colour.blueF()
-
-
-def _linear_light(part: float) -> float:
-    return part / 12.92 if part <= 0.04045 else ((part + 0.055) / 1.055) ** 2.4

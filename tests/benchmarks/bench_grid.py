@@ -60,6 +60,18 @@ def main() -> None:
     clock("sort by Life", grid.sort_down)
     view.go_to(0, 1)
     clock("sort by Life, from the first column on", grid.sort_up)
+    view.go_to(0, 2)
+    QTest.keyClick(view, Qt.Key.Key_Space, CONTROL)
+    clock("fill the State column down", grid.fill_down)
+    clock("undo", undo.undo)
+    grid.find_text()
+    grid.find_strip.wanted.setText("77")
+    clock("find in all cells, go to the first", grid.find_next)
+    clock("go to the next one", grid.find_next)
+    clock("replace in all of them", grid.find_strip.replace_all_asked.emit)
+    clock("undo", undo.undo)
+    grid.find_strip.put_away()
+    clock("hide a column", lambda: grid.shown_columns.set_hidden({"cause"}))
     view.go_to(count // 2, 1)
     clock("one cell edited", lambda: grid.model.setData(grid.model.index(count // 2, 1), "5"))
     clock("one row inserted in the middle", grid.insert_rows)
@@ -68,6 +80,8 @@ def main() -> None:
     clock("next unread row, none there", grid.show_next_unread)
     for _ in range(3):
         clock("repaint of what is visible", view.viewport().repaint)
+    # The platform without a screen keeps what was copied beyond the end of Python, and ends in a fault.
+    QGuiApplication.clipboard().clear()
 
 
 if __name__ == "__main__":

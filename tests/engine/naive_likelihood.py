@@ -67,24 +67,39 @@ class NaiveFit:
         """ln age, or the age itself, whichever has a location and a spread; before age 0 ln age is minus infinity."""
         return age if self.family in OF_LIFE_ITSELF else np.log(np.maximum(age, 0.0))
 
+    @cached_property
+    def places(self) -> tuple[NDArray[np.float64], ...]:
+        """On the line: failures, units still running, lower and upper end of looks between, and late entries."""
+        units = self.units
+        exact, running = units.lower == units.upper, np.isinf(units.upper)
+        between, late = ~exact & ~running, units.entered > 0
+        with np.errstate(divide="ignore"):
+            low, high, entered = (self.line(ages) for ages in (units.lower, units.upper, units.entered))
+        return low[exact], low[running], low[between], high[between], entered[late]
+
+    @cached_property
+    def quantities(self) -> tuple[NDArray[np.float64], ...]:
+        """Units at the failures, still running, found between looks, and entered late."""
+        units = self.units
+        exact, running = units.lower == units.upper, np.isinf(units.upper)
+        return tuple(units.quantity[rows] for rows in (exact, running, ~exact & ~running, units.entered > 0))
+
     def log_likelihood(self, mu: float, log_sigma: float) -> float:
         """Log-likelihood of the lives themselves; minus infinity where a term underflows."""
         sigma, standard = math.exp(log_sigma), STANDARD[self.family]
-        units = self.units
+        failed, running, found, late = self.quantities
         with np.errstate(all="ignore"):
-            low, high = ((self.line(ages) - mu) / sigma for ages in (units.lower, units.upper))
-            exact, running = units.lower == units.upper, np.isinf(units.upper)
-            between, late = ~exact & ~running, units.entered > 0
-            term = np.zeros(low.size)
-            term[exact] = standard.logpdf(low[exact]) - log_sigma
+            at, beyond, low, high, entered = ((ages - mu) / sigma for ages in self.places)
+            # scipy's formulas without its checks of each argument, which take nearly all of the time.
+            total = failed @ (standard._logpdf(at) - log_sigma)
             if self.family not in OF_LIFE_ITSELF:
-                term[exact] -= np.log(units.lower[exact])
-            term[running] = standard.logsf(low[running])
-            term[between] = np.log(standard.cdf(high[between]) - standard.cdf(low[between]))
-            if late.any():
-                term[late] -= standard.logsf((self.line(units.entered[late]) - mu) / sigma)
-            total = float(np.dot(units.quantity, term))
-        return total if math.isfinite(total) else -1e300
+                total -= failed @ self.places[0]
+            total += running @ standard._logsf(beyond)
+            if found.size:
+                total += found @ np.log(standard._cdf(high) - standard._cdf(low))
+            if late.size:
+                total -= late @ standard._logsf(entered)
+        return float(total) if math.isfinite(total) else -1e300
 
     @cached_property
     def maximum(self) -> Point:
@@ -224,7 +239,7 @@ def hazard_reading(family: str, age: float) -> Reading:
     jacobian = 0.0 if family in OF_LIFE_ITSELF else -y  # ln of the slope of y over age
 
     def log_ratio(z: float) -> float:
-        return float(standard.logpdf(z) - standard.logsf(z))
+        return float(standard._logpdf(z) - standard._logsf(z))
 
     def place(value: float, z: float) -> Point:
         if family == "exponential":

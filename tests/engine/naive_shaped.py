@@ -19,8 +19,51 @@ from scipy import optimize, stats
 from tests.reference.reference_data import Units
 
 Point = NDArray[np.float64]
-Lives = Any  # a frozen distribution of scipy.stats
+Lives = Any  # what a frozen distribution of scipy.stats can do, as far as it is used
 Unscaled = Callable[[Point], Callable[[float, float], Lives]]
+
+
+@dataclass(frozen=True)
+class ScaledLives:
+    """A distribution of scipy.stats of one shape, scaled and moved.
+
+    It calls scipy's formulas without the checks of each argument: those, and to freeze a distribution anew for each
+    likelihood, take nearly all of the time.
+    """
+
+    distribution: Any
+    shape: float
+    scale: float
+    start: float
+
+    def _beyond(self, formula: Callable[[Any, float], Any], age: Any, before: float) -> Any:
+        """A formula of the distribution at ages beyond its start, and its value at or before it."""
+        x = (np.asarray(age, float) - self.start) / self.scale
+        return np.where(x > 0, formula(np.where(x > 0, x, 1.0), self.shape), before)
+
+    def logpdf(self, age: Any) -> Any:
+        """ln of the density."""
+        return self._beyond(self.distribution._logpdf, age, -math.inf) - math.log(self.scale)
+
+    def logsf(self, age: Any) -> Any:
+        """ln of the reliability."""
+        return self._beyond(self.distribution._logsf, age, 0.0)
+
+    def cdf(self, age: Any) -> Any:
+        """The failure probability."""
+        return self._beyond(self.distribution._cdf, age, 0.0)
+
+    def ppf(self, fraction: Any) -> Any:
+        """The life at a fraction failed."""
+        return self.distribution.ppf(fraction, self.shape, self.start, self.scale)
+
+    def isf(self, share: Any) -> Any:
+        """The life at a share still running."""
+        return self.distribution.isf(share, self.shape, self.start, self.scale)
+
+    def mean(self) -> Any:
+        """The mean life."""
+        return self.distribution.mean(self.shape, self.start, self.scale)
 
 
 @dataclass(frozen=True)
@@ -31,29 +74,29 @@ class GeneralizedGammaLives:
     lam: float
     scale: float
 
+    @property
+    def _shape(self) -> float:
+        return 1 / self.lam**2
+
     def _x(self, age: Any) -> Any:
         return np.exp(self.lam * (np.log(age) - math.log(self.scale)) / self.sigma) / self.lam**2
-
-    @property
-    def _gamma(self) -> Lives:
-        return stats.gamma(1 / self.lam**2)
 
     def logpdf(self, age: Any) -> Any:
         """ln of the density."""
         x = self._x(age)
-        return self._gamma.logpdf(x) + np.log(x) + math.log(abs(self.lam) / self.sigma) - np.log(age)
+        return stats.gamma._logpdf(x, self._shape) + np.log(x) + math.log(abs(self.lam) / self.sigma) - np.log(age)
 
     def logsf(self, age: Any) -> Any:
         """ln of the reliability."""
-        return (self._gamma.logsf if self.lam > 0 else self._gamma.logcdf)(self._x(age))
+        return (stats.gamma._logsf if self.lam > 0 else stats.gamma._logcdf)(self._x(age), self._shape)
 
     def cdf(self, age: Any) -> Any:
         """The failure probability."""
-        return (self._gamma.cdf if self.lam > 0 else self._gamma.sf)(self._x(age))
+        return (stats.gamma._cdf if self.lam > 0 else stats.gamma._sf)(self._x(age), self._shape)
 
     def ppf(self, fraction: Any) -> Any:
         """The life at a fraction failed."""
-        x = (self._gamma.ppf if self.lam > 0 else self._gamma.isf)(fraction)
+        x = (stats.gamma.ppf if self.lam > 0 else stats.gamma.isf)(fraction, self._shape)
         return self.scale * np.exp(self.sigma / self.lam * np.log(x * self.lam**2))
 
     def isf(self, share: Any) -> Any:
@@ -65,12 +108,12 @@ def _generalized_gamma(form: Point) -> Callable[[float, float], Lives]:
     """The form is ln sigma and lambda."""
     sigma, lam = math.exp(form[0]), float(form[1])
     if abs(lam) < 1e-3:
-        return lambda scale, loc: stats.lognorm(s=sigma, scale=scale, loc=loc)
-    return lambda scale, _loc: GeneralizedGammaLives(sigma, lam, scale)
+        return lambda scale, start: ScaledLives(stats.lognorm, sigma, scale, start)
+    return lambda scale, _start: GeneralizedGammaLives(sigma, lam, scale)
 
 
 def _by(distribution: Any) -> Unscaled:
-    return lambda form: lambda scale, loc: distribution(math.exp(form[0]), scale=scale, loc=loc)
+    return lambda form: lambda scale, start: ScaledLives(distribution, math.exp(form[0]), scale, start)
 
 
 FORMS: dict[str, Unscaled] = {
@@ -78,7 +121,7 @@ FORMS: dict[str, Unscaled] = {
     "birnbaum_saunders": _by(stats.fatiguelife),
     # ln(shape/mean), and the mean as the scale.
     "inverse_gaussian": lambda form: (
-        lambda scale, loc: stats.invgauss(math.exp(-form[0]), scale=scale * math.exp(form[0]), loc=loc)
+        lambda scale, start: ScaledLives(stats.invgauss, math.exp(-form[0]), scale * math.exp(form[0]), start)
     ),
     "generalized_gamma": _generalized_gamma,
     "weibull_threshold": _by(stats.weibull_min),

@@ -12,6 +12,7 @@ from numpy.typing import NDArray
 from reliability_app.engine import LifeData
 
 Array = NDArray[np.float64]
+SETTLED = 1e-15  # what a round still moves is less than a float can tell
 
 
 def incidence(data: LifeData) -> tuple[Array, NDArray[np.bool_], NDArray[np.bool_]]:
@@ -34,14 +35,16 @@ def incidence(data: LifeData) -> tuple[Array, NDArray[np.bool_], NDArray[np.bool
 
 
 def self_consistent(data: LifeData, *, rounds: int) -> tuple[Array, Array, float]:
-    """Return the grid, survival just after each of its ages, and the log-likelihood after so many rounds."""
+    """Return the grid, survival just after each of its ages, and the log-likelihood after so many rounds at most."""
     grid, life, watch = incidence(data)
     mass = np.full(life.shape[1], 1.0 / (life.shape[1] - 1))
     mass[0] = 0.0  # no life is 0
     for _ in range(rounds):
-        seen, watched = life @ mass, watch @ mass
+        seen, watched, before = life @ mass, watch @ mass, mass
         mass = mass * (life.T @ (data.quantity / seen) + (~watch).T @ (data.quantity / watched))
         mass /= mass.sum()
+        if np.abs(mass - before).max() < SETTLED:
+            break
     value = float(data.quantity @ np.log((life @ mass) / (watch @ mass)))
     return grid, 1.0 - np.cumsum(mass)[0::2], value
 

@@ -4,11 +4,15 @@ from __future__ import annotations
 
 import numpy as np
 import pytest
+from scipy.optimize import minimize_scalar
+from scipy.special import ndtr, ndtri
+from scipy.stats import ks_2samp
 
-from reliability_app.engine import LifeData, fit
-from reliability_app.engine.bounds.calibrated import Calibrator
+from reliability_app.engine import Fit, LifeData, fit
+from reliability_app.engine.bounds.calibrated import Calibrator, _find_root
 from reliability_app.engine.errors import BoundUnavailable
-from reliability_app.engine.life_measures import LifeMeasure
+from reliability_app.engine.life_measures import HazardMeasure, LifeMeasure
+from reliability_app.engine.refitting import samples_at, with_readings
 from reliability_app.engine.simulation import Draws, PlanKind, draw_sample, plan_of
 from tests.reference.reference_data import units_of
 
@@ -52,14 +56,7 @@ def test_the_signed_root_of_failure_truncated_data_does_not_depend_on_the_parame
     assert roots[0] == pytest.approx(roots[1], abs=1e-6)
 
 
-@pytest.mark.parametrize("family", ["lognormal", "weibull", "exponential"])
-def test_bounds_scale_with_the_lives(family: str) -> None:
-    here = fit(stopped_at(1200.0), family).life_bounds(0.1, kind="calibrated")[0]
-    there = fit(stopped_at(12.0, LIVES / 100.0), family).life_bounds(0.1, kind="calibrated")[0]
-    assert here == pytest.approx(100.0 * there, rel=1e-6)
-
-
-@pytest.mark.parametrize("family", ["lognormal", "weibull", "exponential"])
+@pytest.mark.parametrize("family", ["weibull", "exponential"])
 def test_one_sided_95_is_the_end_of_two_sided_90_and_bounds_nest(family: str) -> None:
     found = fit(stopped_at(1200.0), family)
     one = found.life_bounds(0.1, confidence=0.95, side="lower", kind="calibrated")[0]
@@ -94,17 +91,69 @@ def test_every_reading_can_be_calibrated(ask: str) -> None:
 
 def test_automatic_is_exact_where_exact_exists_and_calibrated_elsewhere() -> None:
     complete = fit(LifeData.right_censored(LIVES, np.ones(LIVES.size)), "lognormal")
-    assert complete.bound_used("automatic") == "exact"
-    assert complete.bound_used("automatic", of_hazard=True) == "calibrated"
-    assert fit(stopped_at(1200.0), "lognormal").bound_used("automatic") == "calibrated"
+    assert complete.life_question(0.1).bound_used("automatic") == "exact"
+    assert complete.hazard_question(900.0).bound_used("automatic") == "calibrated"
+    assert fit(stopped_at(1200.0), "lognormal").life_question(0.1).bound_used("automatic") == "calibrated"
     late = fit(units_of("syn14_left_truncated").life_data(), "weibull")
-    assert late.bound_used("automatic") == "likelihood"
+    assert late.life_question(0.1).bound_used("automatic") == "calibrated"
 
 
-def test_a_plan_that_is_not_known_is_refused_by_name() -> None:
-    late = fit(units_of("syn14_left_truncated").life_data(), "weibull")
-    with pytest.raises(BoundUnavailable, match="No plan can be simulated"):
-        late.life_bounds(0.1, kind="calibrated")
+@pytest.mark.parametrize("age", [600.0, 900.0, 1200.0, 4000.0])
+def test_hazards_of_a_stopped_test_are_bounded_where_the_simulated_share_meets_the_tail(age: float) -> None:
+    found = fit(stopped_at(1200.0), "lognormal")
+    measure, of_hazard = found.hazard_measure(age), found.hazard_of(age)
+    ends = found.hazard_bounds(age, side="two", kind="calibrated")
+    assert ends[0] < found.hazard(age) < ends[1]
+    # Held against other draws: the share of 20,000 signed roots beyond that of the bound is the tail, within four
+    # standard errors of that and of the 8,000 draws of the bound itself.
+    again = Calibrator(found.estimate, plan_of(found.data), Draws.of(plan_of(found.data), 20_000, 5))
+    for sign, end in zip((-1.0, 1.0), ends, strict=True):
+        value = np.log(end) - np.log(of_hazard(np.zeros(1))[0])
+        a, b, top = constrained_by_search(found, measure, float(value))
+        root = np.sqrt(2.0 * (found.estimate.terms.value[0] - top))
+        share = again.share_beyond(measure, a, b, sign, float(root))
+        error = np.sqrt(0.025 * 0.975) * np.hypot(1 / np.sqrt(20_000), 1 / np.sqrt(8_000))
+        assert share == pytest.approx(0.025, abs=4 * error)
+
+
+def constrained_by_search(found: Fit, measure: HazardMeasure, value: float) -> tuple[float, float, float]:
+    """Point and height of the log-likelihood where a log hazard has a value, by a search of scipy along z."""
+    y = float(measure.y[0])
+
+    def point(z: float) -> tuple[float, float]:
+        b = float(np.exp(value - measure.standard.log_hazard(np.array([z])).value[0]))
+        return z - b * y, b
+
+    def loss(z: float) -> float:
+        a, b = point(z)
+        return -float(found.estimate.evaluate(np.array([a]), np.array([b])).value[0])
+
+    start = found.estimate.a + found.estimate.b * y
+    best = minimize_scalar(loss, bounds=(start - 6.0, start + 6.0), method="bounded", options={"xatol": 1e-9})
+    return *point(float(best.x)), -float(best.fun)
+
+
+def test_a_tail_too_small_for_the_simulation_is_refused() -> None:
+    found = fit(stopped_at(1200.0), "weibull")
+    assert 0 < found.life_bounds(0.1, confidence=0.999, kind="calibrated")[0] < found.life(0.1)
+    with pytest.raises(BoundUnavailable, match="choose a lower confidence"):
+        found.life_bounds(0.1, confidence=0.9999, kind="calibrated")
+
+
+class TestTheSearch:
+    def test_it_finds_the_place_of_a_step(self) -> None:
+        root = _find_root(lambda root: 0.2 if root < 1.2345 else 0.01, 0.05, 1.6, precision=0.004)
+        assert 1.2345 <= root <= 1.2345 + 0.004
+
+    def test_a_bound_that_never_comes_is_refused_and_one_beyond_the_estimate_is_put_there(self) -> None:
+        for end in (2.0, 1e9):
+            with pytest.raises(BoundUnavailable, match="beyond all ages"):
+                _find_root(lambda root, end=end: 0.2 if root < end else None, 0.05, 1.6, precision=0.004)
+        assert _find_root(lambda _: 0.01, 0.05, 1.6, precision=0.004) < 0.01
+
+    def test_an_open_end_beyond_the_bound_does_no_harm(self) -> None:
+        root = _find_root(lambda at: float(ndtr(-at)) if at < 1.7 else None, 0.05, 3.0, precision=0.004)
+        assert root == pytest.approx(-ndtri(0.05), abs=0.004)
 
 
 def test_work_that_is_no_longer_wanted_can_be_ended() -> None:
@@ -154,3 +203,27 @@ class TestPlans:
         # Kaplan-Meier of leaving beyond 150: of the units there at 200 one of two leaves, the other at 300.
         assert drawn.tolist() == [200.0, 300.0]
         assert counts[0] / 20_000 == pytest.approx(0.5, abs=0.02)
+
+
+def test_tests_drawn_with_three_failures_are_those_that_a_rejection_would_leave() -> None:
+    stopped = LifeData.right_censored(np.append([410.0, 520.0, 690.0, 800.0], [900.0] * 8), np.arange(12) < 4)
+    estimate = fit(stopped, "weibull").bounder.estimate
+    plan = plan_of(stopped)
+    a, b = estimate.a - 0.7, estimate.b  # fewer failures than seen: some three tests in five would be left out
+    draws = Draws.of(plan, 8_000, 1)
+    left = samples_at(estimate, plan, draws, a=a, b=b)
+    drawn = samples_at(estimate, plan, with_readings(estimate, plan, draws, a=a, b=b), a=a, b=b)
+    assert left.failures.size < 3_300
+    assert drawn.failures.size == 8_000
+    for one, other in ((left.failures, drawn.failures), (left.sample.failed.y[:, 0], drawn.sample.failed.y[:, 0])):
+        assert ks_2samp(one, other).pvalue > 0.01
+    again = with_readings(estimate, plan, draws, a=a + 1e-9, b=b).life
+    np.testing.assert_allclose(again, with_readings(estimate, plan, draws, a=a, b=b).life, rtol=1e-7)
+
+
+def test_an_upper_bound_is_found_where_few_tests_like_it_would_see_three_failures() -> None:
+    # 4 of 10 had failed at the end; at B10 lives near the upper bound hardly a test would see three failures.
+    life = np.array([0.21, 0.33, 0.38, 0.47, *[0.51] * 6])
+    found = fit(LifeData.right_censored(life, np.arange(10) < 4), "weibull")
+    upper = found.life_bounds(0.1, side="upper", confidence=0.95, kind="calibrated")[1]
+    assert found.life(0.1) < found.life_bounds(0.1, side="upper", confidence=0.9, kind="calibrated")[1] < upper < 1.0

@@ -16,7 +16,7 @@ from reliability_app.engine.refitting import samples_like
 from reliability_app.engine.sample import sample_of
 from tests.engine.naive_goodness import naive_anderson_darling, naive_correlation
 from tests.reference.published_data import nist_8413
-from tests.reference.reference_data import published, units_of
+from tests.reference.reference_data import published
 
 STANDARD = {"lognormal": stats.norm, "weibull": stats.gumbel_l, "exponential": stats.gumbel_l}
 
@@ -258,12 +258,6 @@ class TestWhatIsMissing:
         goodness = goodness_of(fit(data, "weibull"))
         assert goodness == Goodness(None, None, 0, goodness.reason)
         assert "between two ages" in goodness.reason
-
-    def test_late_entry_leaves_the_statistics_and_takes_the_p_values(self) -> None:
-        goodness = goodness_of(fit(units_of("syn14_left_truncated").life_data(), "weibull"))
-        assert goodness.anderson_darling.statistic > 0
-        assert goodness.anderson_darling.p_value is None
-        assert "cannot be simulated" in goodness.reason
 
     def test_two_failures_say_nothing_about_the_family(self) -> None:
         data = LifeData.right_censored([100, 200, 300, 300], [1, 1, 0, 0])

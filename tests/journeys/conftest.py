@@ -17,9 +17,9 @@ from reliability_app.session.messages import Messages
 from reliability_app.session.recovery import RecoveryCopy
 from reliability_app.windows.main_window import MainWindow
 from reliability_app.windows.settings import WindowSettings
-from tests.windows.conftest import nothing_left_behind
+from tests.windows.conftest import nothing_left_behind, standing_objects_set_aside
 
-__all__ = ["nothing_left_behind"]
+__all__ = ["nothing_left_behind", "standing_objects_set_aside"]
 
 CONTROL = Qt.KeyboardModifier.ControlModifier
 ANSWER_WITHIN_MS = 60_000  # a bound for a machine under load, not an expectation
@@ -71,6 +71,9 @@ class Desk:
         """Choose by keyboard: focus, then the first letter of the family."""
         box = self.window.contents.basis.family
         box.setFocus()
+        # A letter is the first of a name again, however soon after another it is typed.
+        QApplication.setKeyboardInputInterval(0)
+        self.qtbot.wait(2)
         self.qtbot.keyClick(box, title[0])
         self.wait_for_answer()
 

@@ -48,7 +48,7 @@ def test_every_contract_is_kept():
         ("engine", "from PySide6.QtCore import QObject", {"No Qt below the reports"}),
         ("session", "import pyqtgraph", {"No Qt below the reports"}),
         ("session", "import reliability_app.windows", {"Arrows run down only"}),
-        ("engine", "def late():\n    import reliability_app.session.document", {"Arrows run down only"}),
+        ("engine", "def late():\n    import reliability_app.session.states", {"Arrows run down only"}),
         ("engine", "import pandas", {"The engine is numbers only"}),
         ("", "", {"Arrows run down only"}),
     ],

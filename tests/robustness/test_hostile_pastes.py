@@ -9,6 +9,9 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
+from reliability_app.session.date_columns import END_DATE, START_DATE
+from reliability_app.session.date_lives import DATE_UNITS
+from reliability_app.session.dates import DayOrder
 from reliability_app.session.numbers import DecimalMark
 from reliability_app.session.pasted_text import plain_block, reread, understand
 from reliability_app.session.unit_table import BUILT_IN_COLUMNS, NothingToAnalyse, UnitTable
@@ -23,6 +26,8 @@ CELL = st.one_of(
     st.sampled_from(["812", "53,2", "1.401,40", "1,234", "-5", "0", "NaN", "inf", "1e999", "1_000", "١٢", "1500+"]),
     st.sampled_from([">1500", "<200", "200-400", "400-200", "failed", "ok", "yes", "0", "1", "2", "n/a", "", "+", "-"]),
     st.sampled_from(["Life (h)", "State", "Unit", "Qty", "Failed?", "lower", "upper", "Temp", "Life", "=1+1", "###"]),
+    st.sampled_from(["2025-04-03", "03/04/2025", "13.4.25", "04/13/2025 2:30 PM", "2025-13-45", "20250403", "#DIV/0!"]),
+    st.sampled_from(["Start", "End", "Installed", "Failed on", "Removed", "Date", "still running", "1 Jan 0001"]),
 )
 NUMBER_LIKE = st.from_regex(r"[<>]?-?[0-9.,' ]{0,9}[0-9]([eE]-?[0-9])?[+]?(-[0-9]{1,4})?", fullmatch=True)
 COMMON = settings(max_examples=100, deadline=None)
@@ -68,10 +73,15 @@ def test_any_text_is_understood_without_an_error(text: str, html: str | None) ->
 @COMMON
 @given(
     st.lists(st.lists(CELL, min_size=1, max_size=4), min_size=1, max_size=5),
-    st.dictionaries(st.integers(-1, 5), st.one_of(st.none(), st.sampled_from(BUILT_IN_COLUMNS))),
+    st.dictionaries(
+        st.integers(-1, 5), st.one_of(st.none(), st.sampled_from([*BUILT_IN_COLUMNS, START_DATE, END_DATE]))
+    ),
     st.sampled_from([None, *DecimalMark]),
     st.sampled_from([None, "failed", "running"]),
     st.sampled_from([None, True, False]),
+    st.sampled_from([None, *DayOrder]),
+    st.sampled_from([None, "", "2025-04-03", "03/04/2025", "9999-12-31", "soon"]),
+    st.sampled_from([None, *DATE_UNITS, "months"]),
 )
 def test_any_choice_by_hand_is_carried_out_without_loss(
     rows: list[list[str]],
@@ -79,9 +89,18 @@ def test_any_choice_by_hand_is_carried_out_without_loss(
     mark: DecimalMark | None,
     yes_means: str | None,
     headings: bool | None,
+    day_order: DayOrder | None,
+    data_date: str | None,
+    date_unit: str | None,
 ) -> None:
     text = "\n".join("\t".join(row) for row in rows)
-    again = reread(understand(text), columns=columns, mark=mark, yes_means=yes_means, headings=headings)
+    once = reread(understand(text), columns=columns, mark=mark, yes_means=yes_means, headings=headings)
+    dates = {"day_order": day_order, "data_date": data_date, "date_unit": date_unit, "end_means": yes_means}
+    again = reread(once, states={"zq00x": "failed", "813": "running"}, **dates)
+    assert again.sentence.endswith(".")
+    for question in again.questions:
+        for option in question.options:
+            reread(again, **option.choice)
     cells = [cell for row in again.rows for cell in row.values()]
     kept = "\n".join([*cells, *again.headings])
     assert all(word in kept for word in re.findall("zq[0-9]{2}x", text))
@@ -147,6 +166,10 @@ BIG = {
     "distinct unknown states": "Life\tState\n" + "".join(f"{n + 1}\tlimbo{n}\n" for n in range(50_000)),
     "numbers in doubt": "Life\tState\n" + "1,234\tF\n" * 50_000,
     "one wide row in a long table": "\t".join("abc" for _ in range(5000)) + "\n" + "812\tfailed\n" * 50_000,
+    "dates in doubt": "Start\tEnd\n" + "".join(f"0{n % 9 + 1}/04/2025\t0{n % 8 + 1}/05/2025\n" for n in range(50_000)),
+    "dates that all differ": "Start\tEnd\n"
+    + "".join(f"20{n % 60 + 10}-{n % 12 + 1:02}-{n % 28 + 1:02} {n % 24}:{n % 60:02}\t\n" for n in range(50_000)),
+    "almost dates": "2025-04-" * 200_000,
     "combining signs": "e\u0301" * 200_000,
 }
 

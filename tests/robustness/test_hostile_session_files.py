@@ -4,6 +4,8 @@ import json
 import random
 import time
 import tracemalloc
+import zlib
+from base64 import b64encode
 from pathlib import Path
 
 import pytest
@@ -12,8 +14,19 @@ from reliability_app.session.json_file import load
 from reliability_app.session.json_format import from_text, to_text
 from reliability_app.session.json_write import one_line
 from reliability_app.session.session_errors import SessionUnreadable
+from reliability_app.session.shipped import shipped
 
 SAMPLE = (Path(__file__).parents[1] / "session" / "old_versions" / "version_1.json").read_text(encoding="utf-8")
+
+
+def _visited() -> str:
+    """The sample of eight visits, cut to two of them."""
+    session = load(shipped("sample_sets") / "fans_eight_visits.json")
+    del session.visits[2:], session.sets[1:]
+    return to_text(session)
+
+
+VISITED = _visited()
 
 
 def file_with(*, units="[]", sets=None, basis="{}", readings="[]", more=""):
@@ -23,6 +36,13 @@ def file_with(*, units="[]", sets=None, basis="{}", readings="[]", more=""):
 
 def unit_with(cell):
     return file_with(units=f'[{{"unit": "P-01", "life": 1}},\n{{"unit": "P-02", {cell}}}]')
+
+
+_SET = '"confidence": 0.9, "set_at": "2026-03-02T14:00:00Z"'
+
+
+def visit_with(content):
+    return file_with(more=f', "visits": [{{"at": "2026-03-02T14:00:00Z", "sets": [{{"name": "A", {content}}}]}}]')
 
 
 REFUSED = {
@@ -60,7 +80,35 @@ REFUSED = {
         "$.sets[0].units[1].state",
     ),
     "huge": (unit_with('"life": 1e999'), "number out of range", "$.sets[0].units[1].life"),
-    "huge in a visit": (file_with(more=', "visits": [{"x": -1e999}]'), "number out of range", "$.visits[0]"),
+    "visit without a day": (file_with(more=', "visits": [{}]'), 'the key "at" is missing', "$.visits[0]"),
+    "huge in a visit": (
+        visit_with('"log_likelihood": -1e999'),
+        "number out of range",
+        "$.visits[0].sets[0].log_likelihood",
+    ),
+    "NaN in a visit": (visit_with('"covariance": [[NaN]]'), "the JSON is malformed", "line 3"),
+    "key twice in a visit": (visit_with('"seed": 1, "seed": 2'), "stands twice here", "$.visits[0].sets[0].seed"),
+    "visit with too many cells": (
+        visit_with('"units": {"columns": ' + json.dumps([f"c{i}" for i in range(3001)]) + ', "rows": []}'),
+        "its 3,001 columns are more than this program can hold",
+        "$.visits[0].sets[0].units.columns",
+    ),
+    "more cells than columns": (
+        visit_with('"units": {"columns": ["unit"], "rows": ["A", "B\\t1"]}'),
+        "row 2 has more cells than the 1 columns that are named",
+        "$.visits[0].sets[0].units.rows[1]",
+    ),
+    "requirement of a mean": (
+        file_with(more=', "requirement": {"ask": "mean_life"}'),
+        "not one that",
+        "$.requirement.ask",
+    ),
+    "reliability of 2 required": (
+        file_with(more=f', "requirement": {{"ask": "reliability", "age": 1, "at_least": 2, {_SET}}}'),
+        "a number < 1.0 should",
+        "$.requirement.at_least",
+    ),
+    "log no list": (file_with(more=', "requirement_log": {}'), "a list in brackets should", "$.requirement_log"),
     "many digits": (unit_with('"life": ' + "9" * 5000), "number out of range", "$.sets[0].units[1].life"),
     "NaN": (unit_with('"life": NaN'), "the JSON is malformed (invalid character: 'NaN}", "line 3"),
     "Infinity": (unit_with('"life": -Infinity'), "the JSON is malformed (invalid", "line 3"),
@@ -211,19 +259,49 @@ def session_or_sentence(text):
     return False
 
 
-def test_damaged_text_gives_a_session_or_a_sentence():
-    chance = random.Random(20250131)
-    opened = [session_or_sentence(mutated(SAMPLE, chance)) for _ in range(1500)]
-    assert 50 < sum(opened) < 1450  # both outcomes were met
+HOSTILE = [None, True, -1, 1e308, 10**400, "", "x", "\u0000", [], {}, [[]], {"": ""}, [None], {"a": {"a": 1}}, "\t\t"]
 
 
-def test_wrong_content_gives_a_session_or_a_sentence():
+@pytest.mark.parametrize(("sample", "times"), [(SAMPLE, 1000), (VISITED, 300)], ids=["units", "visits"])
+def test_damaged_text_gives_a_session_or_a_sentence(sample, times):
     chance = random.Random(20250131)
-    content = json.loads(SAMPLE)
-    hostile = [None, True, -1, 1e308, 10**400, "", "x", "\u0000", [], {}, [[]], {"": ""}, [None], {"a": {"a": 1}}]
-    texts = [one_line(replaced(content, chance, chance.choice(hostile))) for _ in range(1500)]
+    opened = [session_or_sentence(mutated(sample, chance)) for _ in range(times)]
+    assert 0.03 < sum(opened) / times < 0.97  # both outcomes were met
+
+
+@pytest.mark.parametrize(("sample", "times"), [(SAMPLE, 1000), (VISITED, 300)], ids=["units", "visits"])
+def test_wrong_content_gives_a_session_or_a_sentence(sample, times):
+    chance = random.Random(20250131)
+    content = json.loads(sample)
+    texts = [one_line(replaced(content, chance, chance.choice(HOSTILE))) for _ in range(times)]
     opened = [session_or_sentence(text) for text in texts]
-    assert 50 < sum(opened) < 1450
+    assert 0.03 < sum(opened) / times < 0.97
+
+
+def compressed(rows: bytes, kept: int | None = None) -> str:
+    packed = b64encode(zlib.compress(rows)[:kept]).decode()
+    return visit_with(f'"units": {{"columns": ["unit"], "packed": "{packed}"}}')
+
+
+@pytest.mark.parametrize(
+    ("text", "reason"),
+    [
+        (compressed(b"A\nB", kept=-2), "break off"),
+        (visit_with('"units": {"columns": ["unit"], "packed": "no base64"}'), "damaged"),
+        (visit_with('"units": {"columns": ["unit"], "packed": ""}'), "break off"),
+        (compressed(b"\xff\xfe"), "damaged"),
+        (compressed(b"A\tB"), "row 1 has more cells"),
+        (compressed(b"\n" * 100_000_000), "more than 3,000,000"),
+        (compressed(b"A" * 200_000_001), "more than 200,000,000 bytes"),
+    ],
+    ids=["cut", "no base64", "empty", "no text", "too many cells", "too many rows", "a bomb"],
+)
+def test_compressed_units_that_are_damaged_or_too_many_are_refused_quickly(text, reason):
+    start = time.perf_counter()
+    with pytest.raises(SessionUnreadable, match=reason) as refusal:
+        from_text(text)
+    assert refusal.value.place.startswith("$.visits[0]")
+    assert time.perf_counter() - start < 2
 
 
 @pytest.mark.parametrize(

@@ -4,7 +4,7 @@ import subprocess
 import sys
 from collections import Counter
 
-KILLS = 30
+KILLS = 25
 
 
 def test_a_save_that_is_killed_leaves_the_old_or_the_new_file(tmp_path):

@@ -3,12 +3,25 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from functools import cache
 
 import numpy as np
 import pytest
 
 from reliability_app.session.analysis import Question, SetAnalysis, analyse
-from reliability_app.session.document import Basis, HazardAsk, LifeAsk, ReliabilityAsk, Session, UnitSet
+from reliability_app.session.document import (
+    AgeAtHazardAsk,
+    Basis,
+    ConditionalReliabilityAsk,
+    HazardAsk,
+    LifeAsk,
+    MeanLifeAsk,
+    ModeAsk,
+    ReliabilityAsk,
+    ResidualLifeAsk,
+    Session,
+    UnitSet,
+)
 from reliability_app.session.unit_table import UnitTable
 
 # NIST/SEMATECH e-Handbook of Statistical Methods, sec. 8.4.1.3: ten failures, ten units running at 500 h.
@@ -163,8 +176,14 @@ def test_found_failed_units_are_fitted_and_drawn() -> None:
     assert analysis.picture.point_fraction[1] == pytest.approx(2 / 21, abs=1e-10)
 
 
+@cache
+def nist_calibrated() -> SetAnalysis:
+    """Computed once: five readings and the bands, all by simulation."""
+    return analysed(NIST_ROWS, family="weibull", bound="automatic")
+
+
 def test_automatic_bounds_are_calibrated_and_a_quick_analysis_is_provisional() -> None:
-    slow = analysed(NIST_ROWS, family="weibull", bound="automatic")
+    slow = nist_calibrated()
     assert slow.readings[0].bound_used == "calibrated"
     assert not slow.is_provisional
     quick = analyse(slow.question, quick=True)
@@ -177,9 +196,10 @@ def test_automatic_bounds_are_calibrated_and_a_quick_analysis_is_provisional() -
 
 
 def test_a_calibrated_reading_moved_by_hand_follows_the_band() -> None:
-    slow = analysed(NIST_ROWS, family="weibull", bound="calibrated")
+    slow = nist_calibrated()
     moved = slow.with_main_ask(LifeAsk(25)).readings[0]
-    fresh = analyse(replace(slow.question, asks=(LifeAsk(25),))).readings[0]
+    fresh = analyse(replace(slow.question, asks=(LifeAsk(25),)), with_curves=False).readings[0]
+    assert fresh.bound_used == "calibrated"
     assert moved.is_provisional
     assert moved.estimate == fresh.estimate
     # The band is drawn through calibrations at thirteen ages; between them it is smooth.
@@ -190,9 +210,51 @@ def test_complete_lognormal_lives_have_the_exact_bound_at_once() -> None:
     rows = [{"life": str(life), "state": "failed"} for life in NIST_FAILURES]
     analysis = analyse(analysed(rows, bound="automatic").question, quick=True)
     assert analysis.readings[0].bound_used == "exact"
-    assert not analysis.is_provisional
+    assert not analysis.readings[0].is_provisional
+    # No exact bound of a hazard is known: the likelihood-ratio bound stands in until it is calibrated.
+    hazard = analysis.readings[3]
+    assert (hazard.bound_used, hazard.is_provisional, analysis.is_provisional) == ("likelihood", True, True)
 
 
 def test_units_of_one_name_are_told() -> None:
     rows = [{"unit": "P-1", "life": "10", "state": "failed"}, {"unit": "P-1", "life": "20", "state": "failed"}]
     assert "units-repeated" in codes(analysed(rows))
+
+
+def test_where_nothing_can_be_simulated_the_reading_says_that_its_bound_is_not_calibrated() -> None:
+    # Invented: four units, each watched for its last hour only.
+    rows = [{"life": str(life), "state": "failed", "entered": str(life - 1)} for life in (100, 110, 120, 130)]
+    session = Session(sets=[UnitSet("A", UnitTable.from_rows(rows), Basis(bound="automatic"))], asks=(LifeAsk(10.0),))
+    analysis = analyse(Question.about(session, 0))
+    (reading,) = analysis.readings
+    assert reading.bound_used == "likelihood"
+    assert 0.0 <= reading.lower < reading.estimate
+    assert "not-calibrated" in {caution.code for caution in reading.cautions}
+    assert not analysis.is_provisional
+    assert analysis.picture.failure.upper is not None
+
+
+def test_readings_without_an_exact_bound_are_calibrated_in_complete_lognormal_data() -> None:
+    rows = [{"life": str(life), "state": "failed"} for life in (612, 701, 744, 850, 913, 1010, 1105)]
+    asks = (
+        ConditionalReliabilityAsk(900.0, 500.0),
+        ResidualLifeAsk(500.0),
+        MeanLifeAsk(),
+        ModeAsk(),
+        AgeAtHazardAsk(1e-3),
+    )
+    session = Session(sets=[UnitSet("A", UnitTable.from_rows(rows), Basis(bound="automatic"))], asks=asks)
+    for reading in analyse(Question.about(session, 0)).readings:
+        assert reading.bound_used == "calibrated"
+        assert reading.lower is not None
+        assert reading.lower < reading.estimate
+
+
+def test_readings_are_the_same_where_no_curves_are_drawn() -> None:
+    drawn = analysed(NIST_ROWS, family="weibull", bound="likelihood")
+    bare = analyse(drawn.question, with_curves=False)
+    assert bare.picture.failure is None
+    assert drawn.picture.failure is not None
+    assert [(one.estimate, one.lower, one.cautions) for one in bare.readings] == [
+        (one.estimate, one.lower, one.cautions) for one in drawn.readings
+    ]

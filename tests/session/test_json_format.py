@@ -97,13 +97,9 @@ def test_everything_of_a_session_comes_back():
         "h",
     )
     assert session.asks == (LifeAsk(10.0), ReliabilityAsk(1000.0), HazardAsk(500.5))
-    assert session.visits == [
-        {
-            "at": "2025-01-31T14:05:00+01:00",
-            "label": "week 6",
-            "sets": [{"name": "Design A", "parameters": {"shape": 1.5}}],
-        }
-    ]
+    (visit,) = session.visits
+    assert (visit.at.isoformat(), visit.label) == ("2025-01-31T14:05:00+01:00", "week 6")
+    assert [(one.name, one.parameters) for one in visit.record.sets] == [("Design A", {"shape": 1.5})]
     first, second = session.sets
     assert (first.name, first.colour, second.name, second.colour) == ("Design A", 0, "Design B", 1)
     assert first.basis == Basis(family="weibull", bound="wald", confidence=0.9, side="two")

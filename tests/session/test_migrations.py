@@ -29,7 +29,7 @@ def test_a_sample_of_each_version_opens_with_all_its_content(version):
     assert [table.text(row, "life") for row in range(6)] == ["1401.40", "1500", "", "400", "n/a", "980"]
     assert session.sets[0].basis.family == "weibull"
     assert len(session.asks) == 3
-    assert session.visits[0]["label"] == "week 6"
+    assert session.visits[0].label == "week 6"
     assert "later" in session.kept
 
 

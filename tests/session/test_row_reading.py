@@ -19,6 +19,7 @@ from reliability_app.session.row_reading import (
     row_faults,
 )
 from reliability_app.session.states import FAILED, FOUND_FAILED, RUNNING
+from reliability_app.session.unit_table import UnitTable
 
 
 @pytest.mark.parametrize(
@@ -106,6 +107,7 @@ def faults(life: str = "", until: str = "", state: str = "", quantity: str = "",
         {"life": "812", "state": FAILED, "quantity": "3.0", "entered": "100"},
         {"life": "200", "until": "400", "entered": "200"},
         {"life": "0", "until": "400", "entered": "0"},
+        {"life": "0", "until": "200", "state": FOUND_FAILED, "entered": "50"},
     ],
 )
 def test_sound_row_has_no_fault(row: dict[str, str]) -> None:
@@ -153,6 +155,9 @@ def test_sound_row_has_no_fault(row: dict[str, str]) -> None:
         ({"life": "812", "state": FAILED, "entered": "-1"}, "entered", "Entered '-1' is negative: type"),
         ({"life": "812", "state": FAILED, "entered": "?"}, "entered", "Entered '?' is not a number"),
         ({"life": "200", "until": "400", "entered": "300"}, "entered", "is not below Life '200'"),
+        ({"life": "0", "until": "200", "entered": "200"}, "entered", "not below Until '200': a unit that had failed"),
+        ({"life": "100", "until": "200", "entered": "250"}, "entered", "is not below Until '200'"),
+        ({"life": "0", "state": RUNNING, "entered": "50"}, "entered", "is not below Life '0'"),
     ],
 )
 def test_fault_says_what_is_wrong_and_what_to_do(row: dict[str, str], column: str, says: str) -> None:
@@ -207,3 +212,12 @@ def test_readings_are_the_intervals_in_which_lives_lie() -> None:
         bulk_reading.IS_FOUND_FAILED,
         bulk_reading.IS_FOUND_FAILED,
     ]
+
+
+def test_a_unit_found_failed_that_entered_late_failed_between_its_entry_and_the_look() -> None:
+    table = UnitTable()
+    table.set_block(0, ("life", "entered"), [["<200", "50"], ["<200", ""], ["300+", "50"]])
+    data = table.life_data()
+    assert data.lower.tolist() == [50, 0, 300]
+    assert data.upper.tolist() == [200, 200, np.inf]
+    assert data.entered.tolist() == [50, 0, 50]

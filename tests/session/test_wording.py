@@ -5,10 +5,10 @@ from __future__ import annotations
 import pytest
 
 from reliability_app.session.document import Basis, HazardAsk, LifeAsk, ReliabilityAsk
+from reliability_app.session.number_style import NARROW_SPACE, NumberStyle, choose_number_style
 from reliability_app.session.picture import Reading
 from reliability_app.session.unit_table import Counts
 from reliability_app.session.wording import (
-    THOUSANDS,
     all_counts_text,
     as_given,
     basis_text,
@@ -23,9 +23,9 @@ from reliability_app.session.wording import (
     [
         (859.7, "860"),
         (1244.0, "1240"),
-        (12437.0, f"12{THOUSANDS}400"),
-        (1234567.0, f"1{THOUSANDS}230{THOUSANDS}000"),
-        (9996.0, f"10{THOUSANDS}000"),
+        (12437.0, f"12{NARROW_SPACE}400"),
+        (1234567.0, f"1{NARROW_SPACE}230{NARROW_SPACE}000"),
+        (9996.0, f"10{NARROW_SPACE}000"),
         (0.012345, "0.0123"),
         (99.96, "100"),
         (3.0, "3.00"),
@@ -64,7 +64,7 @@ def test_a_reliability_shows_what_is_missing_to_one(share: float, text: str) -> 
 
 
 @pytest.mark.parametrize(
-    ("value", "text"), [(10.0, "10"), (0.1, "0.1"), (99.9, "99.9"), (15000.0, f"15{THOUSANDS}000")]
+    ("value", "text"), [(10.0, "10"), (0.1, "0.1"), (99.9, "99.9"), (15000.0, f"15{NARROW_SPACE}000")]
 )
 def test_what_the_user_gave_keeps_its_digits(value: float, text: str) -> None:
     assert as_given(value) == text
@@ -106,3 +106,25 @@ def test_the_basis_names_family_method_units_and_bound() -> None:
 def test_the_counts_name_every_state() -> None:
     assert all_counts_text(Counts(12, 8, 0, 0)) == "12 failed, 8 running, 0 unread"
     assert all_counts_text(Counts(12, 8, 2, 1)) == "12 failed, 8 running, 2 found failed, 1 unread"
+
+
+def test_numbers_follow_the_style_chosen():
+    try:
+        for style, texts in {
+            NumberStyle(3, "space"): ("12\u202f300", "0.988"),
+            NumberStyle(5, "comma"): ("12,346", "0.98765"),
+            NumberStyle(4, "apostrophe"): ("12\u2019350", "0.9877"),
+            NumberStyle(9, "none"): ("12346", "0.98765"),
+        }.items():
+            choose_number_style(style)
+            assert (number_text(12345.6), share_text(0.987654)) == texts
+    finally:
+        choose_number_style(NumberStyle())
+
+
+def test_a_lower_bound_is_rounded_down_at_any_number_of_digits():
+    try:
+        choose_number_style(NumberStyle(4))
+        assert number_text(859.99, toward="down") == "859.9"
+    finally:
+        choose_number_style(NumberStyle())

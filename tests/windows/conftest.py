@@ -14,6 +14,17 @@ def pytest_collection_modifyitems(items):
             item.add_marker(pytest.mark.qt_log_ignore("This plugin does not support", extend=True))
 
 
+@pytest.fixture(autouse=True, scope="module")
+def standing_objects_set_aside():
+    # What stands before a window opens is not searched again after each test: late in a whole run that took a second.
+    gc.collect()
+    gc.freeze()
+    # After each test only, and never in a thread at work: to free a widget there can wait for Qt for ever.
+    gc.disable()
+    yield
+    gc.enable()
+
+
 @pytest.fixture(autouse=True)
 def nothing_left_behind():
     yield

@@ -11,7 +11,8 @@ from PySide6.QtGui import QAccessible, QGuiApplication
 from PySide6.QtWidgets import QMenu
 
 from reliability_app.engine.paper import AgeScale
-from reliability_app.windows.charts.chart_page import NO_UNITS
+from reliability_app.windows.charts.chart import NO_UNITS
+from reliability_app.windows.charts.copied_picture import copy_figure
 from reliability_app.windows.charts.curve_page import NO_ESTIMATE, HazardPage, SurvivalPage
 from reliability_app.windows.charts.paper_page import PaperPage
 from reliability_app.windows.theme import dark, dark_palette, light
@@ -221,7 +222,7 @@ class TestLooks:
     def test_survival_has_the_steps_with_a_tick_at_running_units(self, shown):
         one = picture(PUMPS)
         page = shown(SurvivalPage, one)
-        x, y = page._drawings[0].steps.getData()
+        x, y = page._drawings[0].steps.line.getData()
         assert x[0] == 0.0
         assert y[0] == 100.0
         ages, heights = page._drawings[0].running.item.getData()
@@ -243,7 +244,7 @@ class TestLooks:
     def test_steps_from_age_zero_are_drawn_on_a_log_axis(self, shown):
         page = shown(SurvivalPage, picture(PUMPS))
         page.set_age_scale("log")
-        x, _ = page._drawings[0].steps.getData()
+        x, _ = page._drawings[0].steps.line.getData()
         assert np.all(np.isfinite(x))
         assert x[0] < view_range(page)[0, 0]
 
@@ -263,7 +264,7 @@ class TestPageWithoutMuch:
         assert page._drawings[0].running.item.getData()[0] == pytest.approx(AgeScale("log").to_scale([500, 700]))
         assert page._drawings[0].fit.line.getData()[0] is None or len(page._drawings[0].fit.line.getData()[0]) == 0
         assert shown(HazardPage, one)._note.text() == NO_ESTIMATE
-        assert shown(SurvivalPage, one)._drawings[0].steps.getData()[1].tolist() == [100.0] * 2
+        assert shown(SurvivalPage, one)._drawings[0].steps.line.getData()[1].tolist() == [100.0] * 2
 
 
 class TestMenuAndAccess:
@@ -274,17 +275,26 @@ class TestMenuAndAccess:
         menu = page.findChild(QMenu)
         assert menu.isVisible()
         texts = [action.text().replace("&", "") for action in menu.actions() if not action.isSeparator()]
-        assert texts == ["Reset view", "Log age axis", "Linear age axis", "Copy picture"]
+        assert texts == [
+            "Read at a percent or an age …",
+            "Reset view",
+            "Range of the level axis …",
+            "Range of the upright axis …",
+            "Log age axis",
+            "Linear age axis",
+            "Candidates as thin lines",
+            "Copy picture",
+        ]
         menu.close()
 
     def test_the_picture_is_copied_finer_than_the_screen(self, shown):
         page = shown(PaperPage, picture(PUMPS))
-        page.copy_action.trigger()
+        copy_figure(page.figure())
         image = QGuiApplication.clipboard().image()
-        assert image.size() == 2 * page.view.viewport().size()
+        assert image.width() > 1.5 * page.view.viewport().width()
         pixels = [(x, y) for x in range(0, image.width(), 3) for y in range(0, image.height(), 3)]
         colours = {image.pixelColor(x, y).name() for x, y in pixels}
-        assert {page._theme.background, page._theme.style(0).colour.lower()} <= colours
+        assert {light().background, light().style(0).colour.lower()} <= colours
 
     @pytest.mark.parametrize("kind", PAGES)
     def test_a_screen_reader_hears_page_and_reading(self, shown, kind):

@@ -14,11 +14,12 @@ from PySide6.QtWidgets import QApplication
 
 from reliability_app.engine.curves import Curve
 from reliability_app.engine.paper import AgeScale, ProbabilityScale
-from reliability_app.windows.charts.chart_ranges import curve_range, hazard_top, paper_range
-from reliability_app.windows.charts.reading_marks import age_at, fraction_at, paper_mark, place_of
+from reliability_app.reports.chart_ranges import curve_range, hazard_top, paper_range
+from reliability_app.reports.reading_places import age_at, fraction_at, paper_mark, place_of
+from reliability_app.reports.series_looks import ink_on
 from reliability_app.windows.charts.reading_steps import fine_step, round_step, snapped
 from reliability_app.windows.charts.set_items import band_path
-from reliability_app.windows.theme import apply_scheme, dark, dark_palette, ink_on, light, theme_of
+from reliability_app.windows.theme import apply_scheme, dark, dark_palette, light, theme_of
 from tests.windows.chart_pictures import NONE_FAILED, PUMPS, picture
 
 

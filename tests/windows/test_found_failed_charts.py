@@ -60,7 +60,7 @@ def test_the_paper_shows_every_mark(qtbot, looked_at):
 def test_survival_falls_inside_the_intervals_with_running_units_on_the_steps(qtbot, looked_at):
     page = shown(qtbot, SurvivalPage, looked_at)
     page.set_age_scale("linear")
-    x, y = page._drawings[0].steps.getData()
+    x, y = page._drawings[0].steps.line.getData()
     falls = np.flatnonzero(np.diff(y) < 0)
     assert x[falls].tolist() == [100, 300, 450, 700]
     ages, heights = page._drawings[0].running.item.getData()

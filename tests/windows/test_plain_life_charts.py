@@ -7,10 +7,11 @@ import pytest
 
 from reliability_app.engine import FAMILY_NAMES
 from reliability_app.engine.families import family
+from reliability_app.reports.reading_places import age_at
 from reliability_app.session.document import LifeAsk
 from reliability_app.windows.charts.curve_page import HazardPage, SurvivalPage
 from reliability_app.windows.charts.paper_page import PaperPage
-from reliability_app.windows.charts.reading_marks import age_at, preview
+from reliability_app.windows.charts.reading_marks import preview
 from tests.windows.chart_pictures import PUMPS, Units, picture
 
 # Invented: so spread out that a normal fit puts its B10 life below age 0.

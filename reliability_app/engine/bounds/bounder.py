@@ -5,22 +5,24 @@ from __future__ import annotations
 from collections.abc import Callable
 from contextlib import suppress
 from dataclasses import dataclass, field
+from functools import cached_property
 
 import numpy as np
 from numpy.typing import NDArray
 from scipy.special import ndtri
 
 from reliability_app.engine.bounds.calibrated import Calibrator, Proceed, calibrator_for
-from reliability_app.engine.bounds.exact import exact_end, has_exact_bounds
+from reliability_app.engine.bounds.exact import ExactBounds, has_exact_bounds
+from reliability_app.engine.bounds.further_profile import further_end
 from reliability_app.engine.bounds.likelihood_ratio import EndPoints, likelihood_end, outline_end
 from reliability_app.engine.bounds.profile import profile_end
 from reliability_app.engine.bounds.region import Region, likelihood_region
 from reliability_app.engine.bounds.wald import wald_end
 from reliability_app.engine.errors import BoundUnavailable
 from reliability_app.engine.estimate import Estimate
+from reliability_app.engine.further_measures import FurtherMeasure
 from reliability_app.engine.life_data import LifeData
 from reliability_app.engine.life_measures import HazardMeasure, Measure
-from reliability_app.engine.simulation import can_be_simulated
 
 Array = NDArray[np.float64]
 
@@ -29,6 +31,8 @@ _SLOW_BAND = 24
 # A calibration is made at this many places of a band; the signed root changes slowly between them.
 _CALIBRATED_PLACES = 13
 _ROOT_LEVELS = 6
+# Where so many places of a band cannot be calibrated and none can, it is given up.
+_TRIED_IN_VAIN = 3
 # With this many failures the likelihood-ratio bound keeps its promise to well within a point by itself.
 ENOUGH_FAILURES = 300
 
@@ -45,16 +49,23 @@ class Bounder:
     data: LifeData
     proceed: Proceed | None = None
     _regions: dict[float, Region] = field(default_factory=dict)
-    _calibrators: list[Calibrator] = field(default_factory=list)
+    _calibrators: dict[float, Calibrator] = field(default_factory=dict)
 
-    def resolved(self, kind: str, *, of_hazard: bool) -> str:
-        """Return the kind that "automatic" stands for: exact where it exists, else calibrated where a plan is known."""
+    def choices(self, kind: str, measure: Measure) -> tuple[str, ...]:
+        """Return the kinds that `kind` stands for, to be tried in turn until one can be computed.
+
+        "automatic" is exact where such a bound is known, else calibrated, which many failures make needless, and the
+        likelihood ratio where nothing else can be had.
+        """
         if kind != "automatic":
-            return kind
-        if has_exact_bounds(self.data, self.estimate.family.name) and not of_hazard:
-            return "exact"
+            return (kind,)
         failures = self.data.failed_count + self.data.found_failed_count
-        return "calibrated" if can_be_simulated(self.data) and failures < ENOUGH_FAILURES else "likelihood"
+        exact = ("exact",) if self._has_exact(measure) else ()
+        return (*exact, *(("calibrated",) if failures < ENOUGH_FAILURES else ()), "likelihood")
+
+    def _has_exact(self, measure: Measure) -> bool:
+        of_hazard = isinstance(measure, HazardMeasure | FurtherMeasure)
+        return has_exact_bounds(self.data, self.estimate.family, of_hazard=of_hazard)
 
     def end(self, measure: Measure, kind: str, tail: float, sign: float) -> Array:
         """Return the ends, shape (measure.size,); infinite where the bound is open to that side."""
@@ -62,14 +73,14 @@ class Bounder:
         ways: dict[str, Callable[[], Array]] = {
             "wald": lambda: wald_end(self.estimate, measure, root, sign),
             "likelihood": lambda: self._likelihood(measure, root, sign),
-            "exact": lambda: exact_end(self.estimate, self.data, measure, tail, sign),
+            "exact": lambda: self.exact.end(measure, tail, sign),
             "calibrated": lambda: self._calibrated(measure, tail, sign),
         }
-        return ways[self._kind_for(kind, measure)]()
+        return ways[self.choices(kind, measure)[0]]()
 
     def band_end(self, measure: Measure, kind: str, tail: float, sign: float) -> Array:
         """Return the same to the accuracy of a picture, quickly for many functions at once."""
-        kind = self._kind_for(kind, measure)
+        kind = self.choices(kind, measure)[0]
         if kind == "likelihood" and self.estimate.is_concave:
             return outline_end(measure, self.region(-float(ndtri(tail))), sign)
         if kind == "wald" or measure.size <= _SLOW_BAND:
@@ -80,8 +91,10 @@ class Bounder:
         some = np.unique(np.linspace(0, measure.size - 1, _SLOW_BAND).round().astype(np.intp))
         return np.asarray(np.interp(every, some, self.end(measure.at(some), kind, tail, sign)))
 
-    def _kind_for(self, kind: str, measure: Measure) -> str:
-        return self.resolved(kind, of_hazard=isinstance(measure, HazardMeasure))
+    @cached_property
+    def exact(self) -> ExactBounds:
+        """The exact bounds of this estimate, where there are any."""
+        return ExactBounds(self.estimate, self.data)
 
     def region(self, root: float) -> Region:
         """Return the likelihood region at a signed root."""
@@ -90,9 +103,7 @@ class Bounder:
         return self._regions[root]
 
     def _likelihood(self, measure: Measure, root: float, sign: float) -> Array:
-        if self.estimate.is_concave:
-            return likelihood_end(self.estimate, measure, self.region(root), sign).value
-        return profile_end(self.estimate, measure, root, sign)
+        return self._points(measure, root, sign).value
 
     def _calibrated(self, measure: Measure, tail: float, sign: float) -> Array:
         ends = []
@@ -103,40 +114,53 @@ class Bounder:
 
     def _calibrated_band(self, measure: Measure, tail: float, sign: float) -> Array:
         """Join calibrations at some places of the band by a smooth curve of their signed roots."""
-        places = np.unique(np.linspace(0, measure.size - 1, _CALIBRATED_PLACES).round().astype(np.intp))
+        places = np.unique(np.linspace(0, measure.size - 1, _CALIBRATED_PLACES).round().astype(np.intp)).tolist()
         found: dict[int, float] = {}
-        for place in places.tolist():
-            nearest = next(reversed(found.values()), None)
+        # From the middle outwards, each from the root beside it.
+        for tried, place in enumerate(sorted(places, key=lambda place: abs(2 * place - measure.size + 1))):
+            if not found and tried == _TRIED_IN_VAIN:
+                break
+            nearest = found[min(found, key=lambda known: abs(known - place))] if found else None
             with suppress(BoundUnavailable):
                 found[place] = self._root(measure.at(np.array([place])), tail, sign, first=nearest)
         if not found:
             raise BoundUnavailable("The band cannot be calibrated here: choose the likelihood bound.")
+        found = dict(sorted(found.items()))
         # The same random numbers for all make the root a smooth function of the place.
         roots = smooth_through(np.array(list(found), dtype=np.float64), np.array(list(found.values())), measure.size)
+        if not self.estimate.is_concave:
+            return self._joined_ends(measure, roots, sign)
         levels = np.linspace(roots.min(), roots.max(), _ROOT_LEVELS) if np.ptp(roots) > 0 else roots[:1]
         ends = np.stack([outline_end(measure, self.region(float(level)), sign) for level in levels])
         return np.array([np.interp(root, levels, column) for root, column in zip(roots, ends.T, strict=True)])
 
+    def _joined_ends(self, measure: Measure, roots: Array, sign: float) -> Array:
+        """Return ends at a root for each place, where there is no outline: found at some places and joined."""
+        some = np.unique(np.linspace(0, measure.size - 1, _SLOW_BAND).round().astype(np.intp)).tolist()
+        ends = [self._points(measure.at(np.array([place])), float(roots[place]), sign).value[0] for place in some]
+        return np.asarray(np.interp(np.arange(measure.size), some, ends))
+
     def _root(self, measure: Measure, tail: float, sign: float, *, first: float | None = None) -> float:
         """Return the signed root at which the calibrated end of a measure of size 1 lies."""
 
-        def point_at(root: float) -> tuple[float, float]:
+        def point_at(root: float) -> tuple[float, float] | None:
             end = self._points(measure, root, sign)
-            if not np.isfinite(end.value[0]):
-                raise BoundUnavailable("The bound runs beyond all ages here, so it cannot be calibrated.")
-            return float(end.a[0]), float(end.b[0])
+            return (float(end.a[0]), float(end.b[0])) if np.isfinite(end.value[0]) else None
 
-        return self.calibrator.root(measure, sign, tail, point_at=point_at, first=first, proceed=self.proceed)
+        return self.calibrator(tail).root(measure, sign, tail, point_at=point_at, first=first, proceed=self.proceed)
 
     def _points(self, measure: Measure, root: float, sign: float) -> EndPoints:
-        return likelihood_end(self.estimate, measure, self.region(root), sign)
+        if self.estimate.is_concave:
+            return likelihood_end(self.estimate, measure, self.region(root), sign)
+        if isinstance(measure, FurtherMeasure):
+            return further_end(self.estimate, measure, root, sign)
+        return profile_end(self.estimate, measure, root, sign)
 
-    @property
-    def calibrator(self) -> Calibrator:
-        """The calibrator of this estimate, whose draws serve every reading."""
-        if not self._calibrators:
-            self._calibrators.append(calibrator_for(self.estimate, self.data))
-        return self._calibrators[0]
+    def calibrator(self, tail: float) -> Calibrator:
+        """Return the calibrator of this estimate for a tail, whose draws serve every reading."""
+        if tail not in self._calibrators:
+            self._calibrators[tail] = calibrator_for(self.estimate, self.data, tail)
+        return self._calibrators[tail]
 
 
 def smooth_through(places: Array, values: Array, size: int) -> Array:

@@ -6,14 +6,22 @@ more than the terms of the log-likelihood.
 
 from __future__ import annotations
 
-from abc import ABC, abstractmethod
 from dataclasses import dataclass
-from typing import NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
 
+from reliability_app.engine.bounds.curve import Curve, CurvePoints
+from reliability_app.engine.bounds.further_curves import MovedCurve, SolvedCurve, TabulatedCurve
 from reliability_app.engine.families import StandardDistribution
+from reliability_app.engine.further_measures import (
+    ConditionalMeasure,
+    FurtherMeasure,
+    HazardAgeMeasure,
+    MeanMeasure,
+    ModeMeasure,
+    ResidualMeasure,
+)
 from reliability_app.engine.life_measures import HazardMeasure, LifeMeasure, Measure, ScoreMeasure, SlopeMeasure
 from reliability_app.engine.newton import DECREMENT_REACHED, Evaluate
 
@@ -22,29 +30,6 @@ Array = NDArray[np.float64]
 _MOST_STEPS = 80
 _MOST_HALVINGS = 50
 _ROUNDING = 1e-13
-
-
-class CurvePoints(NamedTuple):
-    """Points of a curve and their derivatives in u; each of the shape of u."""
-
-    a: Array
-    b: Array
-    a_first: Array
-    b_first: Array
-    a_second: Array
-    b_second: Array
-
-
-class Curve(ABC):
-    """Points (a, b) on which a measure keeps its value."""
-
-    @abstractmethod
-    def points(self, u: Array) -> CurvePoints:
-        """Return the points at the free coordinate u, with derivatives."""
-
-    @abstractmethod
-    def start(self, a: float, b: float) -> float:
-        """Return the u of the curve's point nearest in spirit to (a, b)."""
 
 
 @dataclass(frozen=True)
@@ -113,7 +98,23 @@ def curve_of(measure: Measure, value: float) -> Curve:
             return HazardCurve(value, float(measure.y[0]), measure.standard)
         case SlopeMeasure():
             return SlopeCurve(float(np.exp(value)))
+        case HazardAgeMeasure():
+            return HazardCurve(float(measure.level[0]) + measure.slope * value, value, measure.standard)
+        case MeanMeasure() | ModeMeasure():
+            return TabulatedCurve(MovedCurve(measure, value))
+        case ResidualMeasure() | ConditionalMeasure():
+            return TabulatedCurve(SolvedCurve(measure, value))
     raise TypeError(f"{type(measure).__name__} has no curve on which it is constant.")
+
+
+def side_of(measure: Measure, curve: Curve, value: float, a: Array, b: Array) -> Array:
+    """Return on which side of `value` a measure of size 1 lies at points: 1 above it, -1 below, 0 on its curve."""
+    if isinstance(measure, FurtherMeasure) and isinstance(curve, TabulatedCurve):
+        # The curve says it without asking the measure at thousands of points.
+        away = a - curve.points(curve.place(b)).a
+        side = np.sign(away) if measure.rises_with_a else -np.sign(away)
+        return np.where(np.isnan(away), measure.limit, side)
+    return np.asarray(np.sign(measure.terms(a[None, :], b[None, :]).value[0] - value))
 
 
 @dataclass(frozen=True, eq=False)

@@ -1,99 +1,109 @@
-"""Exact bounds for complete (log)normal samples: non-central t for lives and reliabilities, chi-square for sigma.
-
-With n lives, or their logarithms, of mean m and standard deviation s (divisor n - 1), (m - y_p) sqrt(n)/s has the
-non-central t distribution with n - 1 degrees of freedom and non-centrality -z_p sqrt(n) (Owen 1968; Hahn & Meeker 1991,
-ch. 4; cited from memory). At z_p = 0 this is Student's t for mu.
-"""
+"""Exact bounds: whether they exist for some data and a family, and by which way they are computed."""
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from contextlib import suppress
+from dataclasses import dataclass, field
+from enum import Enum
 
 import numpy as np
 from numpy.typing import NDArray
-from scipy.optimize import brentq
-from scipy.special import chdtri, nctdtr, nctdtrit
 
+from reliability_app.engine.bounds.chi_square import chi_square_end
+from reliability_app.engine.bounds.conditional import ConditionalBounds
+from reliability_app.engine.bounds.non_central_t import NO_EXACT_BOUND_OF_READING, non_central_t_end
 from reliability_app.engine.errors import BoundUnavailable
 from reliability_app.engine.estimate import Estimate
+from reliability_app.engine.families import Family
 from reliability_app.engine.life_data import LifeData
 from reliability_app.engine.life_measures import LifeMeasure, Measure, ScoreMeasure, SlopeMeasure
 
 Array = NDArray[np.float64]
 
-
-@dataclass(frozen=True)
-class _Moments:
-    """Size, mean and standard deviation (divisor n - 1) of the standardised places of the lives."""
-
-    n: float
-    mean: float
-    deviation: float
+# With more failures the quadrature takes longer than half a second, and the likelihood bound is as good.
+_MOST_RECORDS = 300
 
 
-def has_exact_bounds(data: LifeData, family_name: str) -> bool:
-    """True for complete lognormal or normal data of at least two units."""
-    return family_name in ("lognormal", "normal") and data.is_complete and data.unit_count >= 2
+class ExactWay(Enum):
+    """How an exact bound is computed."""
+
+    NON_CENTRAL_T = "non-central t"
+    CHI_SQUARE = "chi-square"
+    CONDITIONAL = "conditional on the ancillaries"
 
 
-def exact_end(estimate: Estimate, data: LifeData, measure: Measure, tail: float, sign: float) -> Array:
-    """Return the lower (sign -1) or upper (sign 1) ends, shape (measure.size,), with probability `tail` beyond.
+def exact_way(data: LifeData, family: Family) -> ExactWay | None:
+    """Return the way to exact bounds, or None where no exact bound is known.
 
-    Raises
-    ------
-    BoundUnavailable
-        If the data are not complete, the family is neither the lognormal nor the normal, or the reading is a hazard.
+    Complete data, or a test stopped at a fixed number of failures (all running units at the age of the last failure).
     """
-    if not has_exact_bounds(data, estimate.family.name):
+    if family.fixed_sigma is not None:
+        return ExactWay.CHI_SQUARE if data.is_failed.all() or stops_at_a_failure(data) else None
+    if not (data.is_complete or stops_at_a_failure(data)):
+        return None
+    failures = data.lower[data.is_failed]
+    if failures.min() == failures.max():
+        return None
+    if family.name in ("lognormal", "normal") and data.is_complete:
+        return ExactWay.NON_CENTRAL_T
+    return ExactWay.CONDITIONAL if failures.size <= _MOST_RECORDS else None
+
+
+def has_exact_bounds(data: LifeData, family: Family, *, of_hazard: bool = False) -> bool:
+    """True where exact bounds of lives, reliabilities and parameters are known; of a hazard by chi-square only."""
+    way = exact_way(data, family)
+    return way is not None and (not of_hazard or way is ExactWay.CHI_SQUARE)
+
+
+def stops_at_a_failure(data: LifeData) -> bool:
+    """True where the data show a test stopped at a failure: all running units, watched from age 0, are as old as it."""
+    running, failed = data.lower[data.is_running], data.lower[data.is_failed]
+    if not (running.size and failed.size) or data.entered.any() or data.is_found_failed.any():
+        return False
+    return bool((running == failed.max()).all())
+
+
+@dataclass(frozen=True, eq=False)
+class ExactBounds:
+    """The exact bounds of one maximum likelihood estimate; what is slow is computed once."""
+
+    estimate: Estimate
+    data: LifeData
+    _conditional: list[ConditionalBounds] = field(default_factory=list)
+
+    def end(self, measure: Measure, tail: float, sign: float) -> Array:
+        """Return the lower (sign -1) or upper (sign 1) ends, shape (measure.size,), with probability `tail` beyond.
+
+        Raises
+        ------
+        BoundUnavailable
+            If no exact bound is known for these data and this family, or for this reading.
+        """
+        match exact_way(self.data, self.estimate.family):
+            case ExactWay.NON_CENTRAL_T:
+                # The library's non-central t gives up far outside two or three lives, where quadrature does not.
+                with suppress(BoundUnavailable):
+                    return non_central_t_end(self.estimate, measure, tail, sign)
+                return self._conditional_end(measure, tail, sign)
+            case ExactWay.CHI_SQUARE:
+                return chi_square_end(self.estimate, measure, tail, sign)
+            case ExactWay.CONDITIONAL:
+                return self._conditional_end(measure, tail, sign)
         raise BoundUnavailable(
-            "An exact bound is known here only for the lognormal and the normal family and complete data (every unit "
-            "failed at a known age): choose the likelihood bound."
+            "An exact bound is known only for complete data (every unit failed at a known age) and for a test stopped "
+            f"at a fixed number of failures, up to {_MOST_RECORDS} of them at different ages: choose the calibrated or "
+            "the likelihood bound."
         )
-    moments, below = _moments(estimate), tail if sign < 0 else 1.0 - tail
-    match measure:
-        case LifeMeasure():
-            return np.array([_life_end(moments, z, 1.0 - below) for z in measure.z])
-        case ScoreMeasure():
-            return np.array([_score_end(moments, y, below) for y in measure.y])
-        case SlopeMeasure():
-            return np.array([_slope_end(moments, below)])
-    raise BoundUnavailable("No exact bound of a hazard is known: choose the likelihood bound.")
 
-
-def _moments(estimate: Estimate) -> _Moments:
-    y, weight = estimate.sample.failed.y[0], estimate.sample.failed.weight[0]
-    n = float(weight.sum())
-    mean = float(weight @ y) / n
-    return _Moments(n, mean, float(np.sqrt(weight @ (y - mean) ** 2 / (n - 1.0))))
-
-
-def _life_end(moments: _Moments, z: float, level: float) -> float:
-    root_n = np.sqrt(moments.n)
-    factor = float(nctdtrit(moments.n - 1.0, -z * root_n, level)) / root_n
-    return float(moments.mean - factor * moments.deviation)
-
-
-def _score_end(moments: _Moments, y: float, level: float) -> float:
-    """Return z such that the life bound at z, of the opposite side, is y."""
-    root_n = np.sqrt(moments.n)
-    observed = (moments.mean - y) / moments.deviation * root_n
-
-    def excess(z: float) -> float:
-        share = float(nctdtr(moments.n - 1.0, -z * root_n, observed))
-        if np.isnan(share):
-            # Far from the data the library gives up; there the share is 0 or 1 to all digits.
-            share = float(observed > -z * root_n)
-        return share - level
-
-    centre = -observed / root_n
-    width = 1.0
-    while excess(centre - width) > 0 or excess(centre + width) < 0:
-        width *= 2.0
-        if width > 1e3:
-            raise BoundUnavailable("This age lies too far outside the data for an exact bound to be computed.")
-    return float(brentq(excess, centre - width, centre + width, xtol=1e-12, rtol=1e-12))
-
-
-def _slope_end(moments: _Moments, level: float) -> float:
-    freedom = moments.n - 1.0
-    return 0.5 * float(np.log(chdtri(freedom, 1.0 - level) / freedom)) - float(np.log(moments.deviation))
+    def _conditional_end(self, measure: Measure, tail: float, sign: float) -> Array:
+        if not self._conditional:
+            self._conditional.append(ConditionalBounds(self.estimate))
+        bounds = self._conditional[0]
+        match measure:
+            case LifeMeasure():
+                return bounds.life_end(measure, tail, sign)
+            case ScoreMeasure():
+                return bounds.score_end(measure, tail, sign)
+            case SlopeMeasure():
+                return bounds.slope_end(tail, sign)
+        raise BoundUnavailable(NO_EXACT_BOUND_OF_READING)

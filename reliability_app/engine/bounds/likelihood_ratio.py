@@ -94,6 +94,11 @@ def _cross(likelihood: Terms, asked: Terms) -> tuple[Array, Array]:
     return cross, size
 
 
+def lagrange_step(likelihood: Terms, asked: Terms, gap: Array) -> tuple[Array, Array]:
+    """Return the Newton step in (a, b) to where the log-likelihood has no gap and the gradients are parallel."""
+    return _step(likelihood, asked, gap, _cross(likelihood, asked)[0])
+
+
 def _step(likelihood: Terms, asked: Terms, gap: Array, cross: Array) -> tuple[Array, Array]:
     """Newton step for gap = 0 and cross = 0."""
     cross_a = (

@@ -12,6 +12,8 @@ import numpy as np
 from numpy.typing import NDArray
 from scipy.optimize import brentq
 
+from reliability_app.engine.bounds.constrained import curve_of
+from reliability_app.engine.bounds.likelihood_ratio import EndPoints
 from reliability_app.engine.estimate import Estimate
 from reliability_app.engine.families import StandardDistribution
 from reliability_app.engine.life_measures import HazardMeasure, LifeMeasure, Measure, ScoreMeasure, SlopeMeasure
@@ -25,13 +27,24 @@ _ZOOMS = 6
 _MOST_DOUBLINGS = 12
 
 
-def profile_end(estimate: Estimate, measure: Measure, root: float, sign: float) -> Array:
-    """Return the lower (sign -1) or upper (sign 1) ends, shape (measure.size,); infinite where none is reached."""
+def profile_end(estimate: Estimate, measure: Measure, root: float, sign: float) -> EndPoints:
+    """Return the lower (sign -1) or upper (sign 1) ends, each of shape (measure.size,); infinite where none is reached.
+
+    The points are those at which the log-likelihood is greatest among all with that value of the measure.
+    """
     start = measure.terms(np.array([estimate.a]), np.array([estimate.b]))
     gradient = np.stack([start.d_a, start.d_b], axis=-1)
     errors = np.sqrt(np.einsum("ij,jk,ik->i", gradient, estimate.covariance_ab, gradient))
-    ends = zip(_lines(measure, estimate), start.value.tolist(), errors.tolist(), strict=True)
-    return np.array([_end(estimate, line, value, sign * error, root) for line, value, error in ends])
+    lines = _lines(measure, estimate)
+    found = zip(lines, start.value.tolist(), errors.tolist(), strict=True)
+    values = [_end(estimate, line, value, sign * error, root) for line, value, error in found]
+    ends = [(value, *_highest(estimate, line, value)[1:]) for line, value in zip(lines, values, strict=True)]
+    return EndPoints(*(np.array(column) for column in zip(*ends, strict=True)))
+
+
+def profiled_at(estimate: Estimate, measure: Measure, value: float) -> tuple[float, float, float]:
+    """Return the greatest log-likelihood among all points at which a measure of size 1 has a value, and the point."""
+    return _highest(estimate, _lines(measure, estimate)[0], value)
 
 
 def _lines(measure: Measure, estimate: Estimate) -> list[Points]:
@@ -45,7 +58,7 @@ def _lines(measure: Measure, estimate: Estimate) -> list[Points]:
             return [_hazard_line(estimate, measure.standard, y) for y in measure.y.tolist()]
         case SlopeMeasure():
             return [_slope_line(estimate)]
-    raise TypeError(f"{type(measure).__name__} has no line along which it is constant.")
+    return [_curve_line(estimate, measure.at(np.array([place]))) for place in range(measure.size)]
 
 
 def _life_line(estimate: Estimate, z: float) -> Points:
@@ -86,6 +99,17 @@ def _hazard_line(estimate: Estimate, standard: StandardDistribution, y: float) -
     return line
 
 
+def _curve_line(estimate: Estimate, measure: Measure) -> Points:
+    """Follow the curve on which a further reading has a value, from the point of it that goes with the estimate."""
+
+    def line(value: float, u: Array) -> tuple[Array, Array]:
+        curve = curve_of(measure, value)
+        at = curve.points(curve.start(estimate.a, estimate.b) + u)
+        return at.a, at.b
+
+    return line
+
+
 def _end(estimate: Estimate, line: Points, value: float, step: float, root: float) -> float:
     """Walk away from the estimate in doubling steps until the signed root passes `root`, then find where it does."""
     inside = value
@@ -100,17 +124,33 @@ def _end(estimate: Estimate, line: Points, value: float, step: float, root: floa
 
 
 def _signed_root(estimate: Estimate, line: Points, value: float) -> float:
-    """Return sqrt(2 (l_max - profile)) at a value of the reading, by ever finer grids over the free coordinate."""
-    low, high, best = -_REACH, _REACH, -np.inf
+    """Return sqrt(2 (l_max - profile)) at a value of the reading."""
+    top = float(estimate.terms.value[0])
+    return float(np.sqrt(2.0 * max(top - _highest(estimate, line, value)[0], 0.0)))
+
+
+def _highest(estimate: Estimate, line: Points, value: float) -> tuple[float, float, float]:
+    """Return the greatest log-likelihood on a line and its point (a, b), by ever finer grids over the free coordinate.
+
+    At an infinite value there is no such point.
+    """
+    best = (-np.inf, np.nan, np.nan)
+    if not np.isfinite(value):
+        return best
+    low, high = -_REACH, _REACH
     for _ in range(_ZOOMS):
         grid = np.linspace(low, high, _GRID)
-        values = estimate.evaluate(*line(value, grid)).value
+        # Far out on a line a point may lie beyond all numbers, and counts for nothing.
+        with np.errstate(over="ignore", under="ignore", invalid="ignore", divide="ignore"):
+            a, b = line(value, grid)
+            values = estimate.evaluate(a, b).value
         values = np.where(np.isfinite(values), values, -np.inf)
         at = int(np.argmax(values))
-        best = max(best, float(values[at]))
+        if values[at] > best[0]:
+            best = float(values[at]), float(a[at]), float(b[at])
         step = grid[1] - grid[0]
         # At an end of the first grid the next one looks beyond it.
         low, high = grid[at] - step, grid[at] + step
         if at in (0, _GRID - 1):
             low, high = grid[at] - _GRID * step, grid[at] + _GRID * step
-    return float(np.sqrt(2.0 * max(float(estimate.terms.value[0]) - best, 0.0)))
+    return best

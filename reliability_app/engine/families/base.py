@@ -71,6 +71,10 @@ class StandardDistribution(ABC):
     def log_moment(self, power: Array) -> Array:
         """Return ln E exp(power * z), the logarithm of a moment of the life itself."""
 
+    def picked(self, chosen: NDArray[np.bool_]) -> StandardDistribution:  # noqa: ARG002 - one serves all places
+        """Return the distribution for the chosen places of an array of z, which then stand in one row."""
+        return self
+
     def log_hazard(self, z: Array) -> Derivatives:
         """Return ln(f(z)/S(z))."""
         density, survival = self.log_density(z), self.log_survival(z)
@@ -155,6 +159,11 @@ class Family:
         return False
 
     @property
+    def given_shape(self) -> float | None:
+        """The shape where the user gave it, so that only the scale is estimated."""
+        return None
+
+    @property
     def parameter_names(self) -> tuple[str, ...]:
         """The customary parameters in customary order."""
         return tuple(self.rules)
@@ -162,4 +171,4 @@ class Family:
     @property
     def parameter_count(self) -> int:
         """The number of parameters estimated."""
-        return len(self.parameter_names)
+        return len(self.parameter_names) - (self.given_shape is not None)

@@ -43,12 +43,19 @@ def log_interval(
     narrow = half < widest
     if narrow.all():
         return _integrated(standard, at_middle, middle, half)
-    subtracted = _subtracted(standard, *(ends or (middle - half, middle + half)), middle < 0.0)
+    low, high = ends or (middle - half, middle + half)
     if not narrow.any():
-        return subtracted
-    # The wide intervals are given a width that does no harm while the narrow ones are integrated.
-    integrated = _integrated(standard, at_middle, middle, np.where(narrow, half, 0.1 * widest))
-    return IntervalDerivatives(*(np.where(narrow, *both) for both in zip(integrated, subtracted, strict=True)))
+        return _subtracted(standard, low, high, middle < 0.0)
+    found = IntervalDerivatives(*(np.empty_like(middle) for _ in IntervalDerivatives._fields))
+    at_narrow = Derivatives(*(column[narrow] for column in at_middle))
+    wide = ~narrow
+    for chosen, part in (
+        (narrow, _integrated(standard.picked(narrow), at_narrow, middle[narrow], half[narrow])),
+        (wide, _subtracted(standard.picked(wide), low[wide], high[wide], middle[wide] < 0.0)),
+    ):
+        for column, values in zip(found, part, strict=True):
+            column[chosen] = values
+    return found
 
 
 def _integrated(

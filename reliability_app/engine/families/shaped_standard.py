@@ -31,7 +31,11 @@ class ShapedStandard(StandardDistribution):
         """Return the distributions of the chosen rows; a single one serves all rows."""
         return self if self.shape.shape[0] == 1 else type(self)(self.shape[index])
 
-    def against(self, z: Array) -> Array:
+    def picked(self, chosen: NDArray[np.bool_]) -> Self:
+        """Return the distributions for the chosen places of an array of z, a shape for each."""
+        return type(self)(np.broadcast_to(self.against(chosen), chosen.shape)[chosen])
+
+    def against(self, z: Array | NDArray[np.bool_]) -> Array:
         """Return the shape with as many axes as z."""
         return self.shape.reshape(self.shape.shape + (1,) * (z.ndim - self.shape.ndim))
 

@@ -17,7 +17,7 @@ from numpy.typing import NDArray
 from reliability_app.engine.families import Derivatives, StandardDistribution
 from reliability_app.engine.families.normal import Normal
 from reliability_app.engine.life_data import LifeData
-from reliability_app.engine.sample import sample_of
+from reliability_app.engine.sample import sample_of, telling_ends
 from reliability_app.engine.shaped.sheaf import Coordinate, End, Sheaf, Slices
 from reliability_app.engine.shaped.transformed_sample import RawSample
 
@@ -54,10 +54,12 @@ class BirnbaumSaundersSheaf(Sheaf):
         self.raw = RawSample.of(data, 0.0) if raw is None else raw
         centred = sample_of(data)
         self.shift, self.spread = centred.shift, centred.spread
-        ages = np.concatenate([self.raw.failed.age, self.raw.running.age, self.raw.left.age, self.raw.upper])
+        ages = telling_ends(data)
         y = (np.log(ages) - self.shift) / self.spread
         self._low, self._high = float(y.min()), float(y.max())
-        ends = np.unique(data.upper[~data.is_running])
+        ends = np.unique(ages[~data.is_running])
+        if ends[0] == ends[-1]:
+            ends = np.unique(ages)
         self._sized_by = ends[:: max(1, ends.size // _SIZED_BY)]
 
     @property
@@ -98,12 +100,12 @@ class BirnbaumSaundersSheaf(Sheaf):
 
         def half_width(lower: Array, upper: Array) -> Array:
             half = 0.5 * np.log1p((upper - lower) / lower)
-            return 2.0 * np.cosh(0.5 * (self._x(lower, column) + half)) * np.sinh(0.5 * half) / self._size(column)
+            return 2.0 * np.cosh(0.5 * (self._x(lower, column) + half)) * np.sinh(0.5 * half) / self.size(column)
 
         failed = self.raw.failed
         x = np.abs(self._x(failed.age, column))
         log_cosh = 0.5 * x + np.log1p(np.exp(-x)) - np.log(2.0)
-        log_slope = (log_cosh - np.log(failed.age) - np.log(self._size(column))) @ failed.quantity
+        log_slope = (log_cosh - np.log(failed.age) - np.log(self.size(column))) @ failed.quantity
         return Slices(self.raw.carried(lambda age: self.to_y(age, column), half_width), _NORMAL, log_slope, True)
 
     def pinned_b(self, kappa: Array) -> Array:
@@ -114,23 +116,23 @@ class BirnbaumSaundersSheaf(Sheaf):
         """Return a = 0, and as b 1: the failures have the root mean square of all."""
         return np.zeros_like(kappa), np.ones_like(kappa)
 
-    def _size(self, kappa: Array) -> Array:
+    def size(self, kappa: Array) -> Array:
         """Return the root mean square over the failures of 2 sinh((ln age - ln scale)/2)."""
         v = 2.0 * np.sinh(0.5 * self._x(self._sized_by, kappa[..., None]))
         return np.asarray(np.sqrt(np.mean(np.square(v), axis=-1)))
 
     def to_y(self, age: Array, kappa: Array) -> Array:
         """Return 2 sinh((ln age - ln scale)/2), over its root mean square."""
-        return np.asarray(2.0 * np.sinh(0.5 * self._x(age, kappa)) / self._size(kappa))
+        return np.asarray(2.0 * np.sinh(0.5 * self._x(age, kappa)) / self.size(kappa))
 
     def log_slope_at(self, age: Array, kappa: Array) -> Array:
         """Return ln(dy/d age)."""
         x = np.abs(self._x(age, kappa))
-        return np.asarray(0.5 * x + np.log1p(np.exp(-x)) - np.log(2.0 * age * self._size(kappa)))
+        return np.asarray(0.5 * x + np.log1p(np.exp(-x)) - np.log(2.0 * age * self.size(kappa)))
 
     def life_reading(self, y: Array, kappa: Array) -> Derivatives:
         """Return ln age at a place on the line, with derivatives in y."""
-        half = 0.5 * self._size(kappa)
+        half = 0.5 * self.size(kappa)
         root = np.hypot(1.0, half * y)
         value = self.shift + self.spread * kappa + 2.0 * np.arcsinh(half * y)
         return Derivatives(value, 2.0 * half / root, -2.0 * half**3 * y / root**3)
@@ -142,10 +144,10 @@ class BirnbaumSaundersSheaf(Sheaf):
 
     def parts(self, kappa: Array) -> Sequence[tuple[Array | float, Array | float, Array | float]]:
         """Return ln shape and ln scale."""
-        return ((np.log(self._size(kappa)), 0.0, -1.0), (self.shift + self.spread * kappa, 0.0, 0.0))
+        return ((np.log(self.size(kappa)), 0.0, -1.0), (self.shift + self.spread * kappa, 0.0, 0.0))
 
     def mean_life(self, a: float, b: float, kappa: float) -> float:  # noqa: ARG002 - a is 0
         """Return scale (1 + shape^2/2)."""
         with np.errstate(over="ignore"):
-            shape = self._size(np.array(kappa)) / b
+            shape = self.size(np.array(kappa)) / b
             return float(np.exp(self.shift + self.spread * kappa) * (1.0 + 0.5 * shape**2))

@@ -12,6 +12,7 @@ import numpy as np
 from numpy.typing import NDArray
 from scipy.optimize import brentq
 
+from reliability_app.engine.errors import BoundUnavailable
 from reliability_app.engine.shaped.profile import Profile, profile
 from reliability_app.engine.shaped.rays import Rays, ray_ends
 from reliability_app.engine.shaped.shaped_estimate import ShapedEstimate
@@ -28,6 +29,10 @@ _RAY_ACCURACY = 1e-5
 _ROUGH, EXACT = 1e-3, 1e-12
 _EDGE_REACHED = 1e-14
 _FAR = 10.0
+_ROUGH_PROFILE = (
+    "The likelihood could not be followed to where it has fallen far enough, so no likelihood-ratio bound is given: "
+    "choose the Wald bound, or a family with fewer parameters."
+)
 
 
 @dataclass(frozen=True, eq=False)
@@ -169,6 +174,8 @@ def _edge_between(estimate: ShapedEstimate, target: float, inside: Array, outsid
             nearest.append(here.points[0])
         return min(root, _FAR * wanted) - wanted
 
+    if excess(inside[2]) > 0.0 or excess(outside[2]) < 0.0:
+        raise BoundUnavailable(_ROUGH_PROFILE)
     brentq(excess, inside[2], outside[2], xtol=accuracy * abs(outside[2] - inside[2]), rtol=_EDGE_REACHED)
     last = max(nearest, key=lambda point: abs(point[2] - estimate.point[2]))
     return Edge(last[2], last[0], last[1], None)

@@ -16,6 +16,8 @@ from reliability_app.engine.shaped.sheaf import Sheaf
 Array = NDArray[np.float64]
 
 _MOST_STEPS, _MOST_HALVINGS = 60, 40
+# Halvings in all: where a climb needs more, what it climbs has a corner, and no smooth maximum is near.
+_MOST_HALVINGS_IN_ALL = 300
 _ROUNDING = 1e-12
 _CREST = 1e-11
 _PROFILE_TOLERANCE = 1e-7
@@ -128,6 +130,7 @@ def climb(sheaf: Sheaf, start: Array) -> Peak | None:
     enough = DECREMENT_REACHED * max(1.0, sheaf.failures)
     point = start.copy()
     here = likelihood_jet(sheaf, point[None])
+    halvings = 0
     for steps in range(_MOST_STEPS):
         step, decrement, is_peak = _newton_step(here.of(free))
         if not np.isfinite(decrement):
@@ -141,7 +144,10 @@ def climb(sheaf: Sheaf, start: Array) -> Peak | None:
         moved = _moved(sheaf, point, step, here)
         if moved is None:
             return None
-        point, here = moved
+        point, here, halved = moved
+        halvings += halved
+        if halvings > _MOST_HALVINGS_IN_ALL:
+            return None
     return None
 
 
@@ -156,17 +162,17 @@ def _newton_step(here: Jet) -> tuple[Array, float, bool]:
     return step, float(step @ here.gradient[0]), bool((values > 0).all())
 
 
-def _moved(sheaf: Sheaf, point: Array, step: Array, here: Jet) -> tuple[Array, Jet] | None:
-    """Go the longest of 1, 1/2, 1/4 ... of the step that does not lose."""
+def _moved(sheaf: Sheaf, point: Array, step: Array, here: Jet) -> tuple[Array, Jet, int] | None:
+    """Go the longest of 1, 1/2, 1/4 ... of the step that does not lose, and tell how often it was halved."""
     length, floor = 1.0, float(here.value[0])
     floor -= _ROUNDING * max(1.0, abs(floor))
-    for _ in range(_MOST_HALVINGS):
+    for halved in range(_MOST_HALVINGS):
         tried = point.copy()
         tried[list(sheaf.free)] += length * step
         if tried[1] > 0:
             with np.errstate(over="ignore", invalid="ignore", divide="ignore"):
                 there = likelihood_jet(sheaf, tried[None])
             if there.value[0] >= floor:
-                return tried, there
+                return tried, there, halved
         length *= 0.5
     return None

@@ -30,9 +30,14 @@ class ShapedBounder:
     title: str
     _outlines: dict[float, Outline] = field(default_factory=dict)
 
-    def resolved(self, kind: str) -> str:
-        """Return the kind that "automatic" stands for: the likelihood ratio."""
-        return "likelihood" if kind == "automatic" else kind
+    def choices(self, kind: str) -> tuple[str, ...]:
+        """Return the kinds that `kind` stands for: "automatic" is the likelihood ratio."""
+        return ("likelihood",) if kind == "automatic" else (kind,)
+
+    @property
+    def is_large(self) -> bool:
+        """True where there are too many records for an outline."""
+        return self.estimate.sheaf.records > _LARGE
 
     def end(self, measure: ShapedMeasure, kind: str, tail: float, sign: float) -> Array:
         """Return the lower (sign -1) or upper (sign 1) ends with probability `tail` beyond, shape (measure.size,).
@@ -45,7 +50,7 @@ class ShapedBounder:
         return self._end(measure, kind, tail, sign, searched=True)
 
     def _end(self, measure: ShapedMeasure, kind: str, tail: float, sign: float, *, searched: bool) -> Array:
-        kind = self.resolved(kind)
+        (kind,) = self.choices(kind)
         if kind not in ("likelihood", "wald"):
             raise BoundUnavailable(
                 f"Bounds of kind {kind!r} are not known for the {self.title} family: choose the likelihood bound."
@@ -59,7 +64,7 @@ class ShapedBounder:
         if kind == "wald":
             return self._wald(measure, sign * root)
         with np.errstate(over="ignore", invalid="ignore", divide="ignore", under="ignore"):
-            if self.estimate.sheaf.records > _LARGE:
+            if self.is_large:
                 return extremes_near(self.estimate, measure, root, sign)
             return extremes(self.estimate, measure, self.outline(root), sign, searched=searched)
 
@@ -78,10 +83,10 @@ class ShapedBounder:
 
         In a large sample with many failures that is the Wald band, which no eye can tell from the likelihood's own.
         """
-        sheaf = self.estimate.sheaf
-        if self.resolved(kind) == "likelihood" and sheaf.records > _LARGE and sheaf.failures > _MANY_FAILURES:
+        (kind,) = self.choices(kind)
+        if kind == "likelihood" and self.is_large and self.estimate.sheaf.failures > _MANY_FAILURES:
             return self.end(measure, "wald", tail, sign)
-        if self.resolved(kind) != "likelihood" or measure.size <= _BAND:
+        if kind != "likelihood" or measure.size <= _BAND:
             return self.end(measure, kind, tail, sign)
         every = np.arange(measure.size)
         some = np.unique(np.linspace(0, measure.size - 1, _BAND).round().astype(np.intp))

@@ -19,6 +19,7 @@ from numpy.typing import NDArray
 from reliability_app.engine.families import Derivatives, Family, Rule, StandardDistribution
 from reliability_app.engine.families.log_gamma_density import rise
 from reliability_app.engine.life_data import LifeData
+from reliability_app.engine.sample import telling_ends
 from reliability_app.engine.shaped.sheaf import Coordinate, End, Sheaf, Slices
 from reliability_app.engine.shaped.transformed_sample import RawSample
 
@@ -43,10 +44,11 @@ class ThresholdSheaf(Sheaf):
         self.family = family
         self.raw = RawSample.of(data, -np.inf) if raw is None else raw
         self.first = float(data.first_failure or 0.0)
-        width = data.last_observation - self.first
+        ends = telling_ends(data)
+        width = float(ends.max()) - self.first
         self.range = width if width > 0 else max(abs(self.first), 1.0)
         self.b_is_pinned = family.fixed_sigma is not None
-        self._centred_on = self._places()
+        self._centred_on = self._places(ends[~data.is_running])
 
     @property
     def coordinates(self) -> tuple[Coordinate, ...]:
@@ -118,22 +120,23 @@ class ThresholdSheaf(Sheaf):
         ratio = np.where(tiny, 1.0 - 0.5 * safe, np.log1p(safe) / np.where(tiny, 1.0, safe))
         return np.where(inside, (age - self.first) * ratio, -np.inf)
 
-    def _places(self) -> Array:
+    def _places(self, failures: Array) -> Array:
         """Return the ages by which units failed, or some of them: the line is centred on these."""
-        ends = np.unique(self.data.upper[~self.data.is_running])
+        ends = np.unique(failures)
         if ends.size == 1:
             ends = np.append(ends, self.first + self.range)
         return ends[:: max(1, ends.size // _CENTRED_ON)]
 
-    def _centre(self, g: Array) -> tuple[Array, Array]:
-        """Return location and spread of the failures on the line, each of the shape of g."""
-        v = self._v(self._centred_on, g[..., None])
-        return v.mean(axis=-1), v.std(axis=-1)
+    def centre(self, g: Array) -> tuple[Array, Array]:
+        """Return location and spread of the failures on the line at g = 1/(first failure - threshold)."""
+        # In ranges, since the squares of ages in a very small unit may be beyond all numbers.
+        v = self._v(self._centred_on, g[..., None]) / self.range
+        return self.range * v.mean(axis=-1), self.range * v.std(axis=-1)
 
     def slices(self, kappa: Array) -> Slices:
         """Return the problems at a list of kappa: the units on another line each."""
         g = self._g(kappa)
-        mean, spread = self._centre(g)
+        mean, spread = self.centre(g)
         column, slope = g[:, None], spread[:, None]
 
         def to_y(age: Array) -> Array:
@@ -155,7 +158,7 @@ class ThresholdSheaf(Sheaf):
         if self.family.fixed_sigma is None:
             return np.ones_like(kappa)
         g = self._g(kappa)
-        return g * self._centre(g)[1] / self.family.fixed_sigma
+        return g * self.centre(g)[1] / self.family.fixed_sigma
 
     def starts(self, kappa: Array) -> tuple[Array, Array]:
         """Start where half of the share failed lies at the middle of the failures, with their own spread."""
@@ -165,7 +168,7 @@ class ThresholdSheaf(Sheaf):
     def to_y(self, age: Array, kappa: Array) -> Array:
         """Return the place on the line of an age; minus infinity at the threshold and before."""
         g = self._g(kappa)
-        mean, spread = self._centre(g)
+        mean, spread = self.centre(g)
         return (self._v(age, g) - mean) / spread
 
     def log_slope_at(self, age: Array, kappa: Array) -> Array:
@@ -173,12 +176,12 @@ class ThresholdSheaf(Sheaf):
         g = self._g(kappa)
         room = 1.0 + g * (age - self.first)
         inside = room > 0.0
-        return np.where(inside, -np.log(np.where(inside, room, 1.0)) - np.log(self._centre(g)[1]), -np.inf)
+        return np.where(inside, -np.log(np.where(inside, room, 1.0)) - np.log(self.centre(g)[1]), -np.inf)
 
     def life_reading(self, y: Array, kappa: Array) -> Derivatives:
         """Return the age itself at a place on the line, with derivatives in y."""
         g = self._g(kappa)
-        mean, spread = self._centre(g)
+        mean, spread = self.centre(g)
         v = mean + spread * y
         with np.errstate(over="ignore", invalid="ignore"):
             stretch = spread * np.exp(g * v)
@@ -188,14 +191,19 @@ class ThresholdSheaf(Sheaf):
         """Return the age: the reading itself."""
         return reading
 
+    def threshold(self, kappa: Array) -> Array:
+        """Return the threshold."""
+        with np.errstate(divide="ignore"):
+            return np.asarray(self.first - 1.0 / self._g(kappa))
+
     def parts(self, kappa: Array) -> Sequence[tuple[Array | float, Array | float, Array | float]]:
         """Return mu = ln(scale of the line) + ..., ln sigma, and the threshold."""
         g = self._g(kappa)
-        mean, spread = self._centre(g)
+        mean, spread = self.centre(g)
         with np.errstate(divide="ignore"):
             mu = (-np.log(g) + g * mean, g * spread, 0.0)
             log_sigma = (np.log(g * spread), 0.0, -1.0)
-            threshold = (self.first - 1.0 / g, 0.0, 0.0)
+        threshold = (self.threshold(kappa), 0.0, 0.0)
         return (mu, threshold) if self.b_is_pinned else (mu, log_sigma, threshold)
 
     def mean_life(self, a: float, b: float, kappa: float) -> float:
@@ -203,5 +211,5 @@ class ThresholdSheaf(Sheaf):
         at = np.array([kappa])
         (base, of_location, _), *rest = self.parts(at)
         mu = float(np.asarray(base)[0] - np.asarray(of_location)[0] * a / b)
-        sigma = float(self._g(at)[0] * self._centre(self._g(at))[1][0]) / b
+        sigma = float(self._g(at)[0] * self.centre(self._g(at))[1][0]) / b
         return float(np.asarray(rest[-1][0])[0]) + self.family.mean_life(mu, sigma)

@@ -3,16 +3,15 @@
 from __future__ import annotations
 
 import pyqtgraph as pg
-from PySide6.QtCore import QPoint, QRect, Qt, Signal
-from PySide6.QtGui import QContextMenuEvent, QFocusEvent, QImage, QKeyEvent, QPainter, QPaintEvent, QPalette, QPen
+from PySide6.QtCore import QPoint, QRect, QRectF, Qt, Signal
+from PySide6.QtGui import QContextMenuEvent, QFocusEvent, QKeyEvent, QMouseEvent, QPainter, QPaintEvent, QPalette, QPen
 
-from reliability_app.windows.charts.chart_ranges import Range
+from reliability_app.reports.chart_ranges import Range
 from reliability_app.windows.charts.round_axis import RoundAxis
 
 _PAN = 0.1  # share of the view that an arrow key moves
 _ZOOM = 1.25
 _SMALLEST = 1e-5  # share of the whole picture below which nothing is left to see
-_PICTURE_SCALE = 2.0  # pixels of a copied picture for each on the screen: slides and prints enlarge
 _MARGINS = (6, 10, 16, 6)
 
 _ARROWS = {
@@ -22,14 +21,49 @@ _ARROWS = {
     Qt.Key.Key_Down: (0.0, -1.0),
 }
 _MORE = (Qt.Key.Key_Up, Qt.Key.Key_Right)
+_ADDING = Qt.KeyboardModifier.ControlModifier | Qt.KeyboardModifier.ShiftModifier
 _READING_KEYS = Qt.KeyboardModifier.ShiftModifier | Qt.KeyboardModifier.AltModifier
+
+
+class FramingBox(pg.ViewBox):  # type: ignore[misc]  # pyqtgraph ships no types
+    """A view that draws a frame while Shift and the left button are held, and pans without Shift.
+
+    Signals
+    -------
+    framed(QRectF, bool)
+        The frame, in positions of the axes, and whether Ctrl was held.
+    """
+
+    framed = Signal(object, bool)
+
+    def __init__(self) -> None:
+        super().__init__()
+        self.held = Qt.KeyboardModifier.NoModifier
+
+    @property
+    def is_framing(self) -> bool:
+        """True where a drag that begins now draws a frame."""
+        return bool(self.held & Qt.KeyboardModifier.ShiftModifier)
+
+    def mouseDragEvent(self, event: pg.GraphicsScene.mouseEvents.MouseDragEvent, axis: int | None = None) -> None:
+        """Draw the frame, or leave the drag to pan."""
+        if event.button() != Qt.MouseButton.LeftButton or not self.is_framing or axis is not None:
+            super().mouseDragEvent(event, axis=axis)
+            return
+        event.accept()
+        if not event.isFinish():
+            self.updateScaleBox(event.buttonDownPos(), event.pos())
+            return
+        self.rbScaleBox.hide()
+        corners = [self.mapToView(corner) for corner in (event.buttonDownPos(), event.pos())]
+        self.framed.emit(QRectF(*corners).normalized(), bool(self.held & Qt.KeyboardModifier.ControlModifier))
 
 
 class ChartView(pg.PlotWidget):  # type: ignore[misc]  # pyqtgraph ships no types
     """A plot with the keyboard of the program.
 
     Arrows pan, + and - zoom, 0 and Home reset; Alt with an arrow moves the reading to the next round percent, Shift
-    with an arrow by a small step.
+    with an arrow by a small step. Enter lets a reading be typed.
 
     Signals
     -------
@@ -43,6 +77,16 @@ class ChartView(pg.PlotWidget):  # type: ignore[misc]  # pyqtgraph ships no type
         The key of the step was released.
     menu_wanted(QPoint)
         The context menu is wanted at this place of the screen.
+    typing_wanted()
+        Enter was pressed: a reading is to be typed.
+    axis_double_clicked(str)
+        "level" or "upright".
+    double_clicked(QPointF)
+        The chart itself, at a point of the scene.
+    clicked(QPointF, bool)
+        A click with the left button at a point of the scene, and whether it is to add (Ctrl or Shift).
+    framed(QRectF, bool)
+        A frame was drawn with Shift and the left button, in positions of the axes, and whether it is to add (Ctrl).
     """
 
     moved_by_hand = Signal()
@@ -50,9 +94,17 @@ class ChartView(pg.PlotWidget):  # type: ignore[misc]  # pyqtgraph ships no type
     reading_stepped = Signal(int, bool)
     reading_step_done = Signal()
     menu_wanted = Signal(QPoint)
+    typing_wanted = Signal()
+    axis_double_clicked = Signal(str)
+    double_clicked = Signal(object)
+    clicked = Signal(object, bool)
+    framed = Signal(object, bool)
 
     def __init__(self, level: RoundAxis, upright: RoundAxis) -> None:
-        super().__init__(axisItems={"bottom": level, "left": upright}, enableMenu=False)
+        self._axes = {"level": level, "upright": upright}
+        box = FramingBox()
+        super().__init__(viewBox=box, axisItems={"bottom": level, "left": upright}, enableMenu=False)
+        box.framed.connect(self.framed)
         self.setFrameShape(self.Shape.NoFrame)
         self.plotItem.hideButtons()
         self.plotItem.layout.setContentsMargins(*_MARGINS)
@@ -61,18 +113,6 @@ class ChartView(pg.PlotWidget):  # type: ignore[misc]  # pyqtgraph ships no type
         self.plotItem.vb.sigRangeChangedManually.connect(self._moved)
         self.scene().sigMouseClicked.connect(self._clicked)
         self._stepping = False
-
-    def picture(self) -> QImage:
-        """Return the chart as an image, finer than on the screen."""
-        size = self.viewport().size()
-        image = QImage(size * _PICTURE_SCALE, QImage.Format.Format_RGB32)
-        image.setDevicePixelRatio(_PICTURE_SCALE)
-        image.fill(self.backgroundBrush().color())
-        painter = QPainter(image)
-        painter.setRenderHints(self.renderHints())
-        self.render(painter, QRect(QPoint(0, 0), size), self.viewport().rect())
-        painter.end()
-        return image
 
     def look_at(self, part: Range, limits: Range) -> None:
         """Show a part, from which one can move and zoom within the limits."""
@@ -113,6 +153,8 @@ class ChartView(pg.PlotWidget):  # type: ignore[misc]  # pyqtgraph ships no type
             self.zoom(1.0 / _ZOOM)
         elif key in (Qt.Key.Key_0, Qt.Key.Key_Home) and not modifiers:
             self.reset_wanted.emit()
+        elif key in (Qt.Key.Key_Return, Qt.Key.Key_Enter) and not modifiers:
+            self.typing_wanted.emit()
         else:
             event.ignore()
             return
@@ -129,6 +171,24 @@ class ChartView(pg.PlotWidget):  # type: ignore[misc]  # pyqtgraph ships no type
         self._finish_step()
         super().focusOutEvent(event)
 
+    def mousePressEvent(self, event: QMouseEvent) -> None:
+        """Note what is held as a button goes down: a drag is what it began as."""
+        self.plotItem.vb.held = event.modifiers()
+        super().mousePressEvent(event)
+
+    def mouseDoubleClickEvent(self, event: QMouseEvent) -> None:
+        """Tell of a double click on an axis or on the chart."""
+        super().mouseDoubleClickEvent(event)
+        if event.button() != Qt.MouseButton.LeftButton:
+            return
+        spot = self.mapToScene(event.position().toPoint())
+        if self.plotItem.vb.sceneBoundingRect().contains(spot):
+            self.double_clicked.emit(spot)
+            return
+        for which, axis in self._axes.items():
+            if axis.sceneBoundingRect().contains(spot):
+                self.axis_double_clicked.emit(which)
+
     def contextMenuEvent(self, event: QContextMenuEvent) -> None:
         """Open the menu from the keyboard; the mouse's right button also zooms and is told apart by the scene."""
         if event.reason() == QContextMenuEvent.Reason.Keyboard:
@@ -144,10 +204,19 @@ class ChartView(pg.PlotWidget):  # type: ignore[misc]  # pyqtgraph ships no type
             painter.drawRect(self.viewport().rect().adjusted(0, 0, -1, -1))
             painter.end()
 
+    def area_of(self, which: str) -> QRect:
+        """Return the place of an axis in this widget."""
+        place: QRect = self.mapFromScene(self._axes[which].sceneBoundingRect()).boundingRect()
+        return place
+
     def _clicked(self, event: pg.GraphicsScene.mouseEvents.MouseClickEvent) -> None:
         if event.button() == Qt.MouseButton.RightButton:
             event.accept()
             self.menu_wanted.emit(event.screenPos().toPoint())
+        elif event.button() == Qt.MouseButton.LeftButton and not event.double():
+            spot = event.scenePos()
+            if self.plotItem.vb.sceneBoundingRect().contains(spot):
+                self.clicked.emit(spot, bool(event.modifiers() & _ADDING))
 
     def _moved(self, *_: object) -> None:
         self.moved_by_hand.emit()

@@ -1,31 +1,25 @@
-"""Puts a statement below the image of a chart, so that a picture pasted elsewhere still says what it rests on."""
+"""Puts a picture on the clipboard, as an image and as a drawing: each program pasted into takes what it knows."""
 
 from __future__ import annotations
 
-from PySide6.QtCore import QRectF, Qt
-from PySide6.QtGui import QColor, QFont, QFontMetricsF, QImage, QPainter
+from PySide6.QtCore import QByteArray, QMimeData
+from PySide6.QtGui import QGuiApplication
 
-from reliability_app.windows.theme import Theme
+from reliability_app.reports.figure import Figure
+from reliability_app.reports.picture_file import USUAL_DPI, USUAL_SIZE, image_of, picture_bytes
 
-_MARGIN = 10.0
-_WRAPPED = Qt.TextFlag.TextWordWrap | Qt.AlignmentFlag.AlignLeft | Qt.AlignmentFlag.AlignTop
+SVG_TYPE = "image/svg+xml"
 
 
-def with_foot(chart: QImage, text: str, theme: Theme, font: QFont) -> QImage:
-    """Return the image of a chart with wrapped text below it; the chart alone where there is none."""
-    if not text:
-        return chart
-    scale = chart.devicePixelRatio()
-    width, height = chart.width() / scale, chart.height() / scale
-    room = QRectF(_MARGIN, 0.0, width - 2.0 * _MARGIN, 1e4)
-    foot = QFontMetricsF(font).boundingRect(room, _WRAPPED.value, text).height()
-    image = QImage(chart.width(), round((height + foot + 2.0 * _MARGIN) * scale), QImage.Format.Format_RGB32)
-    image.setDevicePixelRatio(scale)
-    image.fill(QColor(theme.background))
-    painter = QPainter(image)
-    painter.drawImage(0, 0, chart)
-    painter.setFont(font)
-    painter.setPen(QColor(theme.foreground))
-    painter.drawText(QRectF(_MARGIN, height + _MARGIN, room.width(), foot), _WRAPPED.value, text)
-    painter.end()
-    return image
+def copy_figure(figure: Figure, *, size_mm: tuple[float, float] = USUAL_SIZE, dpi: int = USUAL_DPI) -> None:
+    """Put a figure on the clipboard.
+
+    Raises
+    ------
+    PictureRefused
+        For a size or a resolution out of range.
+    """
+    copied = QMimeData()
+    copied.setImageData(image_of(figure, size_mm=size_mm, dpi=dpi))
+    copied.setData(SVG_TYPE, QByteArray(picture_bytes(figure, ".svg", size_mm=size_mm)))
+    QGuiApplication.clipboard().setMimeData(copied)

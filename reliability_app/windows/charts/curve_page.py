@@ -8,25 +8,29 @@ import numpy as np
 import pyqtgraph as pg
 from numpy.typing import NDArray
 from PySide6.QtCore import QPointF
-from PySide6.QtGui import QColor, QFont, QPainterPath
+from PySide6.QtGui import QFont, QPainterPath
 from PySide6.QtWidgets import QWidget
 
 from reliability_app.engine.curves import Curve
 from reliability_app.engine.paper import AgeScale
+from reliability_app.reports.captions import survival_caption
+from reliability_app.reports.chart_ranges import Range, curve_range, hazard_top, unit_ages
+from reliability_app.reports.reading_mark import ReadingMark
+from reliability_app.reports.reading_places import Place, hazard_mark, survival_mark
 from reliability_app.session.picture import SetPicture
 from reliability_app.windows.charts.age_axis import EvenAxis
-from reliability_app.windows.charts.chart_page import ChartPage, SetDrawing
-from reliability_app.windows.charts.chart_ranges import Range, curve_range, hazard_top, unit_ages
+from reliability_app.windows.charts.chart_page import ChartPage
+from reliability_app.windows.charts.dragged_age import percent_at_age
 from reliability_app.windows.charts.legend import Corner
-from reliability_app.windows.charts.reading_line import ReadingMark
-from reliability_app.windows.charts.reading_marks import Place, aged_mark, fraction_at, hazard_mark, running_tip
+from reliability_app.windows.charts.reading_marks import running_tip
 from reliability_app.windows.charts.reading_steps import snapped
-from reliability_app.windows.charts.set_items import STEPS_DEPTH, FitLine, Marks, smooth_curve
+from reliability_app.windows.charts.set_drawings import SetDrawing
+from reliability_app.windows.charts.set_items import FitLine, Marks
+from reliability_app.windows.charts.steps import Steps
 from reliability_app.windows.theme import SeriesStyle, Theme
 
 Floats = NDArray[np.float64]
 
-_BEFORE = 8.0  # e-folds before the first age at which a step that starts at age 0 begins on a log axis
 NO_ESTIMATE = "No curve: these units give no estimate. The cautions below say why."
 
 
@@ -44,18 +48,10 @@ class CurvePage(ChartPage):
         )
 
     def _percent_at(self, position: float) -> float:
-        vb = self.view.plotItem.vb
-        left, right = vb.viewRange()[0]
-        pixel = (right - left) / max(vb.width(), 1.0)
-        here, next_one = (self._percent_failed(position + shift) for shift in (0.0, pixel))
-        return snapped(here, next_one - here)
+        return percent_at_age(self, position)
 
-    def _percent_failed(self, position: float) -> float:
-        """Return the percent failed on the drawn fit, kept off 0 and 100."""
-        current = self.current
-        age = max(float(self._scale.from_scale(position)), np.finfo(float).tiny)
-        percent = 0.0 if current is None else 100.0 * fraction_at(current, age)
-        return min(max(percent, 1e-6), 100.0 - 1e-6)
+    def _percent_across(self, position: float) -> float | None:  # noqa: ARG002 - a height that belongs to many ages
+        return None
 
 
 class HazardPage(CurvePage):
@@ -63,9 +59,10 @@ class HazardPage(CurvePage):
 
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__("Hazard", legend_corner="left", parent=parent)
+        self.reading_line.takes_across = False
 
     def _new_drawing(self) -> SetDrawing:
-        return HazardOfSet(self.view.plotItem.vb, self._scale)
+        return HazardOfSet(self.view.plotItem.vb, self.scale)
 
     def _upright_title(self) -> str:
         unit = self._life_unit or "unit of age"
@@ -78,12 +75,12 @@ class HazardPage(CurvePage):
         return nothing
 
     def _place_mark(self, place: Place) -> ReadingMark | None:
-        return hazard_mark(self.current, place, self._scale, self._life_unit)
+        return hazard_mark(self.current, place, self.scale, self._life_unit)
 
     def _whole_range(self, mark: ReadingMark | None) -> Range:
-        ages = self._scale.from_scale(unit_ages(self._pictures, self._scale))
+        ages = self.scale.from_scale(unit_ages(self._pictures, self.scale))
         top = hazard_top(self._pictures, mark, (float(ages[0]), float(ages[1])))
-        return curve_range(self._pictures, mark, self._scale, high=top)
+        return curve_range(self._pictures, mark, self.scale, high=top)
 
 
 class SurvivalPage(CurvePage):
@@ -93,20 +90,24 @@ class SurvivalPage(CurvePage):
         super().__init__("Survival", legend_corner="right", parent=parent)
 
     def _new_drawing(self) -> SetDrawing:
-        return SurvivalOfSet(self.view.plotItem.vb, self._scale)
+        return SurvivalOfSet(self.view.plotItem.vb, self.scale)
 
     def _upright_title(self) -> str:
         return "Reliability (%)"
 
+    def _caption_text(self) -> str:
+        return survival_caption(self._pictures)
+
+    def _percent_across(self, position: float) -> float | None:
+        box = self.view.plotItem.vb
+        low, high = box.viewRange()[1]
+        return snapped(min(max(100.0 - position, 1e-6), 100.0 - 1e-6), (high - low) / max(box.height(), 1.0))
+
     def _place_mark(self, place: Place) -> ReadingMark | None:
-        running = 100.0 * (1.0 - place.fraction)
-        if place.fractions != (None, None):
-            return running_mark(place, self._scale)
-        said = f"{running:.12g} %" if place.percent_text else ""
-        return aged_mark(place, running, self._scale, self._life_unit, value_text=said)
+        return survival_mark(place, self.scale, self._life_unit)
 
     def _whole_range(self, mark: ReadingMark | None) -> Range:
-        return curve_range(self._pictures, mark, self._scale, high=100.0)
+        return curve_range(self._pictures, mark, self.scale, high=100.0)
 
 
 class HazardOfSet:
@@ -127,6 +128,10 @@ class HazardOfSet:
         """Take the looks of the set; a hazard has no marks."""
         self.fit.dress(style, is_dark=theme.is_dark)
 
+    def marks(self) -> tuple[Marks, ...]:
+        """Return none: a hazard stands for no single unit."""
+        return ()
+
     def remove(self) -> None:
         """Leave the plot for good."""
         self.fit.remove()
@@ -136,12 +141,10 @@ class SurvivalOfSet:
     """What the Survival page shows of one set."""
 
     def __init__(self, view_box: pg.ViewBox, age: AgeScale) -> None:
-        self._age, self._view_box = age, view_box
+        self._age = age
         self._shown: SetPicture | None = None
         self.fit = FitLine(view_box)
-        self.steps = smooth_curve()
-        self.steps.setZValue(STEPS_DEPTH)
-        view_box.addItem(self.steps, ignoreBounds=True)
+        self.steps = Steps(view_box, age)
         self.running = Marks(view_box, filled=False)
 
     def show(self, picture: SetPicture, life_unit: str) -> None:
@@ -155,24 +158,24 @@ class SurvivalOfSet:
     def dress(self, style: SeriesStyle, theme: Theme, *, mark_size: float, font: QFont) -> None:
         """Take the looks of the set; running units are upright ticks on the steps."""
         self.fit.dress(style, is_dark=theme.is_dark)
-        colour = QColor(style.colour)
-        colour.setAlphaF(0.85)
-        self.steps.setPen(pg.mkPen(colour, width=1.0))
+        self.steps.dress(style)
         self.running.dress(style, theme, size=mark_size, font=font, symbol=_upright_tick())
+
+    def marks(self) -> tuple[Marks, ...]:
+        """Return the running units on the steps."""
+        return (self.running,)
 
     def remove(self) -> None:
         """Leave the plot for good."""
-        self.fit.remove()
-        self.running.remove()
-        self._view_box.removeItem(self.steps)
+        for part in (self.fit, self.running, self.steps):
+            part.remove()
 
     def _show_steps(self, picture: SetPicture, life_unit: str) -> None:
         steps = picture.steps
+        self.steps.show(steps, times=100.0)
         if steps is None:
-            self.steps.setData(np.empty(0), np.empty(0))
             height = np.full_like(picture.running_age, np.nan)
         else:
-            self.steps.setData(_begun(self._age.to_scale(steps.x)), 100.0 * steps.y)
             last = np.searchsorted(steps.x, picture.running_age, side="right") - 1
             height = 100.0 * steps.y[np.maximum(last, 0)]
         self.running.show(
@@ -180,6 +183,7 @@ class SurvivalOfSet:
             height,
             counts=picture.running_quantity,
             tip=partial(running_tip, picture, life_unit),
+            rows=picture.running_rows,
         )
 
 
@@ -190,23 +194,6 @@ def show_curve(fit: FitLine, curve: Curve | None, age: AgeScale, *, times: float
         return
     lower, upper = (None if edge is None else times * edge for edge in (curve.lower, curve.upper))
     fit.show(age.to_scale(curve.x), times * curve.y, lower, upper)
-
-
-def running_mark(place: Place, age: AgeScale) -> ReadingMark:
-    """Return the mark of a reliability that was asked for, whose bound is upright."""
-    ends = [None if end is None else 100.0 * (1.0 - end) for end in reversed(place.fractions)]
-    texts = ["" if end is None else f"{end:.3g} %" for end in ends]
-    running = 100.0 * (1.0 - place.fraction)
-    return ReadingMark(
-        float(age.to_scale(place.age)), running, "value", ends[0], ends[1], place.age_text, f"{running:.3g} %", *texts
-    )
-
-
-def _begun(positions: Floats) -> Floats:
-    """Let what begins at age 0 begin well to the left of a log axis."""
-    finite = positions[np.isfinite(positions)]
-    start = float(finite.min()) - _BEFORE if finite.size else 0.0
-    return np.where(np.isfinite(positions), positions, start)
 
 
 def _upright_tick() -> QPainterPath:

@@ -89,6 +89,8 @@ class Legend(QGraphicsItem):
         painter.setRenderHint(QPainter.RenderHint.Antialiasing, True)
         painter.setPen(pg.mkPen(style.colour, width=2.0, style=style.dash))
         painter.drawLine(start, start + QPointF(_SAMPLE, 0.0))
+        if not style.symbol:  # a line only
+            return
         painter.save()
         painter.translate(start + QPointF(0.5 * _SAMPLE, 0.0))
         pen, brush = pg.mkPen(self._ground, width=0.75), pg.mkBrush(style.colour)

@@ -4,24 +4,31 @@ from __future__ import annotations
 
 from dataclasses import replace
 from functools import partial
+from itertools import cycle
 
 import numpy as np
 import pyqtgraph as pg
 from numpy.typing import NDArray
-from PySide6.QtGui import QFont
+from PySide6.QtGui import QAction, QFont
 from PySide6.QtWidgets import QWidget
 
+from reliability_app.engine import FAMILY_NAMES
 from reliability_app.engine.families import family
 from reliability_app.engine.paper import AgeScale, AgeScaleKind, ProbabilityScale
+from reliability_app.reports.chart_ranges import Range, paper_range
+from reliability_app.reports.reading_mark import ReadingMark
+from reliability_app.reports.reading_places import Place, paper_mark
+from reliability_app.reports.series_looks import CANDIDATE_DASHES
 from reliability_app.session.picture import SetPicture
-from reliability_app.windows.charts.chart_page import ChartPage, SetDrawing
-from reliability_app.windows.charts.chart_ranges import Range, paper_range
+from reliability_app.windows.charts.chart_page import ChartPage
+from reliability_app.windows.charts.dragged_age import percent_at_age
+from reliability_app.windows.charts.legend import LegendEntry
 from reliability_app.windows.charts.probability_axis import ProbabilityAxis
-from reliability_app.windows.charts.reading_line import ReadingMark
-from reliability_app.windows.charts.reading_marks import Place, failed_tip, paper_mark, running_tip
+from reliability_app.windows.charts.reading_marks import failed_tip, running_tip
 from reliability_app.windows.charts.reading_steps import snapped
-from reliability_app.windows.charts.set_items import EdgeMarks, FitLine, Marks
-from reliability_app.windows.theme import SeriesStyle, Theme
+from reliability_app.windows.charts.set_drawings import SetDrawing
+from reliability_app.windows.charts.set_items import LINE_DEPTH, EdgeMarks, FitLine, Marks, smooth_curve
+from reliability_app.windows.theme import PEN_STYLES, SeriesStyle, Theme
 
 Floats = NDArray[np.float64]
 
@@ -45,12 +52,55 @@ class PaperPage(ChartPage):
             parent=parent,
         )
 
+    def _add_parts(self) -> None:
+        super()._add_parts()
+        self._candidate_curves: list[pg.PlotCurveItem] = []
+        self.candidates_action = QAction("Candidates as &thin lines", self, checkable=True)
+
+    def _menu_groups(self) -> list[list[QAction]]:
+        return [*super()._menu_groups(), [self.candidates_action]]
+
+    def _draw(self) -> None:
+        super()._draw()
+        self._draw_candidates()
+
+    def _draw_candidates(self) -> None:
+        """Draw other families as thin lines in a quiet tone, told apart by their dashes and named in the legend."""
+        box = self.view.plotItem.vb
+        while len(self._candidate_curves) > len(self._candidates):
+            box.removeItem(self._candidate_curves.pop())
+        while len(self._candidate_curves) < len(self._candidates):
+            curve = smooth_curve()
+            curve.setZValue(LINE_DEPTH - 1.0)
+            box.addItem(curve, ignoreBounds=True)
+            self._candidate_curves.append(curve)
+        for curve, line, style in zip(self._candidate_curves, self._candidates, self._candidate_styles(), strict=True):
+            z = np.clip(self._probability.to_scale(line.fraction), -_FURTHEST, _FURTHEST)
+            curve.setData(self.scale.to_scale(line.age), z)
+            curve.setPen(pg.mkPen(style.colour, width=1.25, style=style.dash))
+
+    def _candidate_styles(self) -> list[SeriesStyle]:
+        dashes = cycle(CANDIDATE_DASHES)
+        return [SeriesStyle(self._theme.muted, "", PEN_STYLES[next(dashes)]) for _ in self._candidates]
+
+    def _legend_entries(self) -> list[LegendEntry]:
+        named = zip(self._candidates, self._candidate_styles(), strict=True)
+        return super()._legend_entries() + [LegendEntry(line.title, style) for line, style in named]
+
+    def retheme(self, theme: Theme) -> None:
+        """Take the colours of a theme."""
+        super().retheme(theme)
+        self._draw_candidates()
+
     @property
     def _probability(self) -> ProbabilityScale:
         return self._probability_axis.scale_of_family
 
     def _prepare(self) -> None:
         if self.current is None or self.current.family == self._probability.family_name:
+            return
+        if self.current.family not in FAMILY_NAMES:
+            # Named by a session of a later version: a caution says so, and the marks stand on the paper that is there.
             return
         was, now = (family(name).of_log_life for name in (self._probability.family_name, self.current.family))
         self._probability_axis.set_family(self.current.family)
@@ -60,16 +110,16 @@ class PaperPage(ChartPage):
             self._take_age_scale(self._age_scales[now])
 
     def _new_drawing(self) -> SetDrawing:
-        return SetOnPaper(self.view.plotItem.vb, self._probability, self._scale, row=len(self._drawings))
+        return SetOnPaper(self.view.plotItem.vb, self._probability, self.scale, row=len(self._drawings))
 
     def _upright_title(self) -> str:
         return "Failed (%)"
 
     def _place_mark(self, place: Place) -> ReadingMark | None:
-        return paper_mark(place, self._probability, self._scale, self._life_unit)
+        return paper_mark(place, self._probability, self.scale, self._life_unit)
 
     def _whole_range(self, mark: ReadingMark | None) -> Range:
-        return paper_range(self._pictures, mark, self._probability, self._scale)
+        return paper_range(self._pictures, mark, self._probability, self.scale)
 
     def _limits(self, whole: Range) -> Range:
         low, high = self._probability.limits
@@ -81,6 +131,9 @@ class PaperPage(ChartPage):
         pixel = (high - low) / max(vb.height(), 1.0)
         here, next_one = 100.0 * self._probability.from_scale([position, position + pixel])
         return snapped(float(here), float(next_one - here))
+
+    def _percent_across(self, position: float) -> float | None:
+        return percent_at_age(self, position)
 
 
 class SetOnPaper:
@@ -102,12 +155,14 @@ class SetOnPaper:
                 self._probability.to_scale(picture.point_fraction),
                 counts=picture.point_quantity,
                 tip=partial(failed_tip, picture, life_unit),
+                rows=picture.point_rows,
             )
         if was is None or was.running_age is not picture.running_age:
             self.running.stand(
                 self._age.to_scale(picture.running_age),
                 counts=picture.running_quantity,
                 tip=partial(running_tip, picture, life_unit),
+                rows=picture.running_rows,
             )
         if was is None or was.failure is not picture.failure:
             self._show_fit(picture)
@@ -118,6 +173,10 @@ class SetOnPaper:
         for marks in (self.points, self.running):
             marks.dress(style, theme, size=mark_size, font=font)
         self.running.raise_to((0.5 + self._row) * (mark_size + 3.0) + 2.0)
+
+    def marks(self) -> tuple[Marks, ...]:
+        """Return the failed and the running units."""
+        return self.points, self.running
 
     def remove(self) -> None:
         """Leave the plot for good."""

@@ -19,6 +19,15 @@ class ProbabilityAxis(RoundAxis):
             self.scale_of_family = ProbabilityScale(family_name)
             self._forget()
 
+    def position_of(self, value: float) -> float:
+        """Return z of a percent."""
+        return float(self.scale_of_family.to_scale(0.01 * value)) if 0.0 < value < 100.0 else float("nan")
+
+    def text_of(self, position: float) -> str:
+        """Return the percent at z."""
+        low, high = self.scale_of_family.limits
+        return f"{100.0 * float(self.scale_of_family.from_scale(min(max(position, low), high))):.5g}"
+
     def ticks_between(self, low: float, high: float, most: int) -> list[Tick]:
         """Return the percents between two z."""
         limit_low, limit_high = self.scale_of_family.limits

@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
-from dataclasses import dataclass
 from typing import Literal
 
 import pyqtgraph as pg
@@ -11,53 +9,19 @@ from PySide6.QtCore import QLineF, QPointF, QRectF, Qt, Signal
 from PySide6.QtGui import QColor, QFont, QFontMetricsF, QPainter, QPainterPath, QPen
 from PySide6.QtWidgets import QGraphicsObject, QStyleOptionGraphicsItem, QWidget
 
+from reliability_app.reports.reading_mark import Along, ReadingMark, beyond_text
+from reliability_app.reports.series_looks import ink_on
 from reliability_app.windows.charts.round_axis import RoundAxis
-from reliability_app.windows.theme import Theme, ink_on
+from reliability_app.windows.theme import Theme
 
-Along = Literal["age", "value"]
+Grip = Literal["main", "across", "lower", "upper"]
 
+_PLACES: dict[Along, int] = {"age": 0, "value": 1}
 _IN_FRONT = 50.0
 _GRIP = 7.0  # pixels to either side within which the mouse takes the line
 _RING = 5.0
 _FOOT = 5.0  # half the length of a bracket's end, and how far its feet reach inwards
 _PADDING = 4.0
-
-
-@dataclass(frozen=True)
-class ReadingMark:
-    """Where a reading stands, in positions of the two axes.
-
-    Attributes
-    ----------
-    age, value : float
-        The point on the curve.
-    along : "age" or "value"
-        The direction in which the bound lies.
-    lower, upper : float or None
-        The bound's ends in that direction; None on an open side.
-    age_text, value_text : str
-        What the tags on the axes say.
-    lower_text, upper_text : str
-        What is written at the ends of the bracket; may be empty.
-    """
-
-    age: float
-    value: float
-    along: Along
-    lower: float | None
-    upper: float | None
-    age_text: str
-    value_text: str
-    lower_text: str = ""
-    upper_text: str = ""
-
-    @property
-    def ends(self) -> Iterator[tuple[float, str, int]]:
-        """Give position, text and inward direction of each end there is."""
-        if self.lower is not None:
-            yield self.lower, self.lower_text, 1
-        if self.upper is not None:
-            yield self.upper, self.upper_text, -1
 
 
 class ReadingLine(QGraphicsObject):
@@ -76,11 +40,17 @@ class ReadingLine(QGraphicsObject):
     -------
     dragged(float)
         The position on the dragged axis, while the mouse moves.
+    dragged_across(float)
+        The position on the other axis, while the other line is moved.
+    end_dragged(str, float)
+        The position on the age axis to which the "lower" or "upper" end of the bracket is moved.
     released()
         The end of a drag.
     """
 
     dragged = Signal(float)
+    dragged_across = Signal(float)
+    end_dragged = Signal(str, float)
     released = Signal()
 
     def __init__(self, plot: pg.PlotItem, level: RoundAxis, upright: RoundAxis, *, drags: Along) -> None:
@@ -91,7 +61,9 @@ class ReadingLine(QGraphicsObject):
         self._colour, self._ground, self._ink = QColor(), QColor(), QColor()
         self._font = QFont()
         self._grabbed_at: float | None = None
-        self._hovered = False
+        self._hovered: Grip | None = None
+        self._grip: Grip | None = None
+        self.takes_across = True  # False where a height on the chart belongs to more than one age
         self.setZValue(_IN_FRONT)
         self.setVisible(False)
         plot.vb.sigRangeChanged.connect(self._moved)
@@ -110,6 +82,8 @@ class ReadingLine(QGraphicsObject):
     def show_mark(self, mark: ReadingMark | None) -> None:
         """Show a reading, or hide without one."""
         self._mark = mark
+        if mark is not None:
+            self._upright.make_room(mark.value_text)
         self.setVisible(mark is not None)
         self._moved()
 
@@ -117,6 +91,8 @@ class ReadingLine(QGraphicsObject):
         """Take the theme, the colour of the set it reads, and the font of the tags."""
         self._colour, self._ground = QColor(colour), QColor(theme.background)
         self._ink, self._font = QColor(ink_on(colour)), QFont(font)
+        if self._mark is not None:
+            self._upright.make_room(self._mark.value_text)
         self._moved()
 
     def grip(self) -> QPointF | None:
@@ -143,6 +119,11 @@ class ReadingLine(QGraphicsObject):
         # A point far outside would overflow Qt's integer raster.
         return QPointF(min(max(x, -1e5), 1e5), min(max(y, -1e5), 1e5))
 
+    def spot(self) -> QPointF | None:
+        """Return the point of the reading in the scene, or None without one."""
+        spot = self._spot()
+        return None if spot is None else self.mapToScene(spot)
+
     def _spot(self) -> QPointF | None:
         return None if self._mark is None else self._pixel(self._mark.age, self._mark.value)
 
@@ -151,18 +132,52 @@ class ReadingLine(QGraphicsObject):
         return QRectF(self._plot.rect())
 
     def shape(self) -> QPainterPath:
-        """Return the strip the mouse can take, and the tag it belongs to."""
+        """Return all that the mouse can take: both lines, the ends of the bracket, the tag of the main line."""
         path = QPainterPath()
-        spot, area = self._spot(), self._area()
-        if spot is None:
-            return path
-        if self._drags == "value" and area.top() <= spot.y() <= area.bottom():
-            path.addRect(QRectF(area.left(), spot.y() - _GRIP, area.width(), 2.0 * _GRIP))
-            path.addRect(self._value_tag())
-        elif self._drags == "age" and area.left() <= spot.x() <= area.right():
-            path.addRect(QRectF(spot.x() - _GRIP, area.top(), 2.0 * _GRIP, area.height()))
-            path.addRect(self._age_tag())
+        path.setFillRule(Qt.FillRule.WindingFill)  # where two grips overlap there is no hole
+        for _, box in self._grips():
+            path.addRect(box)
         return path
+
+    def is_at(self, spot: QPointF) -> bool:
+        """True where a point of the scene lies on the reading."""
+        return self._grip_at(spot) is not None
+
+    def _grips(self) -> list[tuple[Grip, QRectF]]:
+        """Return what the mouse can take, the first one first where they overlap."""
+        mark, spot, area = self._mark, self._spot(), self._area()
+        if mark is None or spot is None:
+            return []
+        grips: list[tuple[Grip, QRectF]] = []
+        for position, _, inward in mark.ends if mark.along == "age" else ():
+            end = self._pixel(position, mark.value)
+            if area.contains(end):
+                grips.append(("lower" if inward > 0 else "upper", _around(end, 0.0, 0.0)))
+        level_is_seen = area.top() <= spot.y() <= area.bottom()
+        upright_is_seen = area.left() <= spot.x() <= area.right()
+        to_axis = QRectF(spot.x() - _GRIP, spot.y(), 2.0 * _GRIP, max(area.bottom() - spot.y(), 0.0))
+        to_value = QRectF(area.left(), spot.y() - _GRIP, max(spot.x() - area.left(), 0.0), 2.0 * _GRIP)
+        if self._drags == "value" and level_is_seen:
+            whole = QRectF(area.left(), spot.y() - _GRIP, area.width(), 2.0 * _GRIP)
+            grips += [("main", whole), ("main", self._value_tag())]
+        elif self._drags == "age" and upright_is_seen:
+            whole = QRectF(spot.x() - _GRIP, area.top(), 2.0 * _GRIP, area.height())
+            grips += [("main", whole), ("main", self._age_tag())]
+        if self._drags == "value" and upright_is_seen and level_is_seen:
+            grips += [("across", to_axis), ("across", self._age_tag())]
+        elif self._drags == "age" and level_is_seen and upright_is_seen and self.takes_across:
+            grips += [("across", to_value), ("across", self._value_tag())]
+        return grips
+
+    def _grip_at(self, scene_spot: QPointF) -> Grip | None:
+        spot = self.mapFromScene(scene_spot)
+        return next((grip for grip, box in self._grips() if box.contains(spot)), None)
+
+    def _direction(self, grip: Grip) -> Along:
+        """Return the axis along which a grip moves."""
+        if grip == "main":
+            return self._drags
+        return "age" if grip in ("lower", "upper") or self._drags == "value" else "value"
 
     def _moved(self, *_: object) -> None:
         self.prepareGeometryChange()
@@ -233,9 +248,10 @@ class ReadingLine(QGraphicsObject):
         faint.setAlphaF(0.45)
         painter.setPen(QPen(faint, 1.0, Qt.PenStyle.DotLine))
         painter.drawLine(rest)
-        width = 2.0 if self._hovered or self.is_dragging else 1.0
+        held = self._grip or self._hovered
+        strong = self._direction(held) if held in ("main", "across") else None
         for line, drags in ((to_value, "value"), (to_age, "age")):
-            painter.setPen(QPen(self._colour, width if drags == self._drags else 1.0))
+            painter.setPen(QPen(self._colour, 2.0 if drags == strong else 1.0))
             painter.drawLine(line)
 
     def _paint_bracket(self, painter: QPainter, mark: ReadingMark, spot: QPointF) -> None:
@@ -247,7 +263,7 @@ class ReadingLine(QGraphicsObject):
             inside = self._inside(end)
             if inside != end:
                 # The bound lies beyond the picture: its number stands at the edge with an arrow.
-                self._paint_end_text(painter, inside, _beyond(text, inward, mark.along), -inward, mark.along)
+                self._paint_end_text(painter, inside, beyond_text(text, inward, mark.along), -inward, mark.along)
                 continue
             painter.setPen(QPen(self._colour, 2.0, Qt.PenStyle.SolidLine, Qt.PenCapStyle.SquareCap))
             if mark.along == "age":
@@ -311,41 +327,65 @@ class ReadingLine(QGraphicsObject):
     # --- the mouse, as pyqtgraph's scene hands it on
 
     def hoverEvent(self, event: pg.GraphicsScene.mouseEvents.HoverEvent) -> None:
-        """Show that the line can be taken."""
-        over = not event.isExit() and event.acceptDrags(Qt.MouseButton.LeftButton)
-        if over != self._hovered:
-            self._hovered = over
-            upright = self._drags == "value"
-            shape = Qt.CursorShape.SizeVerCursor if upright else Qt.CursorShape.SizeHorCursor
-            if over:
-                self.setCursor(shape)
-            else:
+        """Show that the line can be taken, and which way it goes."""
+        grip = None if event.isExit() else self._grip_at(event.scenePos())
+        if grip is not None and not event.acceptDrags(Qt.MouseButton.LeftButton):
+            grip = None
+        if grip != self._hovered:
+            self._hovered = grip
+            if grip is None:
                 self.unsetCursor()
+            else:
+                is_upright = self._direction(grip) == "value"
+                self.setCursor(Qt.CursorShape.SizeVerCursor if is_upright else Qt.CursorShape.SizeHorCursor)
             self.update()
 
     def mouseDragEvent(self, event: pg.GraphicsScene.mouseEvents.MouseDragEvent) -> None:
-        """Follow the mouse; the line keeps the distance to the mouse at which it was taken."""
-        if event.button() != Qt.MouseButton.LeftButton or self._mark is None:
+        """Follow the mouse; what was taken keeps the distance to the mouse at which it was taken."""
+        if event.button() != Qt.MouseButton.LeftButton or self._mark is None or self._plot.vb.is_framing:
+            event.ignore()
+            return
+        box = self._plot.vb
+        if event.isStart():
+            self._grip = self._grip_at(event.buttonDownScenePos())
+            if self._grip is None:
+                event.ignore()
+                return
+            taken = box.mapSceneToView(event.buttonDownScenePos())
+            at = _PLACES[self._direction(self._grip)]
+            self._grabbed_at = self._position_of(self._grip) - (taken.x(), taken.y())[at]
+        if self._grip is None:
             event.ignore()
             return
         event.accept()
-        at = 0 if self._drags == "age" else 1
-        mouse = self._plot.vb.mapSceneToView(event.scenePos())
-        if event.isStart():
-            taken = self._plot.vb.mapSceneToView(event.buttonDownScenePos())
-            here = (self._mark.age, self._mark.value)[at]
-            self._grabbed_at = here - (taken.x(), taken.y())[at]
-        low, high = self._plot.vb.viewRange()[at]
-        wanted = (mouse.x(), mouse.y())[at] + (self._grabbed_at or 0.0)
-        self.dragged.emit(min(max(wanted, low), high))
+        at = _PLACES[self._direction(self._grip)]
+        mouse = box.mapSceneToView(event.scenePos())
+        low, high = box.viewRange()[at]
+        self._tell(self._grip, min(max((mouse.x(), mouse.y())[at] + (self._grabbed_at or 0.0), low), high))
         if event.isFinish():
-            self._grabbed_at = None
+            self._grabbed_at, self._grip = None, None
             self.released.emit()
             self.update()
 
+    def _position_of(self, grip: Grip) -> float:
+        """Return where a grip stands on the axis along which it moves."""
+        mark = self._mark
+        if mark is None:
+            return 0.0
+        ends = {"lower": mark.lower, "upper": mark.upper}
+        if grip in ends:
+            return float(ends[grip] or 0.0)
+        return mark.age if self._direction(grip) == "age" else mark.value
 
-def _beyond(text: str, inward: int, along: Along) -> str:
-    """Return the text of a bound that lies beyond the picture."""
-    if along == "age":
-        return f"◂ {text}" if inward > 0 else f"{text} ▸"
-    return f"▾ {text}" if inward > 0 else f"▴ {text}"
+    def _tell(self, grip: Grip, position: float) -> None:
+        if grip == "main":
+            self.dragged.emit(position)
+        elif grip == "across":
+            self.dragged_across.emit(position)
+        else:
+            self.end_dragged.emit(grip, position)
+
+
+def _around(spot: QPointF, width: float, height: float) -> QRectF:
+    """Return the box that takes the mouse about a point or a box of a size."""
+    return QRectF(spot.x() - _GRIP, spot.y() - _GRIP, width + 2.0 * _GRIP, height + 2.0 * _GRIP)

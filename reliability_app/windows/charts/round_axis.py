@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from itertools import pairwise
-from math import ceil
 
 import pyqtgraph as pg
 from PySide6.QtGui import QFont, QFontMetricsF
+from PySide6.QtWidgets import QGraphicsSceneResizeEvent
 
 from reliability_app.engine.paper import Tick
+from reliability_app.reports.axis_ticks import LEVEL_ROOM, UPRIGHT_ROOM, level_ticks, upright_ticks
 from reliability_app.windows.theme import Theme
 
 _TICK_LENGTH = 4
@@ -24,14 +24,15 @@ class RoundAxis(pg.AxisItem):  # type: ignore[misc]  # pyqtgraph ships no types
     `room` is the line heights an upright axis gives each label, `room_between` what a level one leaves between.
     """
 
-    room = 1.6
-    room_between = 1.2
+    room = UPRIGHT_ROOM
+    room_between = LEVEL_ROOM["log"]
 
     def __init__(self, orientation: str) -> None:
         self._font = QFont()
         self._covered: tuple[tuple[float, float], ...] = ()
         self._ticks: list[Tick] = []
         self._ticks_for: tuple[object, ...] = ()
+        self._is_broken = False  # whether the title stands in two lines
         super().__init__(orientation, maxTickLength=_TICK_LENGTH)
         self.enableAutoSIPrefix(False)
         self.setStyle(
@@ -63,12 +64,51 @@ class RoundAxis(pg.AxisItem):  # type: ignore[misc]  # pyqtgraph ships no types
         self.setTickPen(theme.muted)
         self.setTextPen(theme.foreground)
 
+    def labelString(self) -> str:
+        """Answer pyqtgraph: the title, its unit in a second line where one line would not fit."""
+        found = str(super().labelString())
+        return found.replace(" (", "<br>(", 1) if self._is_broken else found
+
+    def resizeEvent(self, event: QGraphicsSceneResizeEvent | None = None) -> None:
+        """Break the title of an upright axis that has become too short for it."""
+        if self._is_upright:
+            fits = QFontMetricsF(self._font).horizontalAdvance(self.labelText) <= self.size().height()
+            if self._is_broken == fits:
+                self._is_broken = not fits
+                self._updateLabel()
+        super().resizeEvent(event)
+
+    def setLabel(self, text: str | None = None, **how: str) -> None:
+        """Write another title, in as many lines as it needs."""
+        super().setLabel(text, **how)
+        self.resizeEvent()
+
+    def make_room(self, tag: str) -> None:
+        """Widen an upright axis so that a tag does not lie over its title; it does not narrow again by itself."""
+        width = QFontMetricsF(self._font).horizontalAdvance(tag + " ")
+        if self._is_upright and width > self.textWidth:
+            self.textWidth = width
+            self._updateWidth()
+
     def cover(self, spans: Sequence[tuple[float, float]]) -> None:
         """Leave labels out that would touch the spans (in positions of the scale): a tag stands there."""
         if tuple(spans) != self._covered:
             self._covered = tuple(spans)
             self.picture = None
             self.update()
+
+    def shown_ends(self) -> tuple[float, float]:
+        """Return the positions at the two ends of what is shown."""
+        low, high = sorted(float(end) for end in self.range)
+        return low, high
+
+    def position_of(self, value: float) -> float:
+        """Return the position of a value as it is written on this axis; NaN or infinite where it has none."""
+        return value
+
+    def text_of(self, position: float) -> str:
+        """Return what would be written at a position."""
+        return f"{position:.5g}"
 
     def shown_ticks(self) -> list[Tick]:
         """Return the ticks for the present range, size and font."""
@@ -118,24 +158,9 @@ class RoundAxis(pg.AxisItem):  # type: ignore[misc]  # pyqtgraph ships no types
             return []
         line = QFontMetricsF(self._font).height()
         if self._is_upright:
-            return self.ticks_between(low, high, max(2, int(length / (self.room * line)) + 1))
-        return self._fitting_level(low, high, length, line)
-
-    def _fitting_level(self, low: float, high: float, length: float, line: float) -> list[Tick]:
-        """Return the most labels that keep apart side by side, whatever their widths are."""
-        most, each = max(2, int(length / (2.5 * line))), length / (high - low)
-        while True:
-            ticks = self.ticks_between(low, high, most)
-            labelled = [(tick.position, self.label_size(tick.label)) for tick in ticks if tick.major]
-            # How much of the room it needs each pair of neighbours has.
-            shares = [
-                (after - before) * each / (0.5 * (size_before + size_after) + self.room_between * line)
-                for (before, size_before), (after, size_after) in pairwise(labelled)
-            ]
-            tightest = min(shares, default=1.0)
-            if tightest >= 1.0 or most == 2:
-                return ticks
-            most = max(2, min(most - 1, ceil(most * tightest)))
+            return upright_ticks(self.ticks_between, low, high, length=length, line=line, room=self.room)
+        room, width_of = self.room_between, self.label_size
+        return level_ticks(self.ticks_between, low, high, length=length, line=line, room=room, width_of=width_of)
 
     def _is_covered(self, position: float, label: str) -> bool:
         half = 0.5 * self.label_size(label) / self._pixels_each()

@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Collection, Sequence
+from functools import cached_property
 
 import numpy as np
 import pyqtgraph as pg
 from numpy.typing import NDArray
-from PySide6.QtCore import QPointF, Qt
+from PySide6.QtCore import QPointF, QRectF, Qt
 from PySide6.QtGui import QColor, QFont, QPainter, QPainterPath, QPen
 from PySide6.QtWidgets import QGraphicsPathItem
 
@@ -21,7 +22,7 @@ _LINE_WIDTH = 2.0
 _MOST_NUMBERS = 40
 _MOST_WITH_TIPS = 5000  # pyqtgraph looks at every mark when the mouse moves
 _CROWD = 150
-_BAND_SHARE = {False: 0.12, True: 0.16}  # how strongly a band's ground is coloured, on light and on dark
+BAND_SHARE = {False: 0.12, True: 0.16}  # how strongly a band's ground is coloured, on light and on dark
 
 
 def smooth_curve() -> pg.PlotCurveItem:
@@ -66,7 +67,7 @@ class FitLine:
         self.line.setPen(pg.mkPen(colour, width=_LINE_WIDTH, style=style.dash))
         edge, ground = QColor(colour), QColor(colour)
         edge.setAlphaF(0.65)
-        ground.setAlphaF(_BAND_SHARE[is_dark])
+        ground.setAlphaF(BAND_SHARE[is_dark])
         for curve in (self.low_edge, self.high_edge):
             curve.setPen(pg.mkPen(edge, width=1.0))
         self.band.setBrush(ground)
@@ -117,11 +118,21 @@ class Marks:
     def __init__(self, view_box: pg.ViewBox, *, filled: bool) -> None:
         self._view_box, self._filled = view_box, filled
         self._count = 0
+        self._rows: tuple[tuple[int, ...], ...] = ()
+        self._looks: tuple[object, ...] = ()
         self.item = CountedSpots()
         self.item.setZValue(MARKS_DEPTH)
         view_box.addItem(self.item, ignoreBounds=True)
 
-    def show(self, x: Floats, y: Floats, *, counts: Integers, tip: Callable[[int], str]) -> None:
+    def show(
+        self,
+        x: Floats,
+        y: Floats,
+        *,
+        counts: Integers,
+        tip: Callable[[int], str],
+        rows: Sequence[tuple[int, ...]] = (),
+    ) -> None:
         """Show a mark at each finite point.
 
         Parameters
@@ -132,9 +143,13 @@ class Marks:
             Units that each mark is.
         tip : callable
             What to say of the mark with this index while the mouse is over it.
+        rows : sequence of tuple of int
+            The rows of the unit table that each mark stands for.
         """
         at = np.flatnonzero(np.isfinite(x) & np.isfinite(y))
         self._count = at.size
+        self._rows = tuple(rows[place] for place in at.tolist()) if rows else ()
+        self.__dict__.pop("_owners", None)
         says_tips = at.size <= _MOST_WITH_TIPS
         self.item.setData(
             x=x[at],
@@ -154,6 +169,10 @@ class Marks:
         the set's own mark.
         """
         crowded = self._count > _CROWD
+        looks = (style, theme.background, theme.muted, size, font.key(), crowded, symbol is None)
+        if looks == self._looks:
+            return  # each of the following goes through every mark
+        self._looks = looks
         self.item.setSymbol(style.symbol if symbol is None else symbol)
         self.item.setSize(round(0.65 * size) if crowded else size)
         self.item.dress_numbers(theme.muted, font)
@@ -164,6 +183,36 @@ class Marks:
         else:
             self.item.setPen(pg.mkPen(style.colour, width=1.25))
             self.item.setBrush(pg.mkBrush(theme.background))
+
+    def places_of(self, rows: Collection[int]) -> Integers:
+        """Return which of the marks shown stand for any of these rows."""
+        flat, owner = self._owners
+        wanted = np.fromiter(rows, np.int64, len(rows))
+        return np.unique(owner[np.isin(flat, wanted)])
+
+    def rows_at(self, spot: QPointF) -> list[int]:
+        """Return the rows of the marks at a point of the scene."""
+        if not self._rows:
+            return []
+        found = self.item.pointsAt(self.item.mapFromScene(spot))
+        return [row for point in found for row in self._rows[point.index()]]
+
+    def rows_within(self, frame: QRectF) -> list[int]:
+        """Return the rows of the marks in a frame of the view."""
+        if not self._rows:
+            return []
+        x, y = (np.asarray(values) for values in self.item.getData())
+        shift = self.item.pos()
+        inside = (x + shift.x() >= frame.left()) & (x + shift.x() <= frame.right())
+        inside &= (y + shift.y() >= frame.top()) & (y + shift.y() <= frame.bottom())
+        return [row for place in np.flatnonzero(inside).tolist() for row in self._rows[place]]
+
+    @cached_property
+    def _owners(self) -> tuple[Integers, Integers]:
+        """Each row, and the mark that stands for it."""
+        counts = [len(group) for group in self._rows]
+        flat = np.fromiter((row for group in self._rows for row in group), np.int64, sum(counts))
+        return flat, np.repeat(np.arange(len(counts)), counts)
 
     def remove(self) -> None:
         """Take the marks out of the view for good."""
@@ -176,12 +225,20 @@ class EdgeMarks(Marks):
     def __init__(self, view_box: pg.ViewBox) -> None:
         super().__init__(view_box, filled=False)
         self._height = 0.0
+        self._carried: list[pg.GraphicsObject] = []
         view_box.sigYRangeChanged.connect(self._follow)
         view_box.sigResized.connect(self._follow)
 
-    def stand(self, x: Floats, *, counts: Integers, tip: Callable[[int], str]) -> None:
+    def stand(
+        self, x: Floats, *, counts: Integers, tip: Callable[[int], str], rows: Sequence[tuple[int, ...]] = ()
+    ) -> None:
         """Show a mark at each finite x."""
-        self.show(x, np.zeros_like(x), counts=counts, tip=tip)
+        self.show(x, np.zeros_like(x), counts=counts, tip=tip, rows=rows)
+        self._follow()
+
+    def carry(self, item: pg.GraphicsObject) -> None:
+        """Keep another item at the same height, the latest only."""
+        self._carried = [item]
         self._follow()
 
     def raise_to(self, height: float) -> None:
@@ -193,7 +250,8 @@ class EdgeMarks(Marks):
         pixels = float(self._view_box.height())
         if pixels > 0.0:
             low, high = self._view_box.viewRange()[1]
-            self.item.setPos(0.0, low + self._height * (high - low) / pixels)
+            for item in [self.item, *self._carried]:
+                item.setPos(0.0, low + self._height * (high - low) / pixels)
 
     def remove(self) -> None:
         """Take the marks out of the view for good."""

@@ -11,8 +11,9 @@ from PySide6.QtWidgets import QAbstractItemView, QHeaderView, QTableView, QWidge
 from reliability_app.engine.cautions import Severity
 from reliability_app.session.analysis import SetAnalysis
 from reliability_app.session.picture import Reading
-from reliability_app.session.plain_output import readings_as_tab_separated
+from reliability_app.session.table_contents import readings_table
 from reliability_app.session.wording import SAFE_SIDES, Toward, ask_title, value_text
+from reliability_app.windows.copied_table import copy_table
 
 _ROUNDED: tuple[Toward, ...] = ("nearest", *SAFE_SIDES)
 _HEADINGS = ("Reading", "Estimate", "Lower", "Upper", "")
@@ -114,9 +115,9 @@ class ReadingsTable(QTableView):
             self.scrollTo(self._model.index(row, 0))
 
     def copy_all(self) -> None:
-        """Copy all readings with headings as tab-separated text."""
+        """Copy all readings with headings, what they rest on and their cautions."""
         if self._analysis is not None:
-            QGuiApplication.clipboard().setText(readings_as_tab_separated(self._analysis))
+            copy_table(readings_table(self._analysis))
 
     def _add_actions(self) -> None:
         self.setContextMenuPolicy(Qt.ContextMenuPolicy.ActionsContextMenu)

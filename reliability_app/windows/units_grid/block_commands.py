@@ -19,7 +19,10 @@ def cells_to_copy(table: UnitTable, ranges: Sequence[CellRange]) -> tuple[list[s
     sections = sorted({section for part in ranges for section in part.sections})
     columns = [table.columns[section] for section in sections]
     if len(ranges) == 1 or len(rows) * len(sections) == sum(_area(part, table) for part in ranges):
-        return columns, [[table.text(row, column) for column in columns] for row in rows]
+        if not rows:
+            return columns, []
+        texts = [table.texts(column) for column in columns]
+        return columns, [[column[row] for column in texts] for row in rows]
     cells = []
     for row in rows:
         selected = {section for part in ranges if row in part.rows for section in part.sections}
@@ -35,7 +38,7 @@ def clear_edit(
     for part in ranges:
         columns = tuple(table.columns[section] for section in part.sections)
         rows = range(part.top, min(part.bottom + 1, table.row_count))
-        if any(table.text(row, column) for row in rows for column in columns):
+        if any(any(table.texts(column)[part.top : part.bottom + 1]) for column in columns):
             blocks.append(Block(part.top, columns, [[""] * len(columns)] * len(rows)))
     return edit_of(blocks, set_index, doing=doing)
 

@@ -16,9 +16,12 @@ class CountsLine(QWidget):
     -------
     next_unread_asked()
         The next row that cannot be read is to be shown.
+    list_asked(shown)
+        The list of all cells that cannot be read is to be shown, or put away.
     """
 
     next_unread_asked = Signal()
+    list_asked = Signal(bool)
 
     def __init__(self, parent: QWidget | None = None) -> None:
         super().__init__(parent)
@@ -26,12 +29,13 @@ class CountsLine(QWidget):
         self._counts = QLabel()
         self._counts.setTextInteractionFlags(Qt.TextInteractionFlag.TextSelectableByMouse)
         self._reason = wrapped_label()
-        self._button = QToolButton()
-        self._button.setText("Show unread")
-        self._button.setAccessibleName("Show the next unread row")
-        self._button.setToolTip("Go to the next row that cannot be read (F8)")
-        self._button.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
+        self._button = _button("Show unread", "Show the next unread row", "Go to the next row that cannot be read (F8)")
         self._button.clicked.connect(self.next_unread_asked)
+        self._list = _button(
+            "List", "List all unread cells", "List all cells that cannot be read, with reasons (Shift+F8)"
+        )
+        self._list.setCheckable(True)
+        self._list.toggled.connect(self.list_asked)
         self._lay_out()
 
     @property
@@ -49,7 +53,18 @@ class CountsLine(QWidget):
         self._unread = counts.unread
         self._counts.setText(counts_sentence(counts))
         self._button.setVisible(counts.unread > 0)
+        self._list.setVisible(counts.unread > 0)
         self._reason.setVisible(counts.unread > 0)
+
+    def open_list(self) -> None:
+        """Ask for the list of unread cells, if there are any, and again if it is open."""
+        if self._unread:
+            self._list.setChecked(False)
+            self._list.setChecked(True)
+
+    def note_list_closed(self) -> None:
+        """Take in that the list of unread cells was put away."""
+        self._list.setChecked(False)
 
     def tell_reason(self, row: int, reason: str | None) -> None:
         """Show why a row cannot be read, in a sentence; None for a row that can be."""
@@ -64,12 +79,22 @@ class CountsLine(QWidget):
         line.setContentsMargins(0, 0, 0, 0)
         line.addWidget(self._counts)
         line.addStretch(1)
+        line.addWidget(self._list)
         line.addWidget(self._button)
         column = QVBoxLayout(self)
         column.setContentsMargins(6, 0, 3, 3)
         column.setSpacing(2)
         column.addLayout(line)
         column.addWidget(self._reason)
+
+
+def _button(text: str, name: str, tip: str) -> QToolButton:
+    button = QToolButton()
+    button.setText(text)
+    button.setAccessibleName(name)
+    button.setToolTip(tip)
+    button.setFocusPolicy(Qt.FocusPolicy.StrongFocus)
+    return button
 
 
 def counts_sentence(counts: Counts) -> str:

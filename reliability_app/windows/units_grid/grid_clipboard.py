@@ -5,6 +5,7 @@ from __future__ import annotations
 import csv
 import html
 import io
+import re
 from collections.abc import Sequence
 from dataclasses import dataclass
 
@@ -13,6 +14,10 @@ from PySide6.QtGui import QGuiApplication
 
 # Marks a block that was copied here, so that it is pasted back cell by cell and never guessed at.
 OWN_FORMAT = "application/x-rigpaper-cells"
+
+_SPECIAL = re.compile("[&<>\"']")
+# Stands between cells while they are escaped together: a noncharacter that Unicode sets aside for such inner use.
+_BETWEEN = "\ufdd0"
 
 Cells = Sequence[Sequence[str]]
 
@@ -63,8 +68,13 @@ def cells_of(text: str) -> list[list[str]]:
 def html_table(cells: Cells, *, headings: Sequence[str] = ()) -> str:
     """Write cells as an HTML table."""
     head = f"<thead>{_html_row(headings, 'th')}</thead>" if headings else ""
-    body = "".join(_html_row(row, "td") for row in cells)
+    # One call over all cells of a row, not one a cell: with 100,000 rows that is the half of copying.
+    body = "".join(f"<tr><td>{_escaped(_BETWEEN.join(row)).replace(_BETWEEN, '</td><td>')}</td></tr>" for row in cells)
     return f'<meta charset="utf-8"><table>{head}<tbody>{body}</tbody></table>'
+
+
+def _escaped(text: str) -> str:
+    return html.escape(text) if _SPECIAL.search(text) else text
 
 
 def _html_row(row: Sequence[str], tag: str) -> str:

@@ -199,7 +199,9 @@ class GridModel(QAbstractTableModel):
             self.beginRemoveColumns(_TOP, new, old - 1)
             self._columns = columns
             self.endRemoveColumns()
-        elif columns != self._columns:
+        elif old == new:  # one was renamed: the current cell and the selection stay
+            self._columns = columns
+        else:
             self.beginResetModel()
             self._show(self._table)
             self.endResetModel()

@@ -126,8 +126,9 @@ class GridView(QTableView):
         return sorted(ranges, key=lambda part: (part.top, part.left))
 
     def select_block(self, block: CellRange) -> None:
-        """Select a rectangle and show it; its first cell becomes the current one."""
-        first = self._model.index(block.top, block.left)
+        """Select a rectangle and show it; its first cell that is not hidden becomes the current one."""
+        left = next((section for section in block.sections if not self.isColumnHidden(section)), block.left)
+        first = self._model.index(block.top, left)
         if not first.isValid():
             return
         self.selectionModel().setCurrentIndex(first, _Flag.ClearAndSelect)
@@ -183,6 +184,8 @@ class GridView(QTableView):
         block = self._block_to_go_round()
         if block is not None:
             place = step_within(block, self.current_cell(), step)
+            while self.isColumnHidden(place[1]) and place != self.current_cell():
+                place = step_within(block, place, step)
             self.selectionModel().setCurrentIndex(self._model.index(*place), _Flag.NoUpdate)
             return
         row, section = self.current_cell()
@@ -190,7 +193,7 @@ class GridView(QTableView):
             if self._tab_start is None:
                 self._tab_start = section
             tab_start = self._tab_start
-            last = self._model.columnCount() - 1
+            last = max(self._shown_sections())
             if step is Step.RIGHT and section == last and row + 1 < self._model.rowCount():
                 # Past the last column goes on in the next row, where the run began.
                 self._go_within_table(row + 1, tab_start)
@@ -216,6 +219,9 @@ class GridView(QTableView):
         elif event.key() == Qt.Key.Key_Space and modifiers == _SHIFT:
             rows = [row for part in self.selected_ranges() for row in (part.top, part.bottom)]
             self.select_block(CellRange(min(rows), 0, max(rows), self._model.columnCount() - 1))
+        elif event.key() == Qt.Key.Key_Space and modifiers == _CONTROL:
+            places = [place for part in self.selected_ranges() for place in (part.left, part.right)]
+            self.select_block(CellRange(0, min(places), self._model.rowCount() - 1, max(places)))
         else:
             if arrow is not None:
                 self._tab_start = None
@@ -231,7 +237,17 @@ class GridView(QTableView):
 
     def _move_by(self, step: Step) -> None:
         row, section = self.current_cell()
-        self._go_within_table(row + step.value[0], section + step.value[1])
+        down, right = step.value
+        shown = self._shown_sections()
+        if right > 0:
+            section = min((place for place in shown if place > section), default=section)
+        elif right < 0:
+            section = max((place for place in shown if place < section), default=section)
+        self._go_within_table(row + down, section)
+
+    def _shown_sections(self) -> list[int]:
+        sections = range(self._model.columnCount())
+        return [section for section in sections if not self.isColumnHidden(section)]
 
     def _go_within_table(self, row: int, section: int) -> None:
         row = max(0, min(row, self._model.rowCount() - 1))
@@ -241,6 +257,8 @@ class GridView(QTableView):
     def _jump(self, step: Step, *, extend: bool) -> None:
         cell = self.current_cell()
         ahead = cells_ahead(cell, step, rows=self._model.rowCount(), sections=self._model.columnCount())
+        if step in (Step.LEFT, Step.RIGHT):
+            ahead = [place for place in ahead if not self.isColumnHidden(place[1])]
         target = edge_of_run(cell, ahead, self._is_filled)
         if not extend:
             self.go_to(*target)

@@ -115,7 +115,8 @@ def _understood(clip: Clip, place: PastePlace) -> Understanding:
     column = place.columns_from_start[0]
     # In an empty table the cursor rests on the first cell, which says nothing about what is pasted.
     at_column = None if place.is_empty and place.start == (0, 0) else column
-    return understand(clip.text, clip.html, existing=place.table, at_column=at_column)
+    unit = None if place.session_is_empty else place.life_unit
+    return understand(clip.text, clip.html, existing=place.table, at_column=at_column, session_unit=unit)
 
 
 def _is_list(clip: Clip, place: PastePlace) -> bool:
@@ -127,21 +128,31 @@ def _is_list(clip: Clip, place: PastePlace) -> bool:
 
 def _as_table(understood: Understanding, place: PastePlace) -> PastePlan:
     if not understood.rows:
-        return PastePlan(None, understood.sentence, understood.notes)
-    takes_unit = place.session_is_empty and bool(understood.life_unit)
+        return PastePlan(None, understood.sentence, understood.notes, understood=_changeable(understood))
+    life_unit = takes_life_unit(understood, session_is_empty=place.session_is_empty)
     edit_type = ReplaceRows if place.all_selected and not place.is_empty else PasteRows
     edit = edit_type(
         place.model.set_index,
         understood.rows,
         understood.extra_columns,
-        life_unit=understood.life_unit if takes_unit else None,
+        life_unit=life_unit,
     )
     start = 0 if edit_type is ReplaceRows else place.table.row_count
     notes = understood.notes
-    if understood.life_unit and not takes_unit and understood.life_unit != place.life_unit:
-        notes = (*notes, _other_unit(understood.life_unit, place.life_unit))
+    if understood.life_unit and life_unit is None and understood.life_unit != place.life_unit:
+        notes = (*notes, other_unit(understood.life_unit, place.life_unit))
     rows = range(start, start + len(understood.rows))
     return PastePlan(edit, understood.sentence, notes, rows, understood=understood)
+
+
+def takes_life_unit(understood: Understanding, *, session_is_empty: bool) -> str | None:
+    """Return the unit of lives that the session is to take over from a table; None if it has one already."""
+    return understood.life_unit if session_is_empty and understood.life_unit else None
+
+
+def _changeable(understood: Understanding) -> Understanding | None:
+    """Return a table without rows only if it may have some when read differently."""
+    return understood if understood.source.columns else None
 
 
 def _belongs_elsewhere(understood: Understanding, block: Sequence[Sequence[str]], place: PastePlace) -> bool:
@@ -189,5 +200,6 @@ def _did_not_fit(count: int) -> str:
     return f"{what} of the block did not fit: undo, and paste further to the left."
 
 
-def _other_unit(theirs: str, ours: str) -> str:
+def other_unit(theirs: str, ours: str) -> str:
+    """Say that a table gives lives in another unit than the session."""
     return f"The table gives lives in {theirs}, this session in {ours}: convert them if these differ."

@@ -3,28 +3,39 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from functools import partial
 
 from PySide6.QtCore import QPoint, Signal
 from PySide6.QtGui import QAction
 from PySide6.QtWidgets import QMenu, QVBoxLayout, QWidget
 
 from reliability_app.session.document import Change, Session
-from reliability_app.session.edits import Edit, RemoveColumn, TableEdit
+from reliability_app.session.edits import Edit, TableEdit
 from reliability_app.session.understanding import Understanding
-from reliability_app.session.unit_table import BUILT_IN_COLUMNS, UnitTable
+from reliability_app.session.unit_table import UnitTable
+from reliability_app.windows.command_search import WHY_PROPERTY
 from reliability_app.windows.units_grid import block_commands
+from reliability_app.windows.units_grid.column_commands import ColumnCommands
 from reliability_app.windows.units_grid.counts_line import CountsLine
+from reliability_app.windows.units_grid.faults_list import FaultsList
+from reliability_app.windows.units_grid.find_strip import FindStrip
+from reliability_app.windows.units_grid.finder import Finder
 from reliability_app.windows.units_grid.grid_actions import GridActions, make_actions
 from reliability_app.windows.units_grid.grid_clipboard import put_cells, read_clip
 from reliability_app.windows.units_grid.grid_model import GridModel
 from reliability_app.windows.units_grid.grid_moves import CellRange
 from reliability_app.windows.units_grid.grid_view import GridView
-from reliability_app.windows.units_grid.paste_changes import change_menu
-from reliability_app.windows.units_grid.paste_plan import PastePlace, PastePlan, plan_again, plan_paste
+from reliability_app.windows.units_grid.paste_plan import PastePlace, plan_paste
 from reliability_app.windows.units_grid.paste_strip import PasteStrip
+from reliability_app.windows.units_grid.shown_columns import ShownColumns
+from reliability_app.windows.units_grid.table_intake import TableIntake
+from reliability_app.windows.waiting import wait_for
 
 # What the grid shows; a reading that is dragged must not repaint it all the time.
 _SHOWN = ("units", "life_unit", "everything")
+
+# Understanding a longer text may take longer than a window may stand still.
+_LONG_TEXT = 300_000
 
 
 class UnitsGrid(QWidget):
@@ -49,13 +60,16 @@ class UnitsGrid(QWidget):
         self._push_edit = push_edit
         self._session = Session()
         self._set_index = 0
-        self._paste: Edit | None = None
-        self._plan: PastePlan | None = None
-        self._aimed_at: PastePlace | None = None
         self.model = GridModel(push_edit, self)
         self.view = GridView(self.model, self)
         self.strip = PasteStrip(self)
+        self.intake = TableIntake(self.model, self.view, self.strip, push_edit, self)
+        self.faults = FaultsList(self)
         self.counts_line = CountsLine(self)
+        self.shown_columns = ShownColumns(self.model, self.view, self)
+        self.columns = ColumnCommands(self.model, self.view, self.shown_columns, push_edit, self)
+        self.find_strip = FindStrip(self)
+        self.finder = Finder(self.model, self.view, self.find_strip, self.shown_columns, push_edit, self)
         self.actions_by_name: GridActions = make_actions(self, self)
         self._lay_out()
         self._connect()
@@ -69,19 +83,25 @@ class UnitsGrid(QWidget):
         """Show the units of another set, or of another session."""
         self._session = session
         self._set_index = set_index
-        self._put_strip_away()
+        self.intake.put_away()
         self.model.show_table(session.sets[set_index].table, set_index, life_unit=session.life_unit)
         self._tell_counts()
+        self.finder.follow()
 
     def refresh(self, change: Change) -> None:
         """Follow a change of the session: called for every one of them."""
-        self._follow_paste()
+        self.intake.follow()
         unit_set = self._session.sets[min(self._set_index, len(self._session.sets) - 1)]
         if unit_set.table is not self.model.table:
             self.show_set(self._session, self._session.sets.index(unit_set))
         elif change.kind in _SHOWN and change.set_index in (None, self._set_index):
             self.model.refresh(life_unit=self._session.life_unit)
             self._tell_counts()
+            self.finder.follow()
+
+    def show_opened(self, understood: Understanding) -> None:
+        """Tell what the file, whose table is shown, was understood to be; it can be read differently."""
+        self.intake.show_opened(understood)
 
     def finish_entry(self) -> None:
         """Take over what is being typed: called before saving, closing and whatever else looks at the session."""
@@ -120,7 +140,9 @@ class UnitsGrid(QWidget):
         """Paste what the clipboard holds, as one edit."""
         self.view.finish_entry()
         place = self._paste_place()
-        self._carry_out_paste(plan_paste(read_clip(), place), place)
+        clip = read_clip()
+        plan = wait_for(partial(plan_paste, clip, place)) if len(clip.text) > _LONG_TEXT else plan_paste(clip, place)
+        self.intake.carry_out(plan, place)
 
     def clear(self) -> None:
         """Empty the selected cells."""
@@ -163,10 +185,48 @@ class UnitsGrid(QWidget):
         if row is None:
             return
         fault = self.model.row_fault(row)
-        section = self.model.columns.index(fault[0]) if fault is not None else 0
         self.view.setFocus()
-        self.view.go_to(row, section)
-        self._tell_reason()
+        self._go_to_fault(row, fault[0] if fault is not None else self.model.columns[0])
+
+    def list_unread(self) -> None:
+        """Open the list of all cells that cannot be read, if there are any."""
+        self.counts_line.open_list()
+
+    def find_text(self) -> None:
+        """Ask for a text to find in the units."""
+        self.finder.open()
+
+    def replace(self) -> None:
+        """Ask for a text to find, and one to put in its place."""
+        self.finder.open_replacing()
+
+    def find_next(self) -> None:
+        """Go to the next cell that holds the text looked for."""
+        self.finder.go_on()
+
+    def find_previous(self) -> None:
+        """Go to the cell before that holds the text looked for."""
+        self.finder.go_back()
+
+    def hide_columns(self) -> None:
+        """Hide the columns of the selection; their cells go on counting."""
+        self.columns.hide()
+
+    def show_columns(self) -> None:
+        """Show all columns."""
+        self.shown_columns.show_all()
+
+    def add_column(self) -> None:
+        """Add a column of the user's own."""
+        self.columns.add()
+
+    def rename_column(self) -> None:
+        """Rename the current column, if it is one of the user's own."""
+        self.columns.rename()
+
+    def remove_column(self) -> None:
+        """Remove the current column, if it is one of the user's own."""
+        self.columns.remove()
 
     # Inside
 
@@ -196,68 +256,34 @@ class UnitsGrid(QWidget):
             life_unit=self._session.life_unit,
         )
 
-    def _carry_out_paste(self, plan: PastePlan, place: PastePlace) -> None:
-        self._push(plan.edit)
-        self._tell_paste(plan)
-        self._paste, self._plan, self._aimed_at = plan.edit, plan, place
-
-    def _show_change_menu(self, corner: QPoint) -> None:
-        if self._plan is None or self._plan.understood is None:
-            return
-        menu = change_menu(self._plan.understood, self._read_paste_again, self)
-        menu.aboutToHide.connect(menu.deleteLater)
-        menu.popup(corner)
-
-    def _read_paste_again(self, understood: Understanding) -> None:
-        """Put the paste in the way it is now read in the place of the paste as it was."""
-        paste, place = self._paste, self._aimed_at
-        if paste is None or place is None:
-            return
-        self.undo_paste_asked.emit(paste)
-        if not paste.applied:
-            self._carry_out_paste(plan_again(understood, place), place)
-
-    def _tell_paste(self, plan: PastePlan) -> None:
-        unread = sum(self._table.row_is_read(row) is False for row in plan.rows)
-        if plan.columns:
-            self.view.select_block(self._block(plan))
-        elif plan.rows:
-            self.view.go_to(plan.rows[0], 0)
-        if plan.edit is not None and len(plan.rows) == len(plan.columns) == 1 and not unread:
-            self._put_strip_away()
-            return
-        self.strip.tell(
-            plan.sentence,
-            notes=plan.notes,
-            unread=unread,
-            can_undo=plan.edit is not None,
-            can_change=plan.understood is not None,
-        )
-
-    def _block(self, plan: PastePlan) -> CellRange:
-        sections = [self.model.columns.index(column) for column in plan.columns]
-        return CellRange(plan.rows[0], min(sections), plan.rows[-1], max(sections))
-
-    def _follow_paste(self) -> None:
-        """Keep the strip true: gone with its paste, and without Undo once anything else was done."""
-        if self._paste is None:
-            return
-        if self._paste.applied:
-            self.strip.forbid_undo()
-        else:
-            self._put_strip_away()
-
-    def _put_strip_away(self) -> None:
-        self._paste = None
-        self.strip.hide()
-
     def _tell_counts(self) -> None:
         self.counts_line.tell_counts(self._table.counts())
+        self.faults.refresh(self._table)
+        self._tell_reason()
+
+    def _show_list(self, shown: bool) -> None:
+        if shown:
+            self.strip.fold()
+            self.faults.show_faults_of(self._table)
+        else:
+            self.faults.put_away()
+
+    def _go_to_fault(self, row: int, column: str) -> None:
+        self.shown_columns.show(column)
+        self.view.go_to(row, self.model.columns.index(column))
         self._tell_reason()
 
     def _tell_reason(self) -> None:
         row, section = self.view.current_cell()
         self.counts_line.tell_reason(row, self.model.reason_to_tell(row, section))
+
+    def _mark_own_column(self) -> None:
+        act, is_own = self.actions_by_name, self.columns.current_is_own()
+        for action in (act.rename_column, act.remove_column):
+            action.setEnabled(is_own)
+            action.setProperty(WHY_PROPERTY, "Only columns of your own can be changed: go to a cell of one first.")
+        act.show_columns.setEnabled(bool(self.shown_columns.hidden_here()))
+        act.show_columns.setProperty(WHY_PROPERTY, "No column is hidden.")
 
     def _on_row_changed(self, row: int) -> None:
         self.row_selected.emit(row if row < self._table.row_count else -1)
@@ -266,20 +292,26 @@ class UnitsGrid(QWidget):
         column = QVBoxLayout(self)
         column.setContentsMargins(0, 0, 0, 0)
         column.setSpacing(3)
+        column.addWidget(self.find_strip)
         column.addWidget(self.view, 1)
         column.addWidget(self.strip)
+        column.addWidget(self.faults)
         column.addWidget(self.counts_line)
         self.setFocusProxy(self.view)
 
     def _connect(self) -> None:
         self.view.row_changed.connect(self._on_row_changed)
         self.view.selectionModel().currentChanged.connect(self._tell_reason)
+        self.view.selectionModel().currentChanged.connect(self._mark_own_column)
+        self.shown_columns.changed.connect(self._mark_own_column)
         self.view.menu_asked.connect(self._show_cell_menu)
         self.view.column_menu_asked.connect(self._show_column_menu)
-        self.strip.closed.connect(self._put_strip_away)
-        self.strip.change_asked.connect(self._show_change_menu)
-        self.strip.undo_asked.connect(lambda: self.undo_paste_asked.emit(self._paste))
+        self.intake.undo_asked.connect(self.undo_paste_asked)
         self.counts_line.next_unread_asked.connect(self.show_next_unread)
+        self.counts_line.list_asked.connect(self._show_list)
+        self.faults.fault_chosen.connect(self._go_to_fault)
+        self.faults.cell_wanted.connect(self.view.setFocus)
+        self.faults.closed.connect(self.counts_line.note_list_closed)
 
     def _show_cell_menu(self, place: QPoint) -> None:
         self.cell_menu().popup(place)
@@ -306,9 +338,7 @@ class UnitsGrid(QWidget):
         menu = _menu(self, f"Column {self.model.heading(column)}")
         menu.addAction("Sort, &smallest first", lambda: self._sort(section, descending=False))
         menu.addAction("Sort, &largest first", lambda: self._sort(section, descending=True))
-        if column not in BUILT_IN_COLUMNS:
-            menu.addSeparator()
-            menu.addAction("&Remove column", lambda: self._push_edit(RemoveColumn(self._set_index, column)))
+        self.columns.add_to_menu(menu, column)
         return menu
 
 

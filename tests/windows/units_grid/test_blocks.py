@@ -73,7 +73,7 @@ def test_copy_with_headings_makes_a_table_that_reads_back_as_one(rig):
     rig.fill(*THREE)
     before = rig.texts
     rig.key(Key.Key_A, CONTROL)
-    rig.key(Key.Key_H, CONTROL | SHIFT)
+    rig.key(Key.Key_T, CONTROL | SHIFT)
     assert clipboard().text().splitlines()[0] == "Unit\tLife (h)\tUntil (h)\tState\tQty\tEntered (h)\tCause\tNote"
     rig.key(Key.Key_V, CONTROL)
     assert rig.texts == before

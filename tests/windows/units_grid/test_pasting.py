@@ -75,7 +75,7 @@ def test_the_strip_can_be_closed(rig):
 
 def test_notes_unfold_below_the_strip(rig):
     rig.paste("812\n1500\n")
-    button = strip_button(rig, "Show or hide what was odd about the paste")
+    button = strip_button(rig, "Show or hide what was odd about the table")
     assert button.text() == "1 note"
     rig.qtbot.mouseClick(button, Qt.MouseButton.LeftButton)
     assert "no state column" in rig.grid.strip.notes
