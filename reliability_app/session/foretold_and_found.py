@@ -59,12 +59,15 @@ class Since:
         Units running then that have no name, and cannot be followed.
     assumption : str
         How the ages of the failed units were taken, as a clause; "" where none failed.
+    unaged : tuple of str
+        Units that have not aged since (removed, or not seen again): they could not fail, and do not count.
     """
 
     followed: tuple[Followed, ...]
     lost: tuple[str, ...]
     nameless: int
     assumption: str
+    unaged: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True, eq=False)
@@ -133,6 +136,8 @@ def agreement(
         If no unit can be followed, or nothing can be foretold under the plan of the earlier units.
     """
     since = what_became(table_then, table_now)
+    if not since.followed and since.unaged:
+        raise BoundUnavailable("No unit that was running then has aged since, so that none could have failed.")
     if not since.followed:
         raise BoundUnavailable(
             "No unit that was running then is named in the later table, so that none can be followed: give the units "
@@ -150,17 +155,19 @@ def what_became(table_then: UnitTable, table_now: UnitTable) -> Since:
     """Follow the units that were running then into a later table."""
     now = _by_name(table_now)
     matched: list[tuple[str, float, list[_Row]]] = []
-    lost, nameless = [], 0
+    lost, unaged, nameless = [], [], 0
     for name, rows in _by_name(table_then).items():
         units = sum(row.quantity for row in rows if row.is_running)
         if not units:
             continue
         if not name:
             nameless += units
-        elif _can_be_followed(rows, now.get(name, [])):
-            matched.append((name, rows[0].lower, now[name]))
-        else:
+        elif not _can_be_followed(rows, now.get(name, [])):
             lost.append(name)
+        elif all(row.is_running and row.lower == rows[0].lower for row in now[name]):
+            unaged.append(name)
+        else:
+            matched.append((name, rows[0].lower, now[name]))
     horizon, words = _horizon(
         [(then, row.lower) for _, then, found in matched for row in found if row.is_running],
         [row.latest for _, _, found in matched for row in found],
@@ -176,7 +183,8 @@ def what_became(table_then: UnitTable, table_now: UnitTable) -> Since:
         for name, then, found in matched
         for row in found
     )
-    return Since(followed, tuple(lost), nameless, words if any(row.failed for row in followed) else "")
+    words = words if any(row.failed for row in followed) else ""
+    return Since(followed, tuple(lost), nameless, words, tuple(unaged))
 
 
 @dataclass(frozen=True)

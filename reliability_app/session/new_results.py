@@ -16,6 +16,7 @@ from math import inf, isinf
 
 from reliability_app.session.table_edits import TableEdit
 from reliability_app.session.unit_table import TableChange, UnitTable
+from reliability_app.session.wording import listed_names
 
 _OBSERVED = ("life", "until", "state")
 
@@ -137,7 +138,7 @@ class News:
         counted = Counter(news.happened for news in self.units)
         parts = [f"{counted[kind]} {kind.value}" for kind in Happened if counted[kind]]
         if self.missing:
-            parts.append(f"{len(self.missing)} not in the newer table, left as they are")
+            parts.append(f"{len(self.missing)} not in the newer table, left as they are ({listed_names(self.missing)})")
         return ", ".join(parts) if parts else "The newer table holds no units."
 
 
@@ -252,7 +253,9 @@ def _happened(before: Observed, after: Observed, *, changed: bool) -> Happened:
         if latest < before.lower or ends_too_soon:
             return Happened.YOUNGER
         return Happened.OLDER if after.is_running else Happened.NEWLY_FAILED
-    return Happened.RUNS_AGAIN if after.is_running else Happened.CORRECTED
+    if after.is_running:
+        return Happened.RUNS_AGAIN
+    return Happened.YOUNGER if after.upper < before.lower else Happened.CORRECTED
 
 
 def _observations(table: UnitTable) -> dict[int, Observed]:

@@ -100,8 +100,9 @@ class Promise:
         """What was measured, as a sentence."""
         counted = "." if self.cell.share_read >= _FEW_READ else f"; {self._few_read}."
         return (
-            f"In simulated tests like this one ({self.cell.design}) one-sided {100 * self.confidence:g} % {self.side} "
-            f"B{self.percent:g} bounds of this kind held in {100 * self.held:.1f} % of {self.tests:,}{counted}"
+            f"In simulated tests of the nearest design studied ({self.cell.design}) "
+            f"one-sided {100 * self.confidence:g} % {self.side} B{self.percent:g} bounds of this kind held in "
+            f"{100 * self.held:.1f} % of {self.tests:,}{counted}"
         )
 
     @property
@@ -118,12 +119,12 @@ class Promise:
             reading = "does not keep its promise here"
             code, severity, help_ = "promise-not-kept", Severity.CAUTION, "; more failures would help"
         else:
-            reading = "holds more often than it promises here, so it lies further out than need be"
+            reading = "holds more often than it promises here, so it is more cautious than need be"
             code, severity, help_ = "promise-exceeded", Severity.NOTE, ""
         few = f"; {self._few_read}" if self.cell.share_read < _FEW_READ else ""
         text = (
-            f"{subject}: the bound {reading}: in simulated tests like this one ({self.cell.design}) one-sided "
-            f"{100 * self.confidence:g} % {self.side} bounds held in {100 * self.held:.1f} %{few}{help_}."
+            f"{subject}: the bound {reading}: in simulated tests of the nearest design studied "
+            f"({self.cell.design}) one-sided {100 * self.confidence:g} % {self.side} bounds held in {100 * self.held:.1f} %{few}{help_}."
         )
         return (Caution(code, severity, text, subject),)
 

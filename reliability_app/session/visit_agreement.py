@@ -14,6 +14,7 @@ from reliability_app.session.document import Basis, Session
 from reliability_app.session.foretold_and_found import Agreement, agreement
 from reliability_app.session.unit_table import UnitTable
 from reliability_app.session.visit_history import TODAY, SetThen, set_then
+from reliability_app.session.wording import listed_names
 
 
 @dataclass(frozen=True)
@@ -83,8 +84,10 @@ class Held:
         if since.assumption:
             told.append(f"{since.assumption[0].upper()}{since.assumption[1:]}.")
         if since.lost:
-            names = ", ".join(since.lost[:3]) + (" and others" if len(since.lost) > 3 else "")
+            names = listed_names(since.lost)
             told.append(f"Not followed, because the later table does not tell what became of them: {names}.")
+        if since.unaged:
+            told.append(f"Not counted, because they have not aged since: {listed_names(since.unaged)}.")
         if since.nameless:
             told.append(f"{since.nameless} units without a name were running then and cannot be followed.")
         return tuple(told)

@@ -338,9 +338,14 @@ def _opening(text: str) -> str:
     return text[0].upper() + text[1:]
 
 
+def listed_names(names: Sequence[str]) -> str:
+    """Return the names of units as a list, those after the third as "others"."""
+    return ", ".join(names[:_NAMES_SHOWN]) + (" and others" if len(names) > _NAMES_SHOWN else "")
+
+
 def repeated_caution(names: Sequence[str]) -> Caution:
     """Return the caution that units of one name stand in several rows and are counted in each."""
-    shown = ", ".join(names[:_NAMES_SHOWN]) + (" and others" if len(names) > _NAMES_SHOWN else "")
+    shown = listed_names(names)
     return Caution(
         "units-repeated",
         Severity.CAUTION,

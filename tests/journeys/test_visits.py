@@ -273,6 +273,10 @@ def test_newer_results_come_from_a_spreadsheet_and_can_be_left(desk: Desk, tmp_p
     assert not dialog.take_button.isEnabled()
     assert "Nothing in it is new" in dialog.sentence.text()
     leave(desk, dialog)
+    dialog = bring_in(desk, SECOND.replace("Life", "Life (min)"))
+    assert "lives in min, the session in h" in dialog.sentence.text()
+    assert not dialog.take_button.isEnabled()
+    leave(desk, dialog)
 
 
 @pytest.mark.usefixtures("page")

@@ -79,6 +79,15 @@ def test_where_ages_differ_the_median_gain_is_taken_and_no_failure_lies_beyond_i
     assert "median" in since.assumption
 
 
+def test_a_unit_that_has_not_aged_could_not_fail_and_does_not_count():
+    then = table({}, {"A": 100, "B": 300, "C": 500, "D": 300})
+    since = what_became(then, table({"A": 150}, {"B": 550, "C": 750, "D": 300}))
+    assert since.unaged == ("D",)
+    assert [(row.unit, row.reached) for row in since.followed] == [("A", 350), ("B", 550), ("C", 750)]
+    with pytest.raises(BoundUnavailable, match="has aged since"):
+        agreement(fit(THEN.life_data(), "weibull"), THEN, THEN)
+
+
 def test_units_that_cannot_be_followed_are_named():
     then = UnitTable.from_rows(
         [

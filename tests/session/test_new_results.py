@@ -37,7 +37,7 @@ def test_each_unit_is_told_by_what_has_happened_to_it():
     assert found.missing == ("P-4",)
     assert found.sentence == (
         "1 newly failed, 1 still running and older, 1 new, 1 corrected, 1 unchanged, "
-        "1 not in the newer table, left as they are"
+        "1 not in the newer table, left as they are (P-4)"
     )
 
 
@@ -48,6 +48,8 @@ def test_each_unit_is_told_by_what_has_happened_to_it():
         ("P-2,400,running", Happened.YOUNGER),
         ("P-2,400,failed", Happened.YOUNGER),
         ("P-2,300,found failed,,450", Happened.YOUNGER),
+        ("P-1,0.812,failed", Happened.YOUNGER),
+        ("P-1,820,failed", Happened.CORRECTED),
         ("P-2,450,found failed,,600", Happened.NEWLY_FAILED),
         ("P-2,500,failed", Happened.NEWLY_FAILED),
         ("P-2,many,failed", Happened.UNREAD),

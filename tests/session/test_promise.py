@@ -124,8 +124,8 @@ def test_of_what_was_not_measured_nothing_is_said(failures: int, units: int, cha
 
 def test_the_words_name_the_design_the_bound_and_the_number_of_tests() -> None:
     assert made_up(0.953).text == (
-        "In simulated tests like this one (20 units, about 25 % failing before a fixed end) one-sided 95 % lower B10 "
-        "bounds of this kind held in 95.3 % of 20,000."
+        "In simulated tests of the nearest design studied (20 units, about 25 % failing before a fixed end) "
+        "one-sided 95 % lower B10 bounds of this kind held in 95.3 % of 20,000."
     )
     assert made_up(0.953, share_read=0.6).text.endswith(
         "of 20,000; only the 60 % of such tests count that see three failures or more."
@@ -136,13 +136,13 @@ def test_a_miss_is_a_caution_with_its_measured_figure() -> None:
     (caution,) = made_up(0.912, share_read=0.33).cautions
     assert (caution.code, caution.severity) == ("promise-not-kept", Severity.CAUTION)
     assert caution.text == (
-        "B10 life: the bound does not keep its promise here: in simulated tests like this one (20 units, about 25 % "
-        "failing before a fixed end) one-sided 95 % lower bounds held in 91.2 %; only the 33 % of such tests count "
-        "that see three failures or more; more failures would help."
+        "B10 life: the bound does not keep its promise here: in simulated tests of the nearest design studied "
+        "(20 units, about 25 % failing before a fixed end) one-sided 95 % lower bounds held in 91.2 %; only the 33 % of "
+        "such tests count that see three failures or more; more failures would help."
     )
     (note,) = made_up(0.99).cautions
     assert (note.code, note.severity) == ("promise-exceeded", Severity.NOTE)
-    assert "further out than need be" in note.text
+    assert "more cautious than need be" in note.text
 
 
 def test_the_mark_allows_a_point_and_the_noise_of_the_measurement() -> None:

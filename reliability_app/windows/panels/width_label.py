@@ -2,9 +2,9 @@
 
 from __future__ import annotations
 
-from PySide6.QtCore import QSize, Qt
+from PySide6.QtCore import QEvent, QSize, Qt
 from PySide6.QtGui import QResizeEvent
-from PySide6.QtWidgets import QLabel, QSizePolicy
+from PySide6.QtWidgets import QApplication, QLabel, QSizePolicy
 
 
 class WidthLabel(QLabel):
@@ -24,9 +24,8 @@ class WidthLabel(QLabel):
         policy = QSizePolicy(QSizePolicy.Policy.Expanding, QSizePolicy.Policy.Minimum)
         policy.setHeightForWidth(True)
         self.setSizePolicy(policy)
-        font = self.font()
-        font.setPointSizeF(font.pointSizeF() * size)
-        self.setFont(font)
+        self._size = size
+        self._scale()
 
     def sizeHint(self) -> QSize:
         """Ask for the height of the words in the present width."""
@@ -35,6 +34,17 @@ class WidthLabel(QLabel):
     def minimumSizeHint(self) -> QSize:
         """Ask for no less than that."""
         return QSize(super().minimumSizeHint().width(), self.heightForWidth(self.width()))
+
+    def changeEvent(self, event: QEvent) -> None:
+        """Follow the size of the program's text."""
+        super().changeEvent(event)
+        if event.type() == QEvent.Type.ApplicationFontChange:
+            self._scale()
+
+    def _scale(self) -> None:
+        font = QApplication.font(self)
+        font.setPointSizeF(font.pointSizeF() * self._size)
+        self.setFont(font)
 
     def resizeEvent(self, event: QResizeEvent) -> None:
         """Ask anew where the width has changed."""
