@@ -18,6 +18,7 @@ from PySide6.QtCore import QObject, QTimer
 from PySide6.QtWidgets import QApplication, QMessageBox, QWidget
 
 from reliability_app.session.number_style import choose_number_style
+from reliability_app.windows.collecting import Collector
 from reliability_app.windows.main_window import APPLICATION_TITLE, MainWindow
 from reliability_app.windows.settings import WindowSettings
 from reliability_app.windows.text_size import apply_text_step
@@ -42,6 +43,7 @@ def run_window(file: Path | None) -> int:
     choose_number_style(settings.number_style)
     window = MainWindow(settings)
     window.show()
+    Collector(application)
     start = Start(window, file)
     QTimer.singleShot(0, start.begin)
     return application.exec()

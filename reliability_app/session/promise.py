@@ -124,7 +124,8 @@ class Promise:
         few = f"; {self._few_read}" if self.cell.share_read < _FEW_READ else ""
         text = (
             f"{subject}: the bound {reading}: in simulated tests of the nearest design studied "
-            f"({self.cell.design}) one-sided {100 * self.confidence:g} % {self.side} bounds held in {100 * self.held:.1f} %{few}{help_}."
+            f"({self.cell.design}) one-sided {100 * self.confidence:g} % {self.side} bounds held in "
+            f"{100 * self.held:.1f} %{few}{help_}."
         )
         return (Caution(code, severity, text, subject),)
 

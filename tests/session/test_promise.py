@@ -137,8 +137,8 @@ def test_a_miss_is_a_caution_with_its_measured_figure() -> None:
     assert (caution.code, caution.severity) == ("promise-not-kept", Severity.CAUTION)
     assert caution.text == (
         "B10 life: the bound does not keep its promise here: in simulated tests of the nearest design studied "
-        "(20 units, about 25 % failing before a fixed end) one-sided 95 % lower bounds held in 91.2 %; only the 33 % of "
-        "such tests count that see three failures or more; more failures would help."
+        "(20 units, about 25 % failing before a fixed end) one-sided 95 % lower bounds held in 91.2 %; only the 33 % "
+        "of such tests count that see three failures or more; more failures would help."
     )
     (note,) = made_up(0.99).cautions
     assert (note.code, note.severity) == ("promise-exceeded", Severity.NOTE)
