@@ -8,9 +8,10 @@ again, a life shorter than before) is asked about, and left as it was unless the
 
 from __future__ import annotations
 
+import re
 from collections import Counter
 from collections.abc import Collection, Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from enum import Enum
 from math import inf, isinf
 
@@ -19,6 +20,7 @@ from reliability_app.session.unit_table import TableChange, UnitTable
 from reliability_app.session.wording import listed_names
 
 _OBSERVED = ("life", "until", "state")
+_MARKS, _ZEROS = re.compile(r"[\W_]+"), re.compile(r"(?<![0-9])0+(?=[0-9])")
 
 
 class Happened(Enum):
@@ -32,10 +34,11 @@ class Happened(Enum):
     RUNS_AGAIN = "went from failed back to running"
     YOUNGER = "with a life shorter than before"
     TWICE = "of a name that stands more than once"
+    NAMED_ALIKE = "named almost like a unit there"
     UNREAD = "that cannot be read"
 
 
-ASKED_ABOUT = frozenset({Happened.RUNS_AGAIN, Happened.YOUNGER, Happened.TWICE, Happened.UNREAD})
+ASKED_ABOUT = frozenset({Happened.RUNS_AGAIN, Happened.YOUNGER, Happened.TWICE, Happened.NAMED_ALIKE, Happened.UNREAD})
 """What is left as it was unless the user says that it is right."""
 
 
@@ -70,6 +73,8 @@ class UnitNews:
         What was known and what is said now, in words: "running at 500"; "" where there is nothing.
     cells : mapping
         The texts to be written, by column.
+    known_as : str
+        The name of the unit of the set that it may be, where that is written a little otherwise.
     """
 
     happened: Happened
@@ -79,6 +84,7 @@ class UnitNews:
     before: str
     after: str
     cells: Mapping[str, str]
+    known_as: str = ""
 
     @property
     def is_asked_about(self) -> bool:
@@ -96,6 +102,10 @@ class UnitNews:
                 return f"{name} was {self.before} before, and is now {self.after}: is that right?"
             case Happened.TWICE:
                 return f"{name} stands more than once, so that it is not known which row is meant: add it as a new row?"
+            case Happened.NAMED_ALIKE:
+                return (
+                    f"{name} is named almost like {self.known_as}, which was {self.before}: the same, now {self.after}?"
+                )
             case Happened.UNREAD:
                 return f"{name} cannot be read in the newer table: take it as it stands?"
             case Happened.NEW:
@@ -147,6 +157,8 @@ def news_of(table: UnitTable, newer: UnitTable) -> News:
     known, said = _observations(table), _observations(newer)
     rows_of = _rows_by_name(table)
     times = Counter(newer.names().values())
+    missing = tuple(name for name in rows_of if name not in times)
+    alike = _alone_of_their_kind(missing)
     listed = []
     for row in range(newer.row_count):
         name = newer.text(row, "unit")
@@ -155,11 +167,14 @@ def news_of(table: UnitTable, newer: UnitTable) -> News:
         own = rows_of.get(name, ())
         if name and (len(own) > 1 or times[name] > 1):
             listed.append(_added(newer, row, said, Happened.TWICE))
+        elif name and not own and row in said and _kind_of(name) in alike:
+            known_as = alike[_kind_of(name)]
+            match = _matched(table, rows_of[known_as][0], newer, row, (known.get(rows_of[known_as][0]), said[row]))
+            listed.append(replace(match, happened=Happened.NAMED_ALIKE, known_as=known_as))
         elif not name or not own:
             listed.append(_added(newer, row, said, Happened.NEW if row in said else Happened.UNREAD))
         else:
             listed.append(_matched(table, own[0], newer, row, (known.get(own[0]), said.get(row))))
-    missing = tuple(name for name in rows_of if name not in times)
     extra = tuple(name for name in newer.extra_columns if name not in table.columns)
     return News(tuple(listed), missing, extra)
 
@@ -275,6 +290,17 @@ def _words(lower: float, upper: float, quantity: int) -> str:
     if lower == upper:
         return f"failed at {lower:.12g}{several}"
     return f"found failed between {lower:.12g} and {upper:.12g}{several}"
+
+
+def _kind_of(name: str) -> str:
+    """Return what is left of a name without marks, spaces, capitals and leading zeros: P-08, P 8 and p08 are one."""
+    return _ZEROS.sub("", _MARKS.sub("", name).casefold())
+
+
+def _alone_of_their_kind(names: Sequence[str]) -> dict[str, str]:
+    """Return the names that no other resembles, by what is left of them."""
+    times = Counter(map(_kind_of, names))
+    return {_kind_of(name): name for name in names if times[_kind_of(name)] == 1}
 
 
 def _rows_by_name(table: UnitTable) -> dict[str, list[int]]:

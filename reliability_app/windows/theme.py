@@ -13,6 +13,7 @@ from reliability_app.reports.series_looks import DASHES, HUES_ON_DARK, HUES_ON_L
 
 Scheme = Literal["light", "dark", "system"]
 
+_FRAMED = ("QCheckBox", "QRadioButton", "QLineEdit", "QComboBox", "QAbstractSpinBox")
 _SYSTEM_STYLE = "rigpaper_system_style"  # where the application keeps the name of the style it came with
 
 _SYMBOL_NAMES: dict[Symbol, str] = {
@@ -115,6 +116,20 @@ def apply_scheme(app: QApplication, scheme: Scheme) -> None:
     else:
         app.setStyle("Fusion")
         app.setPalette(light_palette() if scheme == "light" else dark_palette())
+        if scheme == "dark":
+            _outline_controls(app)
+
+
+def _outline_controls(app: QApplication) -> None:
+    """Give controls a frame that shows in the dark.
+
+    Fusion draws it in a darker shade of the control's Window colour, which these controls use for nothing else.
+    """
+    palette = app.palette()
+    ground, text = (palette.color(role) for role in (QPalette.ColorRole.Window, QPalette.ColorRole.WindowText))
+    palette.setColor(QPalette.ColorRole.Window, QColor(_blend(ground, text, 0.6)))
+    for control in _FRAMED:
+        app.setPalette(palette, control)  # type: ignore[arg-type]  # the stub says bytes, the call takes text only
 
 
 def light_palette() -> QPalette:

@@ -71,6 +71,17 @@ def test_a_name_that_stands_twice_is_matched_to_none():
     assert told("P-2,640,failed", BEFORE + "\nP-2,20,running") == {"P-2": Happened.TWICE}
 
 
+def test_a_name_written_a_little_otherwise_is_asked_about_and_not_counted_twice():
+    session = Session(sets=[UnitSet("A", table("P-08,500,running\nP-09,500,running\nQ1,5,failed"))])
+    news = news_of(session.sets[0].table, table("p 8,640,failed\nP-09,700,running\nR1,3,failed"))
+    first = news.units[0]
+    assert first.sentence == "p 8 is named almost like P-08, which was running at 500: the same, now failed at 640?"
+    assert [one.happened for one in news.units[1:]] == [Happened.OLDER, Happened.NEW]
+    BringIn(0, news, taken={0}).apply(session)
+    assert session.sets[0].table.row(0) == {"unit": "P-08", "life": "640", "state": "failed"}
+    assert session.sets[0].table.row_count == 4
+
+
 def test_a_row_without_a_name_is_added_and_never_guessed_to_be_an_old_one():
     found = news_of(table(BEFORE), table(",500,running"))
     assert found.units[0].happened is Happened.NEW
