@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping, Sequence
 from itertools import zip_longest
 
-from reliability_app.session.numbers import are_plain, is_plain
+from reliability_app.session.numbers import are_plain, asked_among, is_plain
 from reliability_app.session.row_reading import NUMBER_COLUMNS, canonical_cell, life_entry_of_row
 from reliability_app.session.table_changes import BlockChange
 from reliability_app.session.text_columns import TextColumns
@@ -16,6 +16,8 @@ _LIFE_COLUMNS = ("life", "until", "state")
 def plan_block(texts: TextColumns, row: int, *, typed: Mapping[str, Sequence[str]]) -> BlockChange:
     """Return the change that writes `typed`, given column by column, from `row` on; see `UnitTable.set_block`."""
     after = {column: _canonical_texts(column, cells) for column, cells in typed.items()}
+    if after.keys() == {"life"} and len(after["life"]) == 1:
+        _ask_about_point(texts, row, after["life"])
     _drop_empty_rows_at_end(after, keep=max(texts.row_count - row, 0))
     if not after.keys().isdisjoint(_LIFE_COLUMNS) and not are_plain(after.get("life", ["?"])):
         _fill_in_life_entries(texts, row, after)
@@ -23,6 +25,13 @@ def plan_block(texts: TextColumns, row: int, *, typed: Mapping[str, Sequence[str
     before = {column: _padded(texts, row, column=column, count=count) for column in after}
     row_count = max(texts.row_count, row + count) if count else texts.row_count
     return BlockChange(row, before, after, texts.row_count, row_count)
+
+
+def _ask_about_point(texts: TextColumns, row: int, typed: list[str]) -> None:
+    """Have a life like "1.250", typed in place of another, asked about where its column says thousands, in place."""
+    lives = texts.column("life")
+    if lives[row : row + 1] != typed:
+        typed[0] = asked_among(typed[0], (life for place, life in enumerate(lives) if place != row))
 
 
 def by_column(cells: Sequence[Sequence[str]], columns: Sequence[str]) -> dict[str, Sequence[str]]:

@@ -15,7 +15,14 @@ from reliability_app.session.date_columns import (
     read_date_heading,
 )
 from reliability_app.session.dates import looks_like_date
-from reliability_app.session.headings import INTERVAL_END, INTERVAL_START, Heading, read_heading, split_unit
+from reliability_app.session.headings import (
+    INTERVAL_END,
+    INTERVAL_START,
+    Heading,
+    one_life_unit,
+    read_heading,
+    split_unit,
+)
 from reliability_app.session.numbers import is_missing, looks_numeric
 from reliability_app.session.row_reading import BUILT_IN_COLUMNS, HEADINGS, read_life_entry
 from reliability_app.session.states import FOUND_FAILED, STATES, is_yes, read_answer, read_state
@@ -177,7 +184,12 @@ def _take_headings(
 
 
 def _suits(heading: Heading, cells: Sequence[str]) -> bool:
-    """Return whether cells can be what a heading says: under "Time" or "Start", say, there may be dates."""
+    """Return whether cells can be what a heading says: under "Time" or "Start", say, there may be dates.
+
+    Below "Einheit" there may be the unit of measure of the lives, the same in every row, which names no unit.
+    """
+    if heading.key == "unit":
+        return one_life_unit(cells) is None
     if heading.key not in ("life", "until", "quantity", "entered", INTERVAL_START, INTERVAL_END):
         return True
     if heading.key == "life" and heading.rank < _BEYOND_DOUBT:

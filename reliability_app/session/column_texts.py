@@ -42,16 +42,19 @@ class StateColumn:
     unknown: tuple[str, ...] = ()
 
 
-def decide_marks(texts: Mapping[str, Sequence[str]]) -> dict[str, DecimalMark]:
-    """Decide the decimal mark of each column of numbers; a column that proves none follows the rest of its table."""
-    ends = {key: _ends(cells) for key, cells in texts.items()}
+def decide_marks(texts: Mapping[str, Sequence[str]], decided: DecimalMark | None = None) -> dict[str, DecimalMark]:
+    """Decide the decimal mark of each column of numbers; a column that proves none follows the rest of its table.
+
+    `decided` is the mark of those that prove none where something else has told it.
+    """
+    ends = {key: number_ends(cells) for key, cells in texts.items()}
     proven = {key: proven_mark(cells) for key, cells in ends.items()}
     others = {mark for mark in proven.values() if mark is not None}
     common = others.pop() if len(others) == 1 else None
-    return {key: proven[key] or common or decide_mark(cells) for key, cells in ends.items()}
+    return {key: proven[key] or decided or common or decide_mark(cells) for key, cells in ends.items()}
 
 
-def _ends(cells: Sequence[str]) -> Sequence[str]:
+def number_ends(cells: Sequence[str]) -> Sequence[str]:
     """Return cells with ranges like "200,5-400" taken apart."""
     if not _RANGE_DASH.search("\n".join(cells)):
         return cells

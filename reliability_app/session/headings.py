@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+from collections.abc import Iterable
 from dataclasses import dataclass
 from functools import lru_cache
 
@@ -19,6 +20,7 @@ life|lives|time to failure|times to failure|ttf|age at failure|failure time|fail
 time to event|service life|operating time|operating hours|run time|runtime|running time|running hours
 run hours|service time|service hours|test time|test hours|test duration|duration|age|time|t|mileage|distance
 lebensdauer|laufzeit|betriebsdauer|betriebszeit|betriebsstunden|standzeit|alter|zeit|laufleistung
+laufstrecke|fahrstrecke
 duree de vie|duree|temps de fonctionnement|temps|age a la defaillance
 vida|tiempo hasta el fallo|tiempo de funcionamiento|tiempo|edad|duracion
 vita|durata|tempo al guasto|tempo di funzionamento|tempo|eta|stop|exit
@@ -134,6 +136,22 @@ def read_life_unit(text: str) -> str | None:
     last = words.split(" ")[-1]
     factor = re.fullmatch(r"(?:[0-9^ ]+|k|thousand|million|x|10\u00b3)*", words[: -len(last)].strip())
     return " ".join(text.split()) if factor and last in _UNIT_OF and words != last else None
+
+
+def bracketed_life_unit(heading: str) -> str | None:
+    """Return the unit of age in the brackets of any heading, also of one that is not known ("Weg [km]")."""
+    inside = _BRACKETED.search(heading) if len(heading) <= 80 else None
+    return read_life_unit(inside[1]) if inside else None
+
+
+def one_life_unit(cells: Iterable[str]) -> str | None:
+    """Return the unit of age that all cells with text name, two of them at least ("min", "min"); else None."""
+    given = [cell for cell in cells if cell]
+    written = set(given)
+    if len(given) < 2 or len(written) > 4:
+        return None
+    meant = {read_life_unit(cell) for cell in written}
+    return meant.pop() if len(meant) == 1 else None
 
 
 @dataclass(frozen=True)

@@ -20,7 +20,8 @@ from reliability_app.session.column_texts import (
 )
 from reliability_app.session.date_columns import DatePlan, plan_of_dates
 from reliability_app.session.date_lives import DateLives, EndDates, lives_from_dates
-from reliability_app.session.headings import read_heading
+from reliability_app.session.doubtful_points import PointsInDoubt, points_in_doubt
+from reliability_app.session.headings import bracketed_life_unit, one_life_unit, read_heading
 from reliability_app.session.numbers import DecimalMark, are_plain, is_missing, quoted
 from reliability_app.session.open_questions import open_questions
 from reliability_app.session.row_reading import BUILT_IN_COLUMNS, NUMBER_COLUMNS
@@ -44,9 +45,10 @@ def interpret(source: SourceTable, choices: Choices) -> Understanding:
     extras = tuple(key for key in texts if key not in BUILT_IN_COLUMNS)
     notes = [*_note_on_sheets(source), *source.notes, *_note_on_titles(source)]
 
-    life_unit = _life_unit(texts, columns, headings)
+    life_unit = _life_unit(texts, columns, headings) or _unit_beside(texts, columns, headings, notes)
     exact = {key for place, key in enumerate(columns.keys) if key and place in source.true_numbers}
-    marks = _read_numbers(texts, extras, exact, choices.mark, notes)
+    doubt = None if choices.mark else _doubt(source, columns, texts, exact, extras)
+    marks = _read_numbers(texts, extras, exact, choices.mark, notes, doubt)
     states = _state_column(texts, _heading_of("state", columns, headings), choices)
     dates = None
     if columns.dates is not None:
@@ -54,6 +56,7 @@ def interpret(source: SourceTable, choices: Choices) -> Understanding:
         life_unit = dates.unit
     words = _read_states(texts, columns, states, notes, dates)
     rows, faulty = _through_table(texts, extras)
+    asked = (doubt.question,) if doubt and doubt.question else ()
     return Understanding(
         rows=rows,
         extra_columns=extras,
@@ -69,7 +72,7 @@ def interpret(source: SourceTable, choices: Choices) -> Understanding:
         plan=columns.dates,
         dates=dates,
         state_words={**dict.fromkeys(states.unknown), **states.words} if states else {},
-        questions=open_questions(texts, marks, states, dates),
+        questions=(*asked, *open_questions(texts, marks, states, dates)),
     )
 
 
@@ -155,8 +158,38 @@ def _life_unit(texts: dict[str, list[str]], columns: Columns, headings: Sequence
     in_cells = None
     if not are_plain(texts["life"]):
         texts["life"], in_cells = without_units(texts["life"])
-    heading = read_heading(_heading_of("life", columns, headings))
-    return (heading.life_unit if heading else None) or in_cells
+    above = _heading_of("life", columns, headings)
+    heading = read_heading(above)
+    return (heading.life_unit if heading else bracketed_life_unit(above)) or in_cells
+
+
+def _unit_beside(
+    texts: Mapping[str, list[str]], columns: Columns, headings: Sequence[str], notes: list[str]
+) -> str | None:
+    """Return the unit of the lives where a column "Einheit" names it in every row; add to `notes`."""
+    for key, heading in zip(columns.keys, headings, strict=True):
+        meant = read_heading(heading) if key and key not in BUILT_IN_COLUMNS and "life" in texts else None
+        if key and meant and meant.key == "unit" and (unit := one_life_unit(texts[key])):
+            notes.append(f"Lives are in {unit}: the column {quoted(heading, 24)} says so.")
+            return unit
+    return None
+
+
+def _doubt(
+    source: SourceTable,
+    columns: Columns,
+    texts: Mapping[str, list[str]],
+    exact: Collection[str],
+    extras: Sequence[str],
+) -> PointsInDoubt | None:
+    """Return how points of ages like "1.250" are read; none is in doubt in true numbers and in our own grid's cells."""
+    is_our_own = not any(source.headings) and columns.keys == BUILT_IN_COLUMNS[: max(len(columns.keys), 4)]
+    full = {columns.keys[place] for place in source.full_numbers if place < len(columns.keys)}
+    if is_our_own or "life" not in texts or "life" in full:
+        return None
+    numeric = {key: texts[key] for key in number_columns(texts, extras) if key not in exact and key not in full}
+    states = dict.fromkeys(texts.get("state", ()))
+    return points_in_doubt(numeric, separator=source.separator, words=(*source.headings, *states))
 
 
 def _read_numbers(
@@ -165,6 +198,7 @@ def _read_numbers(
     exact: Collection[str],
     mark: DecimalMark | None,
     notes: list[str],
+    doubt: PointsInDoubt | None,
 ) -> dict[str, DecimalMark]:
     """Bring the columns of numbers into plain form, in place; add to `notes`; return the mark of each.
 
@@ -173,12 +207,14 @@ def _read_numbers(
     for key in exact:
         texts[key] = plain_among_numbers(texts[key], mark) if key in NUMBER_COLUMNS else texts[key]
     numeric = {key: texts[key] for key in number_columns(texts, extras) if key not in exact}
-    if mark is None and all(map(are_plain, numeric.values())):
+    if mark is None and doubt is None and all(map(are_plain, numeric.values())):
         return dict.fromkeys(numeric, DecimalMark.POINT)
-    marks = dict.fromkeys(numeric, mark) if mark else decide_marks(numeric)
+    marks = dict.fromkeys(numeric, mark) if mark else decide_marks(numeric, doubt.mark if doubt else None)
+    notes += [doubt.note] if doubt else []
     for key, as_typed in numeric.items():
         texts[key] = plain_numbers(as_typed, marks[key], only_marked=key in extras)
-        notes += mark_notes(key, as_typed, texts[key], marks[key])
+        if doubt is None or key in extras:
+            notes += mark_notes(key, as_typed, texts[key], marks[key])
     return marks
 
 

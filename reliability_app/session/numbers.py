@@ -75,6 +75,9 @@ _NUMBER = {
 }
 _PROVES_COMMA = re.compile(rf"[+-]?{_COMMA_EVIDENCE}{_EXPONENT}")
 _PROVES_POINT = re.compile(rf"[+-]?{_POINT_EVIDENCE}{_EXPONENT}")
+# How a number is kept whose point may set off thousands, so that it is asked about: "1.250?".
+_ASKED_POINT = re.compile(r"([1-9][0-9]{0,2})\.([0-9]{3})\?").fullmatch
+_SMALL_POINT = re.compile(r"[1-9][0-9]?\.[0-9]{3}").fullmatch
 _IN_DOUBT = re.compile(rf"[+-]?{_DOUBTFUL}{_EXPONENT}")
 
 
@@ -147,6 +150,22 @@ def plain_number(text: str, mark: DecimalMark | None = None) -> str:
     return plain
 
 
+def asked_among(text: str, others: Iterable[str]) -> str:
+    """Return "1.250" as "1.250?", which is no number and asks, where all other numbers are 100 or more.
+
+    Parameters
+    ----------
+    text : str
+        A number typed: with a point before just three digits and below 100, else it is returned as it is.
+    others : iterable of str
+        The texts of the other cells of its column; those that are no plain numbers are passed over.
+    """
+    if not _SMALL_POINT(text):
+        return text
+    least = min((float(other) for other in others if other and is_plain(other)), default=0.0)
+    return f"{text}?" if least >= 100 else text
+
+
 def read_number(text: str, mark: DecimalMark | None = None) -> float:
     """Return the number in `text` as a float; parameters and errors as in `plain_number`."""
     return float(plain_number(text, mark))
@@ -197,6 +216,10 @@ def _mark_of(clean: str, mark: DecimalMark | None, *, typed: str) -> DecimalMark
 def _why_not(text: str, clean: str, mark: DecimalMark | None) -> str:
     """Say why `text` is no number and what to type."""
     typed = quoted(text)
+    if match := _ASKED_POINT(clean):
+        whole, fraction = match[1] + match[2], f"{match[1]}.{match[2]}".rstrip("0").rstrip(".")
+        if whole != fraction:
+            return f"{typed} may mean {whole} or {fraction}: type it in one of these two ways."
     if clean.casefold().lstrip("+-") in ("inf", "infinity", "\u221e"):
         return f"{typed} is not a finite number: type an age in digits, such as 812 or 53.2."
     if mark is DecimalMark.COMMA and _PROVES_POINT.fullmatch(clean):

@@ -55,7 +55,7 @@ def understand(
     Understanding
         With no rows, and a sentence that says so, for text without any.
     """
-    rows, notes = _rows_of(text, html)
+    rows, notes, separator, full = _rows_of(text, html)
     rows = [row for row in rows if any(map(str.strip, row))]
     if is_list_of_lives(rows):
         rows, notes = [[cell] for row in rows for cell in row if cell.strip()], (*notes, LIST_OF_LIVES)
@@ -63,7 +63,14 @@ def understand(
         rows, notes = narrowed(rows), (*notes, TOO_WIDE)
     extras = existing.extra_columns if existing is not None else ()
     return interpret(
-        replace(source_of(rows, notes), existing_extras=extras, at_column=at_column, session_unit=session_unit),
+        replace(
+            source_of(rows, notes),
+            existing_extras=extras,
+            at_column=at_column,
+            session_unit=session_unit,
+            separator=separator,
+            full_numbers=full,
+        ),
         Choices(),
     )
 
@@ -146,7 +153,7 @@ def plain_block(text: str, html: str | None = None, *, columns: Sequence[str] = 
     A text in one line without a tab is one cell. Blank lines are kept: they are empty cells. Where `columns` (the
     keys of the columns it will land in) names a column of numbers, its decimal mark is decided from all its cells.
     """
-    rows, _ = _rows_of(text, html)
+    rows, *_ = _rows_of(text, html)
     if not rows:
         return None
     if len(rows) == 1 and len(rows[0]) > 1 and "\t" not in text:
@@ -166,14 +173,20 @@ def _heading_row(rows: Sequence[Sequence[str]]) -> int | None:
     return find_heading_row([[cell.strip() for cell in row] for row in rows[:_LOOKED_AT]])
 
 
-def _rows_of(text: str, html: str | None) -> tuple[list[list[str]], tuple[str, ...]]:
-    """Return the cells of the text, blank lines as rows without text, in full precision if the HTML has it."""
+def _rows_of(text: str, html: str | None) -> tuple[list[list[str]], tuple[str, ...], str, frozenset[int]]:
+    """Return the cells of the text, blank lines as rows without text, in full precision if the HTML has it.
+
+    Also what was odd, the separator of the text, and the columns in which the HTML gave numbers in full.
+    """
     split = split_text(text)
     rows = split.rows
     if not html or (not has_full_values(html) and rows):
-        return rows, split.notes
+        return rows, split.notes, split.separator, frozenset()
     table = read_html_table(html)
     if table and not rows:
         rows = [[cell.shown for cell in row] for row in table]
     full = with_full_precision(rows, table) if table else None
-    return (full, split.notes) if full is not None else (rows, (*split.notes, AS_DISPLAYED))
+    if table is None or full is None:
+        return rows, (*split.notes, AS_DISPLAYED), split.separator, frozenset()
+    places = frozenset(place for row in table for place, cell in enumerate(row) if cell.value)
+    return full, split.notes, split.separator, places

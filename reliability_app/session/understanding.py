@@ -49,6 +49,10 @@ class SourceTable:
         The unit of the lives that the session has already; None if it has none yet.
     true_numbers : frozenset of int
         Columns that came with numbers in them, not with texts of numbers.
+    separator : str
+        What stands between the cells in a text; "" if that tells nothing.
+    full_numbers : frozenset of int
+        Columns of a text in which a spreadsheet gave numbers in full: their points are decimal points.
     sheets, sheet
         The file of sheets it is from, and which of them it is.
     """
@@ -60,6 +64,8 @@ class SourceTable:
     at_column: str | None = None
     session_unit: str | None = None
     true_numbers: frozenset[int] = frozenset()
+    separator: str = ""
+    full_numbers: frozenset[int] = frozenset()
     sheets: Sheets | None = None
     sheet: str = ""
 

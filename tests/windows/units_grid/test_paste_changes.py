@@ -64,6 +64,16 @@ def test_what_the_table_does_not_tell_is_asked_and_answered_by_one_press(rig):
     assert rig.undo.count() == 1
 
 
+def test_points_before_three_digits_are_asked_about_and_answered_by_one_press(rig):
+    rig.paste("Unit\tHours\tOK\nP-1\t1.250\tno\nP-2\t1.500\tyes\n")
+    assert "Life '1.250': which number is it?" in rig.grid.strip.question
+    assert "'1.250' was read as 1.25 but may mean 1250" in rig.grid.strip.notes
+    press(rig, "1250")
+    assert [row["life"] for row in rig.texts] == ["1250", "1500"]
+    assert "1.250" not in rig.grid.strip.question
+    assert rig.undo.count() == 1
+
+
 def test_the_order_of_day_and_month_is_asked(rig):
     rig.paste(DATES)
     assert rig.grid.counts_line.counts_text == "0 failed, 0 running, 2 unread"
