@@ -9,11 +9,12 @@ from __future__ import annotations
 
 from abc import ABC, abstractmethod
 from dataclasses import dataclass
+from typing import Self
 
 import numpy as np
 from numpy.typing import NDArray
 
-from reliability_app.engine.families.base import StandardDistribution
+from reliability_app.engine.families.base import Derivatives, StandardDistribution
 from reliability_app.engine.likelihood import Terms
 
 Array = NDArray[np.float64]
@@ -83,8 +84,8 @@ class ScoreMeasure(Measure):
 
 
 @dataclass(frozen=True, eq=False)
-class HazardMeasure(Measure):
-    """Logarithm of the standardised hazard at y: ln b + ln h(a + b y)."""
+class RateMeasure(Measure):
+    """Logarithm of something per unit of age, standardised, at y: ln b + ln g(a + b y)."""
 
     y: Array
     standard: StandardDistribution
@@ -94,16 +95,20 @@ class HazardMeasure(Measure):
         """How many ages."""
         return self.y.size
 
-    def at(self, places: NDArray[np.intp]) -> HazardMeasure:
-        """Return the hazards at the chosen ages."""
-        return HazardMeasure(self.y[places], self.standard)
+    def at(self, places: NDArray[np.intp]) -> Self:
+        """Return the measures at the chosen ages."""
+        return type(self)(self.y[places], self.standard)
+
+    @abstractmethod
+    def log_rate(self, z: Array) -> Derivatives:
+        """Return ln g at scores, with two derivatives."""
 
     def terms(self, a: Array, b: Array) -> Terms:
-        """Return the log hazard and its derivatives."""
+        """Return the logarithm and its derivatives."""
         y = column(self.y, a)
         inverse = 1.0 / b
-        with np.errstate(over="ignore", invalid="ignore"):  # far out in a short tail the hazard is 0
-            value, first, second = self.standard.log_hazard(a + b * y)
+        with np.errstate(over="ignore", invalid="ignore"):  # far out in a short tail the rate is 0
+            value, first, second = self.log_rate(a + b * y)
             return Terms(
                 np.log(b) + value,
                 first,
@@ -112,6 +117,14 @@ class HazardMeasure(Measure):
                 second * y,
                 second * y * y - inverse * inverse,
             )
+
+
+class HazardMeasure(RateMeasure):
+    """Logarithm of the standardised hazard at y: ln b + ln h(a + b y)."""
+
+    def log_rate(self, z: Array) -> Derivatives:
+        """Return the log hazard of the standard distribution."""
+        return self.standard.log_hazard(z)
 
 
 class SlopeMeasure(Measure):
